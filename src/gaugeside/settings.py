@@ -1,0 +1,304 @@
+"""Where the program keeps its files, and what it remembers from one start to the next.
+
+Reading never raises and never changes a file: each fault becomes one sentence, and what is good
+still counts. Writing replaces a file whole or not at all.
+"""
+
+from __future__ import annotations
+
+import contextlib
+import dataclasses
+import json
+import os
+import stat
+import tempfile
+import unicodedata
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass, field
+from pathlib import Path
+from typing import Any, Literal, get_args, get_type_hints
+
+import platformdirs
+
+from gaugeside.errors import Refusal
+
+LARGEST_FILE = 1_000_000  # [bytes]; a full form is a few thousand
+DEEPEST_NESTING = 20
+LONGEST_SETTING = 60  # [characters]
+MOST_UNITS = 100
+KEPT_ASIDE = 9  # damaged files kept side by side before the oldest name is used again
+
+_SPACING = frozenset("\t\n\r\u2028\u2029")
+# Explicit bidirectional embeddings, overrides and isolates reorder what stands around them.
+_REORDERING = frozenset("\u202a\u202b\u202c\u202d\u202e\u2066\u2067\u2068\u2069")
+
+
+@dataclass(frozen=True)
+class Places:
+    """The folders and files of one user; naming them creates none of them."""
+
+    settings_folder: Path
+    data_folder: Path
+    settings_file: Path
+    draft_file: Path
+    logbook_file: Path
+    themes_folder: Path
+    log_file: Path
+
+
+def places(environ: Mapping[str, str] | None = None, logbook: Path | None = None) -> Places:
+    """Return where everything lives, creating nothing.
+
+    environ: the environment, os.environ when None; `GAUGESIDE_HOME` names one folder for all files.
+    logbook: a logbook file named by the user; it overrides the logbook alone.
+    """
+    home = (os.environ if environ is None else environ).get("GAUGESIDE_HOME", "")
+    if home:
+        settings_folder = data_folder = state_folder = Path(os.path.abspath(os.path.expanduser(home)))
+    else:
+        settings_folder = platformdirs.user_config_path("gaugeside", appauthor=False)
+        data_folder = platformdirs.user_data_path("gaugeside", appauthor=False)
+        state_folder = platformdirs.user_state_path("gaugeside", appauthor=False)
+    own_logbook = data_folder / "logbook.sqlite3"
+    return Places(
+        settings_folder=settings_folder,
+        data_folder=data_folder,
+        settings_file=settings_folder / "settings.json",
+        draft_file=data_folder / "draft.json",
+        logbook_file=own_logbook if logbook is None else Path(os.path.abspath(logbook.expanduser())),
+        themes_folder=settings_folder / "themes",
+        log_file=state_folder / "helper.log",
+    )
+
+
+@dataclass(frozen=True)
+class Settings:
+    """What is remembered; every field has a default, so an absent file is a complete one.
+
+    site_pressure_text: altitude or barometer reading as typed, with its unit.
+    units: unit label by kind of quantity, overriding the dress.
+    bare_pressure: what a pressure typed without gauge or absolute is taken for.
+    datum: enthalpy datum.
+    tag: which machine the next logbook entries belong to.
+    """
+
+    site_pressure_text: str = ""
+    site_pressure_from: Literal["sea level", "altitude", "barometer"] = "sea level"
+    dress: Literal["si", "ip"] = "si"
+    units: dict[str, str] = field(default_factory=dict)
+    bare_pressure: Literal["gauge", "absolute"] = "gauge"
+    datum: Literal["iir", "ashrae", "nbp"] = "iir"
+    theme: str = "log sheet dark"
+    refrigerant: str = ""
+    tag: str = ""
+
+
+def plain_text(text: str, longest: int | None = None) -> str:
+    """Return `text` without control characters, lone surrogates and forced text direction.
+
+    Tabs and line ends become spaces; everything else stays as typed.
+
+    longest: cut after that many characters; None for no limit.
+    """
+    if longest is not None:
+        text = text[: 4 * longest]  # a text of megabytes is not walked through for a short one
+    kept = (" " if character in _SPACING else character for character in text if not _is_hidden(character))
+    return "".join(kept)[:longest]
+
+
+def load_settings(path: Path) -> tuple[Settings, list[str]]:
+    """Return the settings kept in `path` and one sentence for each fault; never raises."""
+    found, faults = read_json_file(path)
+    good: dict[str, Any] = {}
+    hints = get_type_hints(Settings)
+    for name, value in found.items():
+        if name not in hints:
+            faults.append(f"{path.name}: {_shown(name)} is not a setting of this version and is not used.")
+            continue
+        try:
+            good[name] = _checked_units(value) if name == "units" else _checked_text(value, hints[name])
+        except ValueError as fault:
+            faults.append(f"{path.name}: the setting {name} {fault}; its default is used.")
+    return Settings(**good), faults
+
+
+def save_settings(path: Path, settings: Settings) -> None:
+    """Write `settings` to `path`, whole or not at all.
+
+    Raises Refusal when the file cannot be written; the file that was there is then untouched.
+    """
+    write_json_file(path, dataclasses.asdict(settings), lambda: bool(load_settings(path)[1]))
+
+
+def load_draft(path: Path) -> tuple[dict[str, Any], list[str]]:
+    """Return what stood on the forms, as kept in `path`, and one sentence for each fault; never raises."""
+    return read_json_file(path)
+
+
+def save_draft(path: Path, draft: Mapping[str, Any]) -> None:
+    """Write what stands on the forms to `path`, whole or not at all.
+
+    Raises Refusal when the file cannot be written; the file that was there is then untouched.
+    """
+    write_json_file(path, draft, lambda: bool(read_json_file(path)[1]))
+
+
+def read_json_file(path: Path) -> tuple[dict[str, Any], list[str]]:
+    """Return the JSON object in `path`, texts made plain, and one sentence for each fault; never raises.
+
+    An absent file is an empty object without a fault.
+    """
+    try:
+        if not stat.S_ISREG(path.stat().st_mode):
+            return {}, [f"{path} is not a file; it is not used."]
+        with path.open("rb") as file:
+            content = file.read(LARGEST_FILE + 1)
+    except FileNotFoundError:
+        return {}, []
+    except (OSError, ValueError) as fault:
+        return {}, [f"{path} cannot be read ({reason(fault)}); it is not used and left as it is."]
+    if len(content) > LARGEST_FILE:
+        return {}, [f"{path} is larger than {LARGEST_FILE} bytes; it is not used."]
+    try:
+        found = json.loads(content.decode("utf-8-sig"), parse_constant=_refuse_constant)
+    except (ValueError, RecursionError):
+        return {}, [f"{path} is damaged (not readable as JSON); it is not used."]
+    if not isinstance(found, dict):
+        return {}, [f"{path} is damaged (not a JSON object); it is not used."]
+    if not _is_shallow(found):
+        return {}, [f"{path} is nested deeper than {DEEPEST_NESTING} levels; it is not used."]
+    return _made_plain(found), []
+
+
+def write_json_file(path: Path, content: Mapping[str, Any], is_faulty: Callable[[], bool]) -> None:
+    """Write `content` as JSON to `path`, whole or not at all, readable by its owner alone.
+
+    is_faulty: tells whether the file that is there has faults; it is then kept aside
+        as NAME.unreadable.
+
+    Raises Refusal when the file cannot be written; the file that was there is then untouched.
+    """
+    try:
+        text = json.dumps(content, ensure_ascii=False, indent=1, allow_nan=False)
+    except (ValueError, RecursionError) as fault:
+        raise Refusal(f"{path.name} cannot hold what was to be kept: {fault}.") from fault
+    make_private_folder(path.parent)
+    temporary = ""
+    try:
+        handle, temporary = tempfile.mkstemp(prefix=f".{path.name}.", dir=path.parent)
+        with os.fdopen(handle, "wb") as file:
+            # A lone surrogate becomes its JSON escape, which reads back as the same text.
+            file.write(text.encode("utf-8", "backslashreplace") + b"\n")
+            file.flush()
+            os.fsync(file.fileno())
+        if path.exists() and not path.is_dir() and is_faulty():
+            os.replace(path, _name_aside(path))
+        os.replace(temporary, path)
+    except OSError as fault:
+        if temporary:
+            with contextlib.suppress(OSError):
+                os.unlink(temporary)
+        raise Refusal(
+            f"{path} cannot be written: {reason(fault)}.", "What is on the screen is not remembered."
+        ) from fault
+    sync_folder(path.parent)
+
+
+def make_private_folder(folder: Path) -> None:
+    """Create `folder` for its owner alone unless it exists; one that exists keeps its permissions.
+
+    Raises Refusal when it cannot be created or no home folder is known.
+    """
+    if folder.parts[:1] and folder.parts[0].startswith("~"):
+        raise Refusal(
+            "No home folder is known, so nothing can be kept.", "Set GAUGESIDE_HOME to a folder of yours."
+        )
+    if folder.is_dir():
+        return
+    try:
+        folder.mkdir(mode=0o700, parents=True, exist_ok=True)
+    except (OSError, ValueError) as fault:
+        raise Refusal(
+            f"The folder {folder} cannot be created: {reason(fault)}.",
+            "Set GAUGESIDE_HOME to a folder that can be written.",
+        ) from fault
+    sync_folder(folder.parent)
+
+
+def sync_folder(folder: Path) -> None:
+    """Ask the disk to keep the names in `folder`; a system that cannot is left alone."""
+    with contextlib.suppress(OSError):
+        handle = os.open(folder, os.O_RDONLY)
+        try:
+            os.fsync(handle)
+        finally:
+            os.close(handle)
+
+
+def reason(fault: BaseException) -> str:
+    """The operating system's own words for `fault`, in lower case."""
+    words = fault.strerror if isinstance(fault, OSError) and fault.strerror else str(fault)
+    return words[:1].lower() + words[1:]
+
+
+def _is_hidden(character: str) -> bool:
+    if character in _SPACING:
+        return False
+    return character in _REORDERING or unicodedata.category(character) in ("Cc", "Cs")
+
+
+def _name_aside(path: Path) -> Path:
+    first = path.with_name(path.name + ".unreadable")
+    others = [path.with_name(f"{path.name}.unreadable-{number}") for number in range(2, KEPT_ASIDE + 1)]
+    return next((name for name in [first, *others] if not os.path.lexists(name)), first)
+
+
+def _refuse_constant(name: str) -> float:
+    raise ValueError(f"{name} is not a number")
+
+
+def _is_shallow(found: object) -> bool:
+    level = [found]
+    for _ in range(DEEPEST_NESTING):
+        deeper: list[object] = []
+        for value in level:
+            if isinstance(value, dict):
+                deeper.extend(value.values())
+            elif isinstance(value, list):
+                deeper.extend(value)
+        if not deeper:
+            return True
+        level = deeper
+    return False
+
+
+def _made_plain(found: Any) -> Any:
+    if isinstance(found, str):
+        return plain_text(found)
+    if isinstance(found, list):
+        return [_made_plain(value) for value in found]
+    if isinstance(found, dict):
+        return {plain_text(name): _made_plain(value) for name, value in found.items()}
+    return found
+
+
+def _shown(value: object) -> str:
+    text = json.dumps(value, ensure_ascii=False)
+    return text if len(text) <= 40 else text[:37] + "..."
+
+
+def _checked_text(value: object, hint: Any) -> str:
+    if not isinstance(value, str):
+        raise ValueError(f"is {_shown(value)}, not a text")
+    choices = get_args(hint)
+    if choices and value not in choices:
+        raise ValueError(f"is {_shown(value)}, not one of {', '.join(choices)}")
+    if len(value) > LONGEST_SETTING:
+        raise ValueError(f"is longer than {LONGEST_SETTING} characters")
+    return value
+
+
+def _checked_units(value: object) -> dict[str, str]:
+    if not isinstance(value, dict) or len(value) > MOST_UNITS:
+        raise ValueError("is not a list of units by kind of quantity")
+    return {_checked_text(kind, str): _checked_text(unit, str) for kind, unit in value.items()}
