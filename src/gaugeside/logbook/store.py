@@ -1,0 +1,295 @@
+"""The logbook file: an acknowledged entry survives the end of the program and of the power.
+
+Each call opens its own connection, so a logbook may be used from any thread; a write waits for another
+program's lock, so it belongs in a thread that the screen does not wait for.
+"""
+
+from __future__ import annotations
+
+import os
+import sqlite3
+import stat
+from collections.abc import Iterator
+from contextlib import contextmanager, suppress
+from dataclasses import dataclass, replace
+from datetime import timedelta
+from pathlib import Path
+
+from gaugeside.errors import Refusal
+from gaugeside.logbook import damage
+from gaugeside.logbook.entry import COLUMNS, Entry, cleaned, from_row, to_row
+from gaugeside.logbook.trouble import LogbookTrouble, NoSuchEntry, trouble_from
+from gaugeside.settings import make_private_folder, plain_text, reason
+
+VERSION = 1
+APPLICATION = 0x47415547  # marks the file as a logbook of this program
+SAME_WITHIN = timedelta(minutes=10)
+MOST_WORDS = 20
+LARGEST_NUMBER = 2**63 - 1
+
+_NAMES = ", ".join(COLUMNS)
+_INSERT = f"INSERT INTO entries ({_NAMES}) VALUES ({', '.join('?' * len(COLUMNS))})"
+_SELECT = f"SELECT {_NAMES} FROM entries"
+
+
+@dataclass(frozen=True)
+class Kept:
+    """The entry that is in the logbook; already: an identical one was there and is returned instead."""
+
+    entry: Entry
+    already: bool
+
+
+class Logbook:
+    """Entries in one SQLite file, created with the first entry that is kept.
+
+    busy_seconds: how long a call waits for another program's lock [s].
+
+    Every method raises LogbookTrouble when the file cannot be used; what was kept before is then still there.
+    """
+
+    def __init__(self, path: Path, busy_seconds: float = 5.0) -> None:
+        self.path = path
+        self.messages: list[str] = []
+        self._busy_seconds = busy_seconds
+        self._damaged: tuple[int, int] | None = None
+
+    def keep(self, entry: Entry) -> Kept:
+        """Keep `entry` and return it with its number, after it is safely on the disk.
+
+        An identical one of the last ten minutes is not kept twice. A damaged logbook is set aside first and
+        a new one begun; `messages` then says where the damaged one is.
+
+        Raises Refusal when a number in the entry is not finite.
+        """
+        entry = replace(cleaned(entry), number=None)
+        self._set_damaged_aside()
+        try:
+            return self._keep(entry)
+        except LogbookTrouble as trouble:
+            if trouble.kind != "damaged":
+                raise
+        self._set_damaged_aside()
+        return self._keep(entry)
+
+    def entries(self, filter_text: str = "", limit: int = 200, offset: int = 0) -> list[Entry]:
+        """Return entries, newest first, that contain every word of `filter_text` in any case."""
+        where, words = _condition(filter_text)
+        order = " ORDER BY kept_at DESC, number DESC LIMIT ? OFFSET ?"
+        with self._reading() as connection:
+            if connection is None:
+                return []
+            rows = connection.execute(_SELECT + where + order, [*words, limit, offset]).fetchall()
+        return [from_row(row) for row in rows]
+
+    def count(self, filter_text: str = "") -> int:
+        """Return how many entries contain every word of `filter_text`."""
+        where, words = _condition(filter_text)
+        with self._reading() as connection:
+            if connection is None:
+                return 0
+            return int(connection.execute("SELECT count(*) FROM entries" + where, words).fetchone()[0])
+
+    def entry(self, number: int) -> Entry:
+        """Return one entry; raises NoSuchEntry when there is none of that number."""
+        with self._reading() as connection:
+            if connection is None:
+                raise NoSuchEntry(number)
+            return _one(connection, number)
+
+    def change(self, number: int, tag: str | None = None, note: str | None = None) -> Entry:
+        """Replace tag or note of one entry and return it; raises NoSuchEntry when there is none."""
+        with self._changing(number) as connection:
+            before = _one(connection, number)
+            after = cleaned(
+                replace(
+                    before,
+                    tag=before.tag if tag is None else tag,
+                    note=before.note if note is None else note,
+                )
+            )
+            row = dict(zip(COLUMNS, to_row(after), strict=True))
+            connection.execute(
+                "UPDATE entries SET tag = ?, note = ?, likeness = ?, search = ? WHERE number = ?",
+                [row["tag"], row["note"], row["likeness"], row["search"], number],
+            )
+        return after
+
+    def delete(self, number: int) -> Entry:
+        """Take one entry out and return it, fit for `restore`; raises NoSuchEntry when there is none."""
+        with self._changing(number) as connection:
+            entry = _one(connection, number)
+            connection.execute("DELETE FROM entries WHERE number = ?", [number])
+        return entry
+
+    def restore(self, entry: Entry) -> None:
+        """Put a deleted entry back under its own number.
+
+        Raises Refusal when the number is taken or missing.
+        """
+        if entry.number is None:
+            raise Refusal("This entry was never in the logbook, so it cannot be put back.")
+        try:
+            with self._writing() as connection:
+                connection.execute(_INSERT, to_row(cleaned(entry)))
+        except sqlite3.IntegrityError as fault:
+            raise Refusal(f"Entry {entry.number} is in the logbook already.") from fault
+
+    def _keep(self, entry: Entry) -> Kept:
+        row = dict(zip(COLUMNS, to_row(entry), strict=True))
+        with self._writing() as connection:
+            found = connection.execute(
+                _SELECT + " WHERE likeness = ? ORDER BY kept_at DESC LIMIT 1", [row["likeness"]]
+            ).fetchone()
+            if found is not None:
+                earlier = from_row(found)
+                if abs(entry.kept_at - earlier.kept_at) <= SAME_WITHIN:
+                    return Kept(earlier, already=True)
+            number = connection.execute(_INSERT, list(row.values())).lastrowid
+        return Kept(replace(entry, number=number), already=False)
+
+    def _exists(self) -> bool:
+        try:
+            found = self.path.stat()
+        except (FileNotFoundError, NotADirectoryError):
+            return False
+        except (OSError, ValueError) as fault:
+            raise LogbookTrouble(
+                "cannot open", f"The logbook {self.path} cannot be opened: {reason(fault)}."
+            ) from fault
+        if not stat.S_ISREG(found.st_mode):
+            raise LogbookTrouble("cannot open", f"The logbook {self.path} is not a file.")
+        return True
+
+    @contextmanager
+    def _reading(self) -> Iterator[sqlite3.Connection | None]:
+        if not self._exists():
+            yield None
+            return
+        with self._connection() as connection:
+            # One transaction, so that the marks and the rows are of the same moment.
+            connection.execute("BEGIN")
+            yield connection if _is_begun(connection, self.path) else None
+
+    @contextmanager
+    def _changing(self, number: int) -> Iterator[sqlite3.Connection]:
+        if not self._exists():
+            raise NoSuchEntry(number)
+        with self._writing() as connection:
+            yield connection
+
+    @contextmanager
+    def _writing(self) -> Iterator[sqlite3.Connection]:
+        """Yield a connection inside one transaction, committed when the block ends well."""
+        if not self._exists():
+            self._create()
+        with self._connection() as connection:
+            # Any other database is refused before a setting could change it.
+            _is_begun(connection, self.path)
+            connection.execute("PRAGMA journal_mode = DELETE")
+            # With a deleted journal only EXTRA also waits for the folder, so only it outlasts a power cut.
+            connection.execute("PRAGMA synchronous = EXTRA")
+            connection.execute("BEGIN IMMEDIATE")
+            if not _is_begun(connection, self.path):
+                _begin(connection)
+            yield connection
+            connection.execute("COMMIT")
+
+    @contextmanager
+    def _connection(self) -> Iterator[sqlite3.Connection]:
+        connection = None
+        try:
+            connection = sqlite3.connect(
+                # Never the mode that creates: a file comes into being with its permissions or not at all.
+                self.path.absolute().as_uri() + "?mode=rw",
+                uri=True,
+                timeout=self._busy_seconds,
+                isolation_level=None,
+            )
+            connection.text_factory = _decoded
+            connection.execute("PRAGMA trusted_schema = OFF")
+            connection.execute("PRAGMA cell_size_check = ON")
+            yield connection
+        except sqlite3.IntegrityError:
+            raise
+        except sqlite3.Error as fault:
+            trouble = trouble_from(fault, self.path, self._busy_seconds)
+            if trouble.kind == "damaged":
+                self._damaged = damage.identity(self.path)
+            raise trouble from fault
+        finally:
+            if connection is not None:
+                # Closing takes back whatever was not committed.
+                with suppress(sqlite3.Error):
+                    connection.close()
+
+    def _create(self) -> None:
+        try:
+            make_private_folder(self.path.parent)
+            os.close(os.open(self.path, os.O_RDWR | os.O_CREAT, 0o600))
+        except Refusal as fault:
+            raise LogbookTrouble("cannot open", fault.message, fault.hint) from fault
+        except OSError as fault:
+            raise LogbookTrouble(
+                "cannot open", f"The logbook {self.path} cannot be created: {reason(fault)}."
+            ) from fault
+
+    def _set_damaged_aside(self) -> None:
+        if self._damaged is None:
+            return
+        seen, self._damaged = self._damaged, None
+        aside = damage.set_aside(self.path, seen)
+        if aside is None:
+            return
+        self.messages.append(f"The logbook was damaged and is set aside untouched as {aside}; a new one is begun.")
+        saved = damage.readable_entries(aside)
+        if saved:
+            with self._writing() as connection:
+                insert = _INSERT.replace("INSERT", "INSERT OR IGNORE", 1)
+                added = connection.executemany(insert, [to_row(cleaned(entry)) for entry in saved]).rowcount
+            self.messages.append(f"{added} of its entries could be read and are in the new logbook.")
+
+
+def _decoded(raw: bytes) -> str:
+    return raw.decode("utf-8", "replace")
+
+
+def _condition(filter_text: str) -> tuple[str, list[str]]:
+    words = plain_text(filter_text, 500).casefold().split()[:MOST_WORDS]
+    return (" WHERE " + " AND ".join(["instr(search, ?) > 0"] * len(words)) if words else ""), words
+
+
+def _one(connection: sqlite3.Connection, number: int) -> Entry:
+    if not 0 <= number <= LARGEST_NUMBER:
+        raise NoSuchEntry(number)
+    row = connection.execute(_SELECT + " WHERE number = ?", [number]).fetchone()
+    if row is None:
+        raise NoSuchEntry(number)
+    return from_row(row)
+
+
+def _is_begun(connection: sqlite3.Connection, path: Path) -> bool:
+    """Tell a logbook from an empty file; raises LogbookTrouble for any other database."""
+    (version,) = connection.execute("PRAGMA user_version").fetchone()
+    (application,) = connection.execute("PRAGMA application_id").fetchone()
+    (tables,) = connection.execute("SELECT count(*) FROM sqlite_master").fetchone()
+    if (version, application, tables) == (0, 0, 0):
+        return False
+    if application != APPLICATION:
+        raise LogbookTrouble("foreign", f"{path} is the database of another program, not a logbook.")
+    if version > VERSION:
+        raise LogbookTrouble(
+            "newer",
+            f"The logbook {path} was written by a newer version of gaugeside, so it is left as it is.",
+            "Use that version, or name another file with --logbook PATH.",
+        )
+    return True
+
+
+def _begin(connection: sqlite3.Connection) -> None:
+    columns = ", ".join(f"{name} {kind}" for name, kind in COLUMNS.items())
+    connection.execute(f"CREATE TABLE entries ({columns})")
+    connection.execute("CREATE INDEX entries_by_moment ON entries (kept_at, number)")
+    connection.execute("CREATE INDEX entries_by_likeness ON entries (likeness, kept_at)")
+    connection.execute(f"PRAGMA application_id = {APPLICATION}")
+    connection.execute(f"PRAGMA user_version = {VERSION}")
