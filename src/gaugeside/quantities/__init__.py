@@ -1,1 +1,36 @@
+"""Kinds of quantity, their units, reading text, writing text, and the site's atmosphere."""
 
+from gaugeside.quantities.dress import CHOOSABLE as CHOOSABLE
+from gaugeside.quantities.dress import Dress as Dress
+from gaugeside.quantities.dress import both_differences as both_differences
+from gaugeside.quantities.dress import checked_single as checked_single
+from gaugeside.quantities.dress import gauge_and_absolute as gauge_and_absolute
+from gaugeside.quantities.dress import in_unit as in_unit
+from gaugeside.quantities.dress import number as number
+from gaugeside.quantities.dress import shown as shown
+from gaugeside.quantities.dress import with_sense as with_sense
+from gaugeside.quantities.dress import write as write
+from gaugeside.quantities.reading import Reading as Reading
+from gaugeside.quantities.reading import example as example
+from gaugeside.quantities.reading import guard as guard
+from gaugeside.quantities.reading import quoted as quoted
+from gaugeside.quantities.reading import read as read
+from gaugeside.quantities.reading import split_number as split_number
+from gaugeside.quantities.reading import understood as understood
+from gaugeside.quantities.site import SEA_LEVEL as SEA_LEVEL
+from gaugeside.quantities.site import Site as Site
+from gaugeside.quantities.site import site_at_altitude as site_at_altitude
+from gaugeside.quantities.site import site_with_barometer as site_with_barometer
+from gaugeside.quantities.site import standard_atmosphere as standard_atmosphere
+from gaugeside.quantities.state_text import PROPERTIES as PROPERTIES
+from gaugeside.quantities.state_text import StateReading as StateReading
+from gaugeside.quantities.state_text import read_state as read_state
+from gaugeside.quantities.state_text import understood_state as understood_state
+from gaugeside.quantities.units import SI_UNIT as SI_UNIT
+from gaugeside.quantities.units import Kind as Kind
+from gaugeside.quantities.units import Sense as Sense
+from gaugeside.quantities.units import Unit as Unit
+from gaugeside.quantities.units import fold as fold
+from gaugeside.quantities.units import labels as labels
+from gaugeside.quantities.units import spellings as spellings
+from gaugeside.quantities.units import unit as unit

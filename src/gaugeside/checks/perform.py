@@ -1,0 +1,43 @@
+"""One request in plain JSON types, one reply in plain JSON types: the same in a helper process and outside."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from typing import Any
+
+from gaugeside.checks import CHECKS
+from gaugeside.checks.sheet import Conditions, answer
+from gaugeside.errors import Refusal
+from gaugeside.quantities import Dress, Kind, Site
+from gaugeside.refrigerants import Datum, find, open_fluid
+
+
+def request(
+    check: str, refrigerant: str, values: Mapping[str, Any], *, site: Site, datum: str, dress: Dress
+) -> dict[str, Any]:
+    """Return the request that asks for `check` on SI `values`."""
+    fahrenheit = dress.unit(Kind.TEMPERATURE).label == "°F"
+    return {
+        "check": check,
+        "refrigerant": refrigerant,
+        "values": dict(values),
+        "atmosphere": site.atmosphere,
+        "site": site.source,
+        "datum": datum,
+        # Origin and step of the whole degrees in which the reader counts.
+        "grid": [459.67 * 5 / 9, 10 / 9] if fahrenheit else [273.15, 1.0],
+    }
+
+
+def perform(asked: Mapping[str, Any]) -> dict[str, Any]:
+    """Return {"answer": ...} or, refused, {"error": {"field", "message", "hint"}}; other exceptions are faults."""
+    try:
+        found = find(asked["refrigerant"])
+        datum = Datum(asked["datum"])
+        origin, step = asked["grid"]
+        conditions = Conditions(
+            open_fluid(found, datum), found, datum, Site(asked["atmosphere"], asked["site"]), (origin, step)
+        )
+        return {"answer": answer(CHECKS[asked["check"]], conditions, asked["values"]).plain()}
+    except Refusal as refusal:
+        return {"error": {"field": refusal.field, "message": refusal.message, "hint": refusal.hint}}

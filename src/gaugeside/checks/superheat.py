@@ -1,0 +1,199 @@
+"""Superheat and subcooling from gauge pressures and pipe temperatures.
+
+Superheat counts from the dew point, subcooling from the bubble point, each at the pressure of the place where
+the pipe temperature is taken (EN 12900 and AHRI 540 rate compressors at dew points).
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+
+from gaugeside.checks.caution import discharge_cautions, model_note, refrigerant_caution, suction_caution
+from gaugeside.checks.sheet import Check, Conditions, Outcome, finding, reading
+from gaugeside.errors import OutOfRange, Refusal
+from gaugeside.quantities import Kind
+from gaugeside.refrigerants import State
+
+
+@dataclass(frozen=True)
+class Readings:
+    """What is typed; each pair is optional."""
+
+    suction_pressure: float | None = reading("suction pressure", Kind.PRESSURE, "At the suction gauge.")
+    suction_temperature: float | None = reading(
+        "suction pipe", Kind.TEMPERATURE, "Pipe at the evaporator outlet, or at the compressor for total superheat."
+    )
+    liquid_pressure: float | None = reading("liquid pressure", Kind.PRESSURE, "At the liquid line or receiver gauge.")
+    liquid_temperature: float | None = reading(
+        "liquid pipe", Kind.TEMPERATURE, "Liquid line where solid liquid matters, usually before the valve."
+    )
+    discharge_pressure: float | None = reading("discharge pressure", Kind.PRESSURE, "At the discharge gauge.")
+    discharge_temperature: float | None = reading(
+        "discharge pipe", Kind.TEMPERATURE, "Pipe close to the compressor's discharge."
+    )
+    suction_pressure_drop: float | None = reading(
+        "suction drop", Kind.PRESSURE_DIFFERENCE, "From the pipe clamp to the suction gauge; added to the gauge."
+    )
+    liquid_pressure_drop: float | None = reading(
+        "liquid drop", Kind.PRESSURE_DIFFERENCE, "From the liquid gauge to the pipe clamp; taken off the gauge."
+    )
+
+
+@dataclass
+class Findings:
+    """What follows, SI."""
+
+    superheat: float | None = finding("superheat", Kind.TEMPERATURE_DIFFERENCE, main=True)
+    subcooling: float | None = finding("subcooling", Kind.TEMPERATURE_DIFFERENCE, main=True)
+    discharge_superheat: float | None = finding("discharge superheat", Kind.TEMPERATURE_DIFFERENCE)
+    saturated_suction_temperature: float | None = finding("saturated suction", Kind.TEMPERATURE)
+    saturated_liquid_temperature: float | None = finding("saturated liquid", Kind.TEMPERATURE)
+    saturated_discharge_temperature: float | None = finding("saturated discharge", Kind.TEMPERATURE)
+    pressure_ratio: float | None = finding("pressure ratio", Kind.RATIO)
+
+
+def run(conditions: Conditions, readings: Readings) -> Outcome:
+    """Return what the pairs typed give: SH = T - T_dew(p), SC = T_bubble(p) - T, ratio of absolute pressures."""
+    if all(value is None for value in vars(readings).values()):
+        raise Refusal(
+            "No reading is typed.", "Type a pressure and the pipe temperature at the same place.", "suction_pressure"
+        )
+    outcome = Outcome(Findings())
+    for place in (_suction, _liquid, _discharge):
+        place(conditions, readings, outcome)
+    found: Findings = outcome.findings
+    if readings.suction_pressure is not None and readings.discharge_pressure is not None:
+        found.pressure_ratio = readings.discharge_pressure / readings.suction_pressure
+        outcome.remark("pressure_ratio", "absolute discharge over absolute suction pressure at the gauges")
+        if found.pressure_ratio < 1:
+            outcome.note("Discharge pressure is below suction pressure: the two may be swapped.")
+    discharge_cautions(outcome, readings.discharge_temperature, found.pressure_ratio)
+    refrigerant_caution(conditions, outcome)
+    model_note(conditions, outcome)
+    return outcome
+
+
+def _suction(conditions: Conditions, readings: Readings, outcome: Outcome) -> None:
+    pressure = _at_clamp(outcome, readings, "suction", +1)
+    if pressure is None:
+        return
+    suction_caution(conditions, outcome, pressure)
+    dew = _saturated(conditions.fluid.dew_at_pressure, pressure, "suction_pressure", outcome)
+    if dew is None:
+        return
+    found: Findings = outcome.findings
+    found.saturated_suction_temperature = dew.temperature
+    mean = (dew.temperature + conditions.fluid.bubble_at_pressure(pressure).temperature) / 2
+    _say_which(conditions, outcome, "saturated_suction_temperature", "dew point", mean)
+    if readings.suction_temperature is not None:
+        found.superheat = readings.suction_temperature - dew.temperature
+        outcome.remark("superheat", "above the dew point {dew}", dew=(dew.temperature, Kind.TEMPERATURE))
+        if found.superheat < 0:
+            outcome.remark("superheat", "BELOW the dew point {dew}", dew=(dew.temperature, Kind.TEMPERATURE))
+            _impossible(outcome, "Superheat below zero", "vapour")
+
+
+def _liquid(conditions: Conditions, readings: Readings, outcome: Outcome) -> None:
+    pressure = _at_clamp(outcome, readings, "liquid", -1)
+    if pressure is None:
+        return
+    bubble = _saturated(conditions.fluid.bubble_at_pressure, pressure, "liquid_pressure", outcome)
+    if bubble is None:
+        return
+    found: Findings = outcome.findings
+    found.saturated_liquid_temperature = bubble.temperature
+    mean = (bubble.temperature + conditions.fluid.dew_at_pressure(pressure).temperature) / 2
+    _say_which(conditions, outcome, "saturated_liquid_temperature", "bubble point", mean)
+    if readings.liquid_temperature is not None:
+        found.subcooling = bubble.temperature - readings.liquid_temperature
+        outcome.remark("subcooling", "below the bubble point {bubble}", bubble=(bubble.temperature, Kind.TEMPERATURE))
+        if found.subcooling < 0:
+            outcome.remark(
+                "subcooling", "ABOVE the bubble point {bubble}", bubble=(bubble.temperature, Kind.TEMPERATURE)
+            )
+            _impossible(outcome, "Subcooling below zero", "liquid")
+
+
+def _discharge(conditions: Conditions, readings: Readings, outcome: Outcome) -> None:
+    pressure = _at_clamp(outcome, readings, "discharge", 0)
+    if pressure is None:
+        return
+    dew = _saturated(conditions.fluid.dew_at_pressure, pressure, "discharge_pressure", outcome)
+    if dew is None:
+        return
+    found: Findings = outcome.findings
+    found.saturated_discharge_temperature = dew.temperature
+    mean = (dew.temperature + conditions.fluid.bubble_at_pressure(pressure).temperature) / 2
+    _say_which(conditions, outcome, "saturated_discharge_temperature", "dew point", mean)
+    if readings.discharge_temperature is not None:
+        found.discharge_superheat = readings.discharge_temperature - dew.temperature
+        outcome.remark("discharge_superheat", "above the dew point {dew}", dew=(dew.temperature, Kind.TEMPERATURE))
+        if found.discharge_superheat < 0:
+            _impossible(outcome, "Discharge superheat below zero", "vapour")
+
+
+def _at_clamp(outcome: Outcome, readings: Readings, place: str, sign: int) -> float | None:
+    """Return the absolute pressure [Pa] where the pipe temperature is taken, or None when no pressure is typed."""
+    pressure: float | None = getattr(readings, f"{place}_pressure")
+    drop: float | None = getattr(readings, f"{place}_pressure_drop", None)
+    if pressure is None:
+        alone = f"{place}_temperature" if getattr(readings, f"{place}_temperature") is not None else None
+        alone = alone or (f"{place}_pressure_drop" if drop is not None else None)
+        if alone is not None:
+            outcome.unresolved = Refusal(
+                f"The {alone.replace('_', ' ')} has no {place} pressure beside it.",
+                f"Type the {place} pressure, or clear the {alone.split('_', 1)[1].replace('_', ' ')}.",
+                f"{place}_pressure",
+            )
+        return None
+    if drop is None:
+        return pressure
+    there = pressure + sign * drop
+    if there <= 0:
+        raise Refusal(
+            f"The {place} pressure drop is larger than the pressure itself.",
+            "Check the unit of the drop.",
+            f"{place}_pressure_drop",
+        )
+    outcome.note(
+        f"{place.capitalize()} pressure at the pipe clamp taken as {{there}}, gauge {'plus' if sign > 0 else 'less'} "
+        "the drop typed.",
+        there=(there, Kind.PRESSURE),
+    )
+    return there
+
+
+def _saturated(saturation: Callable[[float], State], pressure: float, name: str, outcome: Outcome) -> State | None:
+    """Return the saturated state, or None after saying why there is none."""
+    try:
+        return saturation(pressure)
+    except OutOfRange as refusal:
+        outcome.no_finding = outcome.no_finding or refusal.about(name)
+        place = name.split("_", 1)[0].capitalize()
+        outcome.note(f"{place}: {refusal.sentence()}".replace("{", "(").replace("}", ")"))
+        return None
+
+
+def _say_which(conditions: Conditions, outcome: Outcome, name: str, point: str, mean: float) -> None:
+    if conditions.refrigerant.nature == "zeotrope":
+        outcome.remark(name, f"{point}; mean of bubble and dew {{mean}}", mean=(mean, Kind.TEMPERATURE))
+    else:
+        outcome.remark(name, "at the pressure typed")
+
+
+def _impossible(outcome: Outcome, what: str, phase: str) -> None:
+    outcome.note(
+        f"{what} cannot be for settled {phase}: the flow there is two-phase, a sensor is off, or the refrigerant "
+        "or the gauge/absolute reference is wrong."
+    )
+
+
+CHECK = Check(
+    "superheat",
+    "superheat",
+    "Superheat, subcooling and saturated temperatures from pressures and pipe temperatures.",
+    Readings,
+    Findings,
+    run,
+)

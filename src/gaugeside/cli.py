@@ -1,0 +1,175 @@
+"""The command line: opens the app, or runs one check and prints."""
+
+from __future__ import annotations
+
+import argparse
+import json
+import os
+import re
+import sys
+from collections.abc import Sequence
+from pathlib import Path
+from typing import Any, NoReturn
+
+from gaugeside import __version__
+from gaugeside.errors import Refusal
+
+_MINUS_READING = re.compile(r"[-−]\s*[.,]?[0-9]")
+
+
+class _Parser(argparse.ArgumentParser):
+    """A parser whose complaints are refusals, so that --json can carry them."""
+
+    def error(self, message: str) -> NoReturn:
+        raise Refusal(f"{message[:1].upper()}{message[1:]}.", f"See '{self.prog} --help'.")
+
+
+def main(argv: Sequence[str] | None = None) -> int:
+    """Run the command line; return 0 for an answer, 2 for refused input, 1 for trouble of our own."""
+    words = [_shielded(word) for word in (sys.argv[1:] if argv is None else argv)]
+    as_json = "--json" in words
+    try:
+        arguments = _parser().parse_args(words)
+        if arguments.run is None:
+            return _open_app(arguments)
+        return int(arguments.run(arguments))
+    except Refusal as refusal:
+        return _refuse(refusal, as_json)
+    except BrokenPipeError:
+        # The reader went away, as `| head` does; nothing is left to say to it.
+        os.dup2(os.open(os.devnull, os.O_WRONLY), 1)
+        return 0
+
+
+def _shielded(word: str) -> str:
+    """Return a reading that starts with a minus sign so that it is not taken for an option."""
+    return f" {word}" if _MINUS_READING.match(word) else word
+
+
+def _refuse(refusal: Refusal, as_json: bool) -> int:
+    if as_json:
+        error = {"field": refusal.field, "message": refusal.message, "hint": refusal.hint}
+        print(json.dumps({"error": error}, ensure_ascii=False))
+    else:
+        field = f"{refusal.field.replace('_', ' ')}: " if refusal.field else ""
+        _print(f"{field}{refusal.sentence()}", sys.stderr)
+    return 2
+
+
+def _print(text: str, stream: Any = None) -> None:
+    from gaugeside.checks.view import ascii_only
+
+    stream = sys.stdout if stream is None else stream
+    if (stream.encoding or "ascii").lower().replace("-", "") not in ("utf8", "utf16", "utf32"):
+        text = ascii_only(text)
+    print(text, file=stream)
+
+
+def _parser() -> argparse.ArgumentParser:
+    from gaugeside.checks import CHECKS
+
+    parser = _Parser(
+        prog="gaugeside",
+        description="Saturation, superheat and subcooling, and the heat and power of a component, from readings in "
+        "any units. Without a command the app opens.",
+    )
+    parser.add_argument("--version", action="version", version=f"gaugeside {__version__}")
+    parser.add_argument("--logbook", type=Path, metavar="PATH", help="use this logbook file")
+    parser.set_defaults(run=None)
+    commands = parser.add_subparsers(title="commands", metavar="COMMAND")
+    for check in CHECKS.values():
+        _add_check(commands, check)
+    convert = commands.add_parser("convert", help="one reading in every unit of its kind")
+    convert.add_argument("reading")
+    _add_common(convert)
+    convert.set_defaults(run=_convert)
+    refrigerants = commands.add_parser("refrigerants", help="the catalogue, or the part of it that matches")
+    refrigerants.add_argument("part", nargs="?", default="", help="part of a designation, name or component")
+    refrigerants.add_argument("--json", action="store_true")
+    refrigerants.set_defaults(run=_refrigerants)
+    _add_logbook(commands)
+    return parser
+
+
+def _add_check(commands: Any, check: Any) -> None:
+    command = commands.add_parser(check.name, help=check.summary)
+    before = [line for line in check.reading_lines() if line.positional and line.choices]
+    after = [line for line in check.reading_lines() if line.positional and not line.choices]
+    for line in before:
+        command.add_argument(line.name, help=line.help)
+    command.add_argument("refrigerant", help="designation or common name: R-134a, 134a, CO2")
+    for line in after:
+        command.add_argument(line.name, help=line.help)
+    for line in check.reading_lines():
+        if not line.positional:
+            command.add_argument(f"--{line.name.replace('_', '-')}", default="", metavar="READING", help=line.help)
+    _add_common(command)
+    command.add_argument("--datum", choices=("iir", "ashrae", "nbp"), help="zero of the enthalpies")
+    command.add_argument("--keep", action="store_true", help="keep the calculation in the logbook")
+    command.add_argument("--tag", default=None, help="which machine, for the logbook")
+    command.add_argument("--note", default="", help="a note for the logbook")
+    command.set_defaults(run=_run_check, check=check)
+
+
+def _add_common(command: argparse.ArgumentParser) -> None:
+    where = command.add_mutually_exclusive_group()
+    where.add_argument("--altitude", metavar="READING", help="of the site, for example '1600 m'")
+    where.add_argument("--barometer", metavar="READING", help="at the site, for example '83 kPa'")
+    command.add_argument("--units", choices=("si", "ip"), help="units of the answer")
+    command.add_argument("--json", action="store_true", help="SI values as JSON")
+    command.add_argument("--logbook", type=Path, metavar="PATH", default=argparse.SUPPRESS, help=argparse.SUPPRESS)
+
+
+def _add_logbook(commands: Any) -> None:
+    command = commands.add_parser("logbook", help="what was kept")
+    actions = command.add_subparsers(title="actions", metavar="ACTION", required=True)
+    listing = actions.add_parser("list", help="entries, newest first")
+    listing.add_argument("words", nargs="*", help="only entries that hold all these words")
+    listing.add_argument("--most", type=int, default=200, help="how many at the most (200)")
+    showing = actions.add_parser("show", help="one entry whole")
+    showing.add_argument("number", type=int)
+    for action, run in ((listing, _logbook_list), (showing, _logbook_show)):
+        action.add_argument("--json", action="store_true")
+        action.add_argument("--logbook", type=Path, metavar="PATH", default=argparse.SUPPRESS, help=argparse.SUPPRESS)
+        action.set_defaults(run=run)
+
+
+def _open_app(arguments: argparse.Namespace) -> int:
+    if not (os.isatty(0) and os.isatty(2)) or os.environ.get("TERM", "") in ("", "dumb"):
+        raise Refusal(
+            "The app needs a terminal that can place text, and this is none.",
+            "Use the one-shot commands: gaugeside saturation R-134a '2.6 bar g', or gaugeside --help.",
+        )
+    from gaugeside.app.start import start
+
+    return start(arguments.logbook)
+
+
+def _run_check(arguments: argparse.Namespace) -> int:
+    from gaugeside.oneshot import run_check
+
+    return run_check(arguments, _print)
+
+
+def _convert(arguments: argparse.Namespace) -> int:
+    from gaugeside.oneshot import convert
+
+    return convert(arguments, _print)
+
+
+def _refrigerants(arguments: argparse.Namespace) -> int:
+    from gaugeside.oneshot import list_refrigerants
+
+    return list_refrigerants(arguments, _print)
+
+
+def _logbook_list(arguments: argparse.Namespace) -> int:
+    from gaugeside.oneshot import list_logbook
+
+    return list_logbook(arguments, _print)
+
+
+def _logbook_show(arguments: argparse.Namespace) -> int:
+    from gaugeside.oneshot import show_entry
+
+    return show_entry(arguments, _print)

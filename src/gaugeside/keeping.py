@@ -1,0 +1,77 @@
+"""From a calculation to the logbook entry that holds it."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from datetime import UTC, datetime
+
+from gaugeside import __version__
+from gaugeside.checks.sheet import Answer, Check, si_unit
+from gaugeside.checks.typed import TypedLine
+from gaugeside.checks.view import sentence, two_forms
+from gaugeside.logbook import Entry
+from gaugeside.quantities import Dress, Site
+from gaugeside.settings import Settings
+
+
+def entry_of(
+    check: Check,
+    answer: Answer,
+    typed: Mapping[str, TypedLine],
+    settings: Settings,
+    dress: Dress,
+    site: Site,
+    note: str,
+) -> Entry:
+    """Return the entry for one answered calculation: readings as typed, SI values, findings, what they rest on."""
+    values: dict[str, float] = {}
+    for name, line in typed.items():
+        if isinstance(line.value, float | int):
+            values[name] = float(line.value)
+        elif isinstance(line.value, Mapping):
+            values.update({f"{name}.{prop}": float(number) for prop, number in line.value.items()})
+    return Entry(
+        number=None,
+        kept_at=datetime.now(UTC),
+        check=check.name,
+        refrigerant=answer.refrigerant,
+        tag=settings.tag,
+        note=note,
+        readings={name: line.complete for name, line in typed.items() if line.complete},
+        options={
+            "site pressure": f"{site.atmosphere:.6g} Pa",
+            "site": site.source,
+            "site pressure from": settings.site_pressure_from,
+            "site pressure text": settings.site_pressure_text,
+            "bare pressure": settings.bare_pressure,
+            "datum": settings.datum,
+            "dress": settings.dress,
+        },
+        values=values,
+        findings=json_findings(check, answer),
+        notes=[sentence(remark, dress, site) for remark in answer.notes],
+        cautions=[sentence(remark, dress, site) for remark in answer.cautions],
+        headline=headline(check, answer, dress, site),
+        program_version=__version__,
+        library_version=answer.library_version,
+    )
+
+
+def json_findings(check: Check, answer: Answer) -> dict[str, dict[str, float | str]]:
+    """Return the findings as JSON carries them: name -> value in SI and its unit."""
+    return {
+        line.name: {"value": answer.findings[line.name], "unit": si_unit(line)}
+        for line in check.finding_lines()
+        if line.name in answer.findings
+    }
+
+
+def headline(check: Check, answer: Answer, dress: Dress, site: Site) -> str:
+    """Return the one line a list shows of an answer: what people came for."""
+    declared = [line for line in check.finding_lines() if line.name in answer.findings]
+    chosen = [line for line in declared if line.main] or declared
+    texts = []
+    for line in chosen[:3]:
+        value = answer.findings[line.name]
+        texts.append(f"{line.label} {value if isinstance(value, str) else two_forms(value, line.kind, dress, site)[0]}")
+    return ", ".join(texts)

@@ -1,0 +1,372 @@
+"""The one-shot commands: the same declarations as the panes, answered once, as text or as JSON."""
+
+from __future__ import annotations
+
+import json
+import textwrap
+from argparse import Namespace
+from collections.abc import Callable, Mapping
+from dataclasses import replace
+from typing import Any
+
+from gaugeside.checks.perform import perform, request
+from gaugeside.checks.sheet import Answer, Check, Entry
+from gaugeside.checks.typed import TypedLine, read_form
+from gaugeside.checks.view import (
+    FOOTNOTE,
+    TableText,
+    every_pressure,
+    every_unit,
+    findings,
+    sentence,
+    site_line,
+    table,
+)
+from gaugeside.errors import Refusal
+from gaugeside.keeping import entry_of, json_findings
+from gaugeside.logbook import Entry as LogbookEntry
+from gaugeside.logbook import Logbook
+from gaugeside.preferences import dress_of, overridden, site_of
+from gaugeside.quantities import (
+    PROPERTIES,
+    SI_UNIT,
+    Dress,
+    Kind,
+    Site,
+    example,
+    fold,
+    guard,
+    quoted,
+    read,
+    spellings,
+    split_number,
+    understood,
+    unit,
+    write,
+)
+from gaugeside.refrigerants import find, load_own, search
+from gaugeside.settings import Settings, load_settings, places
+
+Printer = Callable[[str], None]
+_WIDTH = 100
+
+
+def run_check(arguments: Namespace, say: Printer) -> int:
+    """Run one check on what the command line gives, print its sheet or its JSON, keep it when asked."""
+    check: Check = arguments.check
+    home = places(logbook=arguments.logbook)
+    remembered, _ = load_settings(home.settings_file)
+    settings = overridden(remembered, arguments.altitude, arguments.barometer, arguments.units)
+    settings = replace(settings, datum=arguments.datum or settings.datum)
+    if arguments.tag is not None:
+        settings = replace(settings, tag=arguments.tag)
+    load_own(home.settings_folder)
+    dress, site = dress_of(settings), site_of(settings)
+    refrigerant = _named(arguments.refrigerant)
+    typed = read_form(check, _texts(check, arguments), {}, dress, site)
+    for line in typed.values():
+        if line.refusal is not None:
+            raise line.refusal
+    asked = request(
+        check.name,
+        refrigerant,
+        {name: line.value for name, line in typed.items() if line.value is not None},
+        site=site,
+        datum=settings.datum,
+        dress=dress,
+    )
+    reply = perform(asked)
+    _raise_refused(reply.get("error"))
+    answer = Answer.from_plain(reply["answer"])
+    _raise_refused(answer.unresolved)
+    kept = ""
+    if arguments.keep:
+        entry = entry_of(check, answer, typed, settings, dress, site, arguments.note)
+        result = Logbook(home.logbook_file).keep(entry)
+        kept = f"{'already kept' if result.already else 'kept'} as entry {result.entry.number}"
+    if arguments.json:
+        say(json.dumps(_as_json(check, answer, typed, settings, dress, site, kept), ensure_ascii=False))
+    else:
+        say("\n".join(_as_text(check, answer, typed, dress, site)))
+        if kept:
+            say(f"Logbook: {kept}.")
+    return 0
+
+
+def _named(text: str) -> str:
+    try:
+        return find(text).designation
+    except Refusal as refusal:
+        raise refusal.about("refrigerant") from None
+
+
+def _raise_refused(error: Mapping[str, Any] | None) -> None:
+    if error is not None:
+        raise Refusal(error["message"], error["hint"] or "", error["field"])
+
+
+def _texts(check: Check, arguments: Namespace) -> dict[str, str]:
+    """Return what was typed for every reading; an option that is given but empty is refused."""
+    return {line.name: getattr(arguments, line.name) or "" for line in check.reading_lines()}
+
+
+def _as_json(
+    check: Check,
+    answer: Answer,
+    typed: Mapping[str, TypedLine],
+    settings: Settings,
+    dress: Dress,
+    site: Site,
+    kept: str,
+) -> dict[str, Any]:
+    document: dict[str, Any] = {
+        "check": check.name,
+        "refrigerant": answer.refrigerant,
+        "site": {"atmosphere": {"value": site.atmosphere, "unit": "Pa"}, "source": site.source},
+        "datum": settings.datum,
+        "readings": {
+            line.name: _reading_json(line.entry, line.kind, typed[line.name])
+            for line in check.reading_lines()
+            if typed[line.name].value is not None
+        },
+        "findings": json_findings(check, answer),
+        "tables": [
+            {
+                "title": raw.title,
+                "columns": [{"name": label, "unit": SI_UNIT[kind]} for label, kind in raw.columns],
+                "rows": [list(row) for row in raw.rows],
+            }
+            for raw in answer.tables
+        ],
+        "notes": [sentence(remark, dress, site) for remark in answer.notes],
+        "cautions": [sentence(remark, dress, site) for remark in answer.cautions],
+        "library_version": answer.library_version,
+    }
+    if kept:
+        document["kept"] = kept
+    return document
+
+
+def _reading_json(entry: Entry, kind: Kind, line: TypedLine) -> dict[str, Any]:
+    if entry is Entry.QUANTITY:
+        return {"value": line.value, "unit": SI_UNIT[kind], "typed": line.text.strip()}
+    if entry is Entry.CHOICE:
+        return {"value": line.value, "unit": "", "typed": line.text.strip()}
+    if entry is Entry.STATE:
+        values = {name: {"value": value, "unit": SI_UNIT[PROPERTIES[name]]} for name, value in line.value.items()}
+        return {"values": values, "typed": line.text.strip()}
+    ((name, value),) = line.value.items()
+    return {"value": value, "unit": SI_UNIT[Kind(name)], "kind": name, "typed": line.text.strip()}
+
+
+def _as_text(check: Check, answer: Answer, typed: Mapping[str, TypedLine], dress: Dress, site: Site) -> list[str]:
+    refrigerant = find(answer.refrigerant)
+    head = f"{refrigerant.designation}  {refrigerant.safety_class}  {refrigerant.nature}"
+    lines = [f"{head}   site {site_line(site)}", "-" * 78]
+    for declared in check.reading_lines():
+        line = typed[declared.name]
+        if line.value is not None:
+            first, second = line.understood
+            lines.append(f"{declared.label:<24}{line.text.strip():<18}  {first:<14} {second}".rstrip())
+    lines.append("-" * 78)
+    for found in findings(check, answer, dress, site):
+        lines.append(f"{found.label:<24}{found.first:<18}  {found.second:<14} {found.remark}".rstrip())
+    pressures = every_pressure(answer, dress, site) if check.name == "saturation" else None
+    for shown_table in [*([pressures] if pressures else []), *(table(raw, dress, site) for raw in answer.tables)]:
+        lines += ["", *table_lines(shown_table)]
+    lines.append("-" * 78)
+    for word, remarks in (("Caution: ", answer.cautions), ("Note: ", answer.notes)):
+        for remark in remarks:
+            lines += textwrap.wrap(word + sentence(remark, dress, site), _WIDTH, subsequent_indent="  ")
+    return [*lines, FOOTNOTE]
+
+
+def table_lines(shown_table: TableText) -> list[str]:
+    """Return a table as lines of text with columns flush right; the row that is the reading has a mark."""
+    widths = [
+        max(len(row[place]) for row in (shown_table.headings, *shown_table.rows))
+        for place in range(len(shown_table.headings))
+    ]
+    lines = [shown_table.title]
+    for number, row in enumerate((shown_table.headings, *shown_table.rows), -1):
+        cells = "  ".join(f"{cell:>{width}}" for cell, width in zip(row, widths, strict=True))
+        lines.append(f"{'>' if number == shown_table.marked else ' '} {cells}")
+    return lines
+
+
+def convert(arguments: Namespace, say: Printer) -> int:
+    """Print one reading in every unit of its kind."""
+    home = places(logbook=arguments.logbook)
+    remembered, _ = load_settings(home.settings_file)
+    settings = overridden(remembered, arguments.altitude, arguments.barometer, arguments.units)
+    dress, site = dress_of(settings), site_of(settings)
+    try:
+        kind = _kind_of(arguments.reading)
+        reading = read(arguments.reading, kind, dress.default(kind), dress, site)
+    except Refusal as refusal:
+        raise refusal.about("reading") from None
+    found: dict[str, dict[str, Any]]
+    if kind is Kind.PRESSURE:
+        found = {
+            "absolute_pressure": {"value": reading.value, "unit": "Pa"},
+            "gauge_pressure": {"value": reading.value - site.atmosphere, "unit": "Pa"},
+        }
+    else:
+        found = {kind.value.replace(" ", "_"): {"value": reading.value, "unit": SI_UNIT[kind]}}
+    notes = []
+    if kind is Kind.TEMPERATURE:
+        difference = read(arguments.reading, Kind.TEMPERATURE_DIFFERENCE, unit(Kind.TEMPERATURE_DIFFERENCE, "K"),
+                          dress, site)  # fmt: skip
+        texts = [write(difference.value, unit(difference.kind, label), difference.kind, site) for label in ("K", "°F")]
+        notes.append(f"Read as a temperature. As a temperature difference it would be {texts[0]} = {texts[1]}.")
+    if arguments.json:
+        say(
+            json.dumps(
+                {
+                    "check": "convert",
+                    "refrigerant": None,
+                    "site": {"atmosphere": {"value": site.atmosphere, "unit": "Pa"}, "source": site.source},
+                    "readings": {"reading": {"value": reading.value, "unit": SI_UNIT[kind], "kind": kind.value,
+                                             "typed": arguments.reading.strip()}},
+                    "findings": found,
+                    "notes": notes,
+                    "cautions": [],
+                },
+                ensure_ascii=False,
+            )
+        )  # fmt: skip
+        return 0
+    first, second = understood(reading, dress, site)
+    say(f"{arguments.reading.strip()}   {kind.value}: {first}{' = ' + second if second else ''}")
+    if kind is Kind.PRESSURE:
+        say(f"site {site_line(site)}")
+    for text in every_unit(reading.value, kind, site):
+        say(f"  {text}")
+    for note in notes:
+        say(f"Note: {note}")
+    return 0
+
+
+def _kind_of(text: str) -> Kind:
+    """Return the kind whose unit the text carries, a temperature before a difference; Refusal without a unit."""
+    _, unit_text = split_number(guard(text))
+    if not unit_text:
+        raise Refusal(f"{quoted(text)} has no unit.", "Type the unit too, for example 12.4 bar g or 185 psig.")
+    folded = fold(unit_text)
+    for kind in Kind:
+        if kind in (Kind.ABSOLUTE_PRESSURE, Kind.PRESSURE_DIFFERENCE, Kind.WORDS, Kind.RATIO):
+            continue
+        if folded in spellings(kind):
+            return kind
+    if folded in spellings(Kind.PRESSURE_DIFFERENCE):
+        return Kind.PRESSURE_DIFFERENCE
+    # Not a unit of any kind: the refusal of the likeliest kind offers the nearest spelling.
+    read(text, _nearest_kind(folded), unit(Kind.PRESSURE, "bar g"), Dress(), Site())
+    raise Refusal(f"{quoted(text)} is not understood.", f"Write for example {example(Kind.PRESSURE)}.")
+
+
+def _nearest_kind(folded: str) -> Kind:
+    import difflib
+
+    best = {
+        kind: max((difflib.SequenceMatcher(None, folded, s).ratio() for s in spellings(kind)), default=0.0)
+        for kind in Kind
+        if kind is not Kind.WORDS
+    }
+    return max(best, key=lambda kind: best[kind])
+
+
+def list_refrigerants(arguments: Namespace, say: Printer) -> int:
+    """Print the catalogue, or what of it matches a part of a name."""
+    home = places()
+    troubles = load_own(home.settings_folder)
+    found = search(arguments.part)
+    if not found:
+        find(arguments.part)
+    if arguments.json:
+        documents = [
+            {
+                "designation": r.designation, "names": list(r.names), "nature": r.nature, "modelled": r.modelled,
+                "reason": r.reason, "safety_class": r.safety_class, "gwp": r.gwp, "gwp_source": r.gwp_source,
+                "composition": dict(r.composition),
+                "critical_temperature": {"value": r.critical_temperature, "unit": "K"},
+                "critical_pressure": {"value": r.critical_pressure, "unit": "Pa"},
+                "model_uncertainty": {"value": r.model_uncertainty, "unit": "K"},
+            }
+            for r in found
+        ]  # fmt: skip
+        say(json.dumps({"refrigerants": documents, "notes": troubles}, ensure_ascii=False))
+        return 0
+    for r in found:
+        say(refrigerant_line(r))
+    for source in sorted({r.gwp_source for r in found if r.gwp is not None}):
+        say(f"GWP: {source}.")
+    for trouble in troubles:
+        say(f"Note: {trouble}")
+    return 0
+
+
+def refrigerant_line(r: Any) -> str:
+    """Return one line about a refrigerant: designation, class, nature, GWP, composition or names."""
+    gwp = "GWP -" if r.gwp is None else f"GWP {r.gwp:.0f}"
+    mass = " ".join(f"{name.removeprefix('R-')} {100 * fraction:.4g} %" for name, fraction in r.composition)
+    what = ", ".join(r.names) if len(r.composition) < 2 else mass
+    tail = what if r.modelled else f"NOT MODELLED: {r.reason}"
+    return f"{r.designation:<12}{r.safety_class or '-':<5}{r.nature:<10}{gwp:<11}{tail}".rstrip()
+
+
+def list_logbook(arguments: Namespace, say: Printer) -> int:
+    """Print the logbook's entries, newest first."""
+    logbook = Logbook(places(logbook=arguments.logbook).logbook_file)
+    found = logbook.entries(" ".join(arguments.words), limit=max(1, arguments.most))
+    if arguments.json:
+        say(json.dumps({"entries": [entry_json(entry) for entry in found]}, ensure_ascii=False))
+        return 0
+    for entry in found:
+        say(entry_line(entry))
+    if not found:
+        say("No entry." if arguments.words else "The logbook is empty.")
+    return 0
+
+
+def show_entry(arguments: Namespace, say: Printer) -> int:
+    """Print one entry whole."""
+    entry = Logbook(places(logbook=arguments.logbook).logbook_file).entry(arguments.number)
+    if arguments.json:
+        say(json.dumps(entry_json(entry), ensure_ascii=False))
+        return 0
+    say(entry_line(entry))
+    for name, text in entry.readings.items():
+        say(f"  {name.replace('_', ' '):<24}{text}")
+    say(f"  {entry.headline}")
+    for text in (*entry.cautions, *entry.notes):
+        say(f"  {text}")
+    return 0
+
+
+def entry_line(entry: LogbookEntry) -> str:
+    """Return one entry as one line."""
+    when = entry.kept_at.astimezone().strftime("%Y-%m-%d %H:%M")
+    parts = (f"{entry.number:>4}", when, entry.check, entry.refrigerant, entry.tag, entry.headline, entry.note)
+    return "  ".join(part for part in parts if part)
+
+
+def entry_json(entry: LogbookEntry) -> dict[str, Any]:
+    """Return one entry as JSON types."""
+    return {
+        "number": entry.number,
+        "kept_at": entry.kept_at.isoformat(),
+        "check": entry.check,
+        "refrigerant": entry.refrigerant,
+        "tag": entry.tag,
+        "note": entry.note,
+        "readings": entry.readings,
+        "options": entry.options,
+        "values": entry.values,
+        "findings": entry.findings,
+        "notes": entry.notes,
+        "cautions": entry.cautions,
+        "headline": entry.headline,
+        "program_version": entry.program_version,
+        "library_version": entry.library_version,
+    }
