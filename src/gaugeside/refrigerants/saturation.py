@@ -1,0 +1,388 @@
+"""Bubble and dew curves by continuation: nodes along each curve, and points polished between them.
+
+The library's own saturation calls have holes for blends and now and then meet a wrong root. Starting
+from one point that passed the checks and going on in small steps, each from a guess extrapolated from
+the points before it, closes the holes; every point is checked for stable phases and equal fugacities.
+"""
+
+from __future__ import annotations
+
+import math
+from bisect import bisect_left
+from collections.abc import Sequence
+from dataclasses import dataclass
+from itertools import pairwise
+from typing import Protocol
+
+from . import library
+from .library import DENSITY_TEMPERATURE, Guesses
+from .phases import NoRoot, Phase
+
+BUBBLE = 0
+DEW = 1
+
+WIDEST_STEP = 5.0
+NARROWEST_STEP = 0.004
+# Starting points, as parts of the critical temperature: where most blends converge without help.
+STARTS = (0.70, 0.72, 0.68, 0.75, 0.65, 0.78, 0.62, 0.80, 0.58, 0.84)
+
+
+@dataclass(frozen=True, slots=True)
+class Point:
+    """A point of a saturation curve, molar units.
+
+    other: mole fractions of the incipient phase, vapour on the bubble and liquid on the dew curve.
+    """
+
+    temperature: float
+    pressure: float
+    liquid_density: float
+    vapour_density: float
+    other: tuple[float, ...]
+
+    def coordinates(self) -> tuple[float, ...]:
+        """The quantities that run smoothly along the curve."""
+        return (
+            self.temperature,
+            math.log(self.pressure),
+            math.log(self.liquid_density),
+            math.log(self.vapour_density),
+            *(math.log(max(x, 1e-300)) for x in self.other),
+        )
+
+
+def point_from(coordinates: Sequence[float]) -> Point:
+    """Return the point with these coordinates, its composition made to sum to one."""
+    other = [math.exp(x) for x in coordinates[4:]]
+    total = sum(other)
+    return Point(
+        coordinates[0],
+        math.exp(coordinates[1]),
+        math.exp(coordinates[2]),
+        math.exp(coordinates[3]),
+        tuple(x / total for x in other),
+    )
+
+
+class Solver(Protocol):
+    """Finds one saturation point near a guess and vouches for it."""
+
+    def start(self, temperature: float, side: int) -> Point:
+        """Return the point at a temperature [K] without a guess; raises NoRoot."""
+
+    def at_temperature(self, temperature: float, side: int, guess: Point) -> Point:
+        """Return the point at a temperature [K]; raises NoRoot."""
+
+    def at_pressure(self, pressure: float, side: int, guess: Point) -> Point:
+        """Return the point at a pressure [Pa]; raises NoRoot."""
+
+
+class PureSolver:
+    """Equal pressures and Gibbs energies of the two phases of a pure fluid (Maxwell's criterion)."""
+
+    def __init__(self, liquid: Phase, vapour: Phase, fluid: str) -> None:
+        self._liquid = liquid
+        self._vapour = vapour
+        self._plain = library.open_state(fluid)
+
+    def start(self, temperature: float, side: int) -> Point:
+        try:
+            self._plain.update(library.TEMPERATURE_QUALITY, 0.0, temperature)
+            liquid = self._plain.saturated_liquid_keyed_output(library.D)
+            vapour = self._plain.saturated_vapor_keyed_output(library.D)
+        except ValueError as error:
+            raise NoRoot(str(error)) from error
+        return self.at_temperature(temperature, side, Point(temperature, 1.0, liquid, vapour, (1.0,)))
+
+    def at_temperature(self, temperature: float, side: int, guess: Point) -> Point:
+        return self._solve(temperature, None, guess)
+
+    def at_pressure(self, pressure: float, side: int, guess: Point) -> Point:
+        return self._solve(guess.temperature, pressure, guess)
+
+    def _solve(self, temperature: float, target: float | None, guess: Point) -> Point:
+        """Newton's method; with a target pressure the temperature moves along the Clapeyron slope."""
+        liquid, vapour = self._liquid.state, self._vapour.state
+        dense, thin = guess.liquid_density, guess.vapour_density
+        for _ in range(30):
+            if not dense > thin > 0.0:
+                raise NoRoot("the phases have merged")
+            liquid.update(DENSITY_TEMPERATURE, dense, temperature)
+            vapour.update(DENSITY_TEMPERATURE, thin, temperature)
+            stiff, soft = self._liquid.stiffness(), self._vapour.stiffness()
+            if not (stiff > 0.0 and soft > 0.0):
+                raise NoRoot("unstable phase")
+            low, high = liquid.p(), vapour.p()
+            shrink = 1.0 / dense - 1.0 / thin
+            level = (
+                vapour.gibbsmolar() - liquid.gibbsmolar() + low / dense - high / thin
+            ) / shrink
+            warmer = 0.0
+            if target is not None:
+                warmer = (target - level) * shrink / (liquid.smolar() - vapour.smolar())
+                level = target
+            up = (level - low - self._liquid.pressure_slope() * warmer) / stiff
+            down = (level - high - self._vapour.pressure_slope() * warmer) / soft
+            if abs(up) > 0.3 * dense or abs(down) > 0.7 * thin:
+                raise NoRoot("guess too far off")
+            dense, thin, temperature = dense + up, thin + down, temperature + warmer
+            if abs(up) < 1e-9 * dense and abs(down) < 1e-9 * thin and abs(warmer) < 1e-9 * temperature:
+                return Point(temperature, level, dense, thin, (1.0,))
+        raise NoRoot("saturation does not settle")
+
+
+class BlendSolver:
+    """The library's guided solver for a blend, each result checked against the equal-fugacity condition."""
+
+    # Newton's method in the library stops near 1e-9; a wrong root is off by orders of magnitude.
+    LARGEST_RESIDUAL = 2e-7
+
+    def __init__(
+        self, liquid: Phase, vapour: Phase, fluid: str, mass_fractions: Sequence[float] | None
+    ) -> None:
+        self._liquid = liquid
+        self._vapour = vapour
+        self._whole = tuple(liquid.whole)
+        self._state = library.open_state(fluid, mass_fractions)
+        self._guesses = Guesses()
+
+    def start(self, temperature: float, side: int) -> Point:
+        try:
+            self._state.update(library.TEMPERATURE_QUALITY, float(side), temperature)
+        except ValueError as error:
+            raise NoRoot(str(error)) from error
+        return self._vouch(side)
+
+    def at_temperature(self, temperature: float, side: int, guess: Point) -> Point:
+        return self._solve(library.TEMPERATURE_QUALITY, float(side), temperature, side, guess)
+
+    def at_pressure(self, pressure: float, side: int, guess: Point) -> Point:
+        return self._solve(library.PRESSURE_QUALITY, pressure, float(side), side, guess)
+
+    def _solve(self, pair: int, first: float, second: float, side: int, guess: Point) -> Point:
+        guesses = self._guesses
+        guesses.T = guess.temperature
+        guesses.p = guess.pressure
+        guesses.rhomolar_liq = guess.liquid_density
+        guesses.rhomolar_vap = guess.vapour_density
+        guesses.rhomolar = guess.liquid_density if side == BUBBLE else guess.vapour_density
+        guesses.x = self._whole if side == BUBBLE else guess.other
+        guesses.y = guess.other if side == BUBBLE else self._whole
+        try:
+            self._state.update_with_guesses(pair, first, second, guesses)
+        except ValueError as error:
+            raise NoRoot(str(error)) from error
+        return self._vouch(side)
+
+    def _vouch(self, side: int) -> Point:
+        """Return the point the library arrived at; raises NoRoot when the two phases do not balance."""
+        state = self._state
+        temperature, pressure = float(state.T()), float(state.p())
+        dense = float(state.saturated_liquid_keyed_output(library.D))
+        thin = float(state.saturated_vapor_keyed_output(library.D))
+        other = state.mole_fractions_vapor() if side == BUBBLE else state.mole_fractions_liquid()
+        if not (math.isfinite(temperature) and pressure > 0.0 and dense > 1.0005 * thin > 0.0):
+            raise NoRoot("the phases have merged")
+        if not all(x > 0.0 for x in other):
+            raise NoRoot("negative composition")
+        self._liquid.compose(self._whole if side == BUBBLE else other)
+        self._vapour.compose(other if side == BUBBLE else self._whole)
+        exact_dense = self._liquid.settle(pressure, temperature, dense)
+        exact_thin = self._vapour.settle(pressure, temperature, thin)
+        if abs(exact_dense - dense) > 1e-5 * dense or abs(exact_thin - thin) > 1e-5 * thin:
+            raise NoRoot("the phases differ in pressure")
+        pairs = zip(self._liquid.log_fugacities(), self._vapour.log_fugacities(), strict=True)
+        if max(abs(a - b) for a, b in pairs) > self.LARGEST_RESIDUAL:
+            raise NoRoot("the phases differ in fugacity")
+        return Point(temperature, pressure, exact_dense, exact_thin, tuple(other))
+
+
+def lagrange(abscissas: Sequence[float], at: float) -> list[float]:
+    """Weights of the values at these abscissas in the polynomial through them, evaluated at `at`."""
+    weights = []
+    for i, own in enumerate(abscissas):
+        weight = 1.0
+        for j, other in enumerate(abscissas):
+            if i != j:
+                weight *= (at - other) / (own - other)
+        weights.append(weight)
+    return weights
+
+
+class Curve:
+    """One saturation curve of one refrigerant, its nodes laid as they are asked for."""
+
+    def __init__(
+        self, solver: Solver, side: int, floor: float, critical_temperature: float, top: float
+    ) -> None:
+        """floor, top: lowest and highest temperature laid [K]."""
+        self._solver = solver
+        self._side = side
+        self._floor = floor
+        self._critical = critical_temperature
+        self._top = top
+        self._nodes: list[tuple[float, ...]] = []
+        self._temperatures: list[float] = []
+        self._log_pressures: list[float] = []
+        self._ended = {-1: False, 1: False}
+        self._step = {-1: 2.0, 1: 2.0}
+
+    # --- what there is
+
+    @property
+    def lowest(self) -> Point:
+        """The last point below, laying all nodes down to it."""
+        self._lay(-1, until=lambda: False)
+        return point_from(self._nodes[0])
+
+    @property
+    def highest(self) -> Point:
+        """The last point above, laying all nodes up to it."""
+        self._lay(1, until=lambda: False)
+        return point_from(self._nodes[-1])
+
+    def reaches(self, temperature: float) -> bool:
+        """Whether the curve has a point at a temperature [K]."""
+        self._reach(temperature, self._temperatures)
+        return self._temperatures[0] - 1e-9 <= temperature <= self._temperatures[-1] + 1e-9
+
+    def reaches_pressure(self, pressure: float) -> bool:
+        """Whether the curve has a point at a pressure [Pa]."""
+        log = math.log(pressure)
+        self._reach(log, self._log_pressures)
+        return self._log_pressures[0] - 1e-12 <= log <= self._log_pressures[-1] + 1e-12
+
+    # --- points
+
+    def guess_at_temperature(self, temperature: float) -> Point:
+        """Return an interpolated point, good to about 1e-5; raises NoRoot outside the curve."""
+        self._reach(temperature, self._temperatures)
+        return point_from(self._interpolate(temperature, self._temperatures))
+
+    def guess_pressure(self, temperature: float) -> float:
+        """Return the interpolated pressure at a temperature [Pa], good to about 1e-5."""
+        self._reach(temperature, self._temperatures)
+        first, weights = self._weights(temperature, self._temperatures)
+        return math.exp(sum(w * self._log_pressures[first + i] for i, w in enumerate(weights)))
+
+    def at_temperature(self, temperature: float) -> Point:
+        """Return the point at a temperature [K]; raises NoRoot outside the curve."""
+        guess = self.guess_at_temperature(temperature)
+        point = self._solver.at_temperature(temperature, self._side, guess)
+        self._near(point, guess)
+        return point
+
+    def at_pressure(self, pressure: float) -> Point:
+        """Return the point at a pressure [Pa]; raises NoRoot outside the curve."""
+        log = math.log(pressure)
+        self._reach(log, self._log_pressures)
+        guess = point_from(self._interpolate(log, self._log_pressures))
+        point = self._solver.at_pressure(pressure, self._side, guess)
+        self._near(point, guess)
+        return point
+
+    @staticmethod
+    def _near(point: Point, guess: Point) -> None:
+        """A root away from its neighbours is a wrong one, however well it balances."""
+        if (
+            abs(math.log(point.pressure / guess.pressure)) > 0.005
+            or abs(point.temperature - guess.temperature) > 0.3
+            or abs(math.log(point.vapour_density / guess.vapour_density)) > 0.1
+        ):
+            raise NoRoot("off the curve")
+
+    # --- nodes
+
+    def _reach(self, wanted: float, axis: list[float]) -> None:
+        """Lay nodes until `axis` covers a value with a spare node on each side, or the curve ends."""
+        if not self._nodes:
+            self._begin()
+        if wanted >= axis[-2]:
+            self._lay(1, until=lambda: axis[-2] > wanted)
+        if wanted <= axis[1]:
+            self._lay(-1, until=lambda: axis[1] < wanted)
+
+    def _begin(self) -> None:
+        for part in STARTS:
+            temperature = max(part * self._critical, self._floor + 1.0)
+            if temperature >= self._top:
+                continue
+            try:
+                first = self._solver.start(temperature, self._side)
+                second = self._solver.at_temperature(temperature + 0.5, self._side, first)
+            except NoRoot:
+                continue
+            slope = math.log(second.pressure / first.pressure) / 0.5
+            # ln p of any fluid rises by 6 to 9 per unit of ln T around 0.7 of the critical temperature
+            # and more below; a root outside this is not a saturation state.
+            if 3.0 < slope * temperature < 60.0:
+                self._insert(first, 1)
+                self._insert(second, 1)
+                return
+        raise NoRoot("no starting point found")
+
+    def _insert(self, point: Point, direction: int) -> None:
+        place = len(self._nodes) if direction > 0 else 0
+        self._nodes.insert(place, point.coordinates())
+        self._temperatures.insert(place, point.temperature)
+        self._log_pressures.insert(place, math.log(point.pressure))
+
+    def _lay(self, direction: int, until: object) -> None:
+        if not self._nodes:
+            self._begin()
+        while not self._ended[direction] and not until():  # type: ignore[operator]
+            self._advance(direction)
+
+    def _advance(self, direction: int) -> None:
+        """Lay one more node, or note that the curve ends here."""
+        edge = self._temperatures[-1 if direction > 0 else 0]
+        limit = self._top if direction > 0 else self._floor
+        room = abs(limit - edge)
+        if room < 1e-7:
+            self._ended[direction] = True
+            return
+        step = min(self._step[direction], WIDEST_STEP, room)
+        if direction > 0 and self._critical > edge:
+            step = min(step, max(0.25 * (self._critical - edge), 0.02))
+        if room - step < 0.3 * step:
+            step = room if room < 1.3 * step else step
+        while step > NARROWEST_STEP or step == room:
+            try:
+                self._insert(self._following(edge + direction * step, direction), direction)
+            except NoRoot:
+                step *= 0.5
+                continue
+            self._step[direction] = 1.6 * step
+            return
+        self._ended[direction] = True
+
+    def _following(self, temperature: float, direction: int) -> Point:
+        count = min(4, len(self._nodes))
+        near = self._nodes[-count:] if direction > 0 else self._nodes[:count]
+        weights = lagrange([n[0] for n in near], temperature)
+        guess = point_from([sum(w * n[i] for w, n in zip(weights, near, strict=True)) for i in range(len(near[0]))])
+        point = self._solver.at_temperature(temperature, self._side, guess)
+        edge = self._log_pressures[-1 if direction > 0 else 0]
+        if (math.log(point.pressure) - edge) * direction <= 0.0:
+            raise NoRoot("pressure falls with temperature")
+        if abs(math.log(point.pressure / guess.pressure)) > 0.02:
+            raise NoRoot("off the curve")
+        if abs(math.log(point.vapour_density / guess.vapour_density)) > 0.1:
+            raise NoRoot("off the curve")
+        return point
+
+    def _weights(self, wanted: float, axis: list[float]) -> tuple[int, list[float]]:
+        if not axis[0] - 1e-9 <= wanted <= axis[-1] + 1e-9:
+            raise NoRoot("outside the curve")
+        count = min(4, len(axis))
+        first = min(max(bisect_left(axis, wanted) - 2, 0), len(axis) - count)
+        return first, lagrange(axis[first : first + count], wanted)
+
+    def _interpolate(self, wanted: float, axis: list[float]) -> list[float]:
+        first, weights = self._weights(wanted, axis)
+        near = self._nodes[first : first + len(weights)]
+        return [sum(w * n[i] for w, n in zip(weights, near, strict=True)) for i in range(len(near[0]))]
+
+    def is_rising(self) -> bool:
+        """Whether pressure rises from node to node."""
+        return all(a < b for a, b in pairwise(self._log_pressures))
