@@ -179,8 +179,11 @@ class _Flash:
         ratios = [
             between(y / z, z / x) for x, y, z in zip(dew.other, bubble.other, self.whole, strict=True)
         ]
-        self.temperature = between(bubble.temperature, dew.temperature)
-        self.pressure = between(bubble.pressure, dew.pressure)
+        self.temperature, self.pressure = bubble.temperature, bubble.pressure
+        if self.pressure_given:
+            self.temperature = between(bubble.temperature, dew.temperature)
+        else:
+            self.pressure = between(bubble.pressure, dew.pressure)
         self.dense = between(bubble.liquid_density, dew.liquid_density)
         self.thin = between(bubble.vapour_density, dew.vapour_density)
         free = self.temperature if self.pressure_given else self.pressure

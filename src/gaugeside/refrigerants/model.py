@@ -8,8 +8,8 @@ from ..errors import NotModelled
 from . import library
 from .catalogue import Refrigerant
 from .limits import Limits
-from .phases import Phase
-from .saturation import BUBBLE, DEW, BlendSolver, Curve, PureSolver
+from .phases import NoRoot, Phase
+from .saturation import BUBBLE, DEW, BlendSolver, Curve, PureSolver, Solver
 
 # How near the critical temperature the curves are laid [K]; answers are given only farther away.
 PURE_END = 0.05
@@ -17,6 +17,8 @@ BLEND_END = 0.2
 # A blend's own limits are averages of its components'; beyond these no machine runs anyway.
 HOTTEST_BLEND = 480.0
 HIGHEST_PRESSURE = 100e6
+# A blend is offered down to the temperature at which its dew pressure is this.
+LOWEST_PRESSURE = 1e3
 
 
 @dataclass(frozen=True, slots=True)
@@ -25,6 +27,27 @@ class Window:
 
     pressure: float
     temperature: float
+
+
+def traced_ends(solver: Solver, liquid: Phase) -> tuple[float, float, float]:
+    """Return critical temperature [K], critical pressure [Pa] and lowest temperature [K] of a blend.
+
+    Found by following the bubble curve until the two phases become alike and the dew curve down to 1 kPa:
+    milliseconds, where the library's own search for critical points takes up to half a minute. For the blends
+    of the catalogue the two agree within 0.1 K and 0.5 %. Raises NotModelled where no curve can be followed.
+    """
+    beyond = 1.1 * float(liquid.state.T_reducing())
+    coldest = max(float(liquid.state.Tmin()), 0.3 * beyond)
+    try:
+        temperature, pressure = Curve(solver, BUBBLE, coldest, beyond, beyond).end_of_two_phases()
+        dew = Curve(solver, DEW, coldest, temperature, temperature - BLEND_END)
+        floor = dew.at_pressure(LOWEST_PRESSURE).temperature if dew.reaches_pressure(LOWEST_PRESSURE) else 0.0
+        return temperature, pressure, max(floor, dew.lowest.temperature)
+    except NoRoot as error:
+        raise NotModelled(
+            "The model of this blend has no bubble curve that can be followed to a critical point.",
+            "Check its composition.",
+        ) from error
 
 
 class Model:
@@ -52,16 +75,18 @@ class Model:
         hottest, highest = float(state.Tmax()), min(float(state.pmax()), HIGHEST_PRESSURE)
         critical_temperature = refrigerant.critical_temperature
         critical_pressure = refrigerant.critical_pressure
+        floor = refrigerant.minimum_temperature
+        if not critical_temperature:
+            critical_temperature, critical_pressure, floor = traced_ends(solver, self.liquid)
         self.limits = Limits(
             designation=refrigerant.designation,
             critical_temperature=critical_temperature,
             critical_pressure=critical_pressure,
-            minimum_temperature=refrigerant.minimum_temperature,
+            minimum_temperature=floor,
             maximum_temperature=min(hottest, HOTTEST_BLEND) if self.blend else hottest,
             maximum_pressure=highest,
             pure=not self.blend,
         )
-        floor = refrigerant.minimum_temperature
         top = critical_temperature - (BLEND_END if self.blend else PURE_END)
         self.bubble = Curve(solver, BUBBLE, floor, critical_temperature, top)
         self.dew = Curve(solver, DEW, floor, critical_temperature, top) if self.blend else self.bubble

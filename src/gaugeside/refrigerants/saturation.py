@@ -9,9 +9,8 @@ from __future__ import annotations
 
 import math
 from bisect import bisect_left
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
-from itertools import pairwise
 from typing import Protocol
 
 from . import library
@@ -327,10 +326,10 @@ class Curve:
         self._temperatures.insert(place, point.temperature)
         self._log_pressures.insert(place, math.log(point.pressure))
 
-    def _lay(self, direction: int, until: object) -> None:
+    def _lay(self, direction: int, until: Callable[[], bool]) -> None:
         if not self._nodes:
             self._begin()
-        while not self._ended[direction] and not until():  # type: ignore[operator]
+        while not self._ended[direction] and not until():
             self._advance(direction)
 
     def _advance(self, direction: int) -> None:
@@ -367,7 +366,10 @@ class Curve:
             raise NoRoot("pressure falls with temperature")
         if abs(math.log(point.pressure / guess.pressure)) > 0.02:
             raise NoRoot("off the curve")
-        if abs(math.log(point.vapour_density / guess.vapour_density)) > 0.1:
+        if (
+            abs(math.log(point.vapour_density / guess.vapour_density)) > 0.05
+            or abs(math.log(point.liquid_density / guess.liquid_density)) > 0.02
+        ):
             raise NoRoot("off the curve")
         return point
 
@@ -383,6 +385,17 @@ class Curve:
         near = self._nodes[first : first + len(weights)]
         return [sum(w * n[i] for w, n in zip(weights, near, strict=True)) for i in range(len(near[0]))]
 
-    def is_rising(self) -> bool:
-        """Whether pressure rises from node to node."""
-        return all(a < b for a, b in pairwise(self._log_pressures))
+    def end_of_two_phases(self) -> tuple[float, float]:
+        """Return the temperature [K] and pressure [Pa] at which both phases would have one density.
+
+        The last nodes are continued to equal densities; on the bubble curve that is the critical point.
+        Raises NoRoot when the curve does not come near it.
+        """
+        self._lay(1, until=lambda: False)
+        last = self._nodes[-3:]
+        ratios = [node[2] - node[3] for node in last]
+        if len(last) < 3 or not 0.0 < ratios[-1] < 0.5:
+            raise NoRoot("the curve does not reach its critical point")
+        weights = lagrange(ratios, 0.0)
+        temperature, log_pressure = (sum(w * n[i] for w, n in zip(weights, last, strict=True)) for i in (0, 1))
+        return temperature, math.exp(log_pressure)
