@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import re
+import sys
 from pathlib import Path
 
 import pytest
@@ -17,6 +19,7 @@ from textual.widgets import Input, OptionList, Static
 from gaugeside.app import themes as module
 from gaugeside.app.themes import ThemeFault, load_themes, pick_theme, read_theme
 from gaugeside.settings import Settings
+from terminal.harness import Terminal
 
 SHIPPED = {
     "log sheet dark",
@@ -109,7 +112,7 @@ def test_no_colour_has_none() -> None:
 class Everything(App[None]):
     """A field, a list and a line in the colours of a theme."""
 
-    CSS = "Static { color: $warning; background: $panel; border: ascii $border-blurred; }"
+    CSS = module.CURSOR_STYLE + "Static { color: $warning; background: $panel; border: ascii $border-blurred; }"
 
     def compose(self) -> ComposeResult:
         yield Input("12.4 bar g")
@@ -127,6 +130,33 @@ async def test_every_shipped_theme_paints() -> None:
             await pilot.pause()
             assert app.current_theme.name == name
         await pilot.press("tab", "down")
+
+
+@pytest.mark.parametrize(
+    ("name", "environ", "allowed"),
+    [
+        ("terminal colours", {"TERM": "linux"}, r"3[0-7]|4[0-7]|9[0-7]|10[0-7]|39|49"),
+        ("terminal colours", {"NO_COLOR": "1"}, r"39|49"),
+        ("terminal colours light", {"NO_COLOR": "1", "TERM": "vt100"}, r"39|49"),
+        ("no colour", {}, r"39|49"),
+    ],
+)
+def test_bytes_on_a_plain_terminal(tmp_path: Path, name: str, environ: dict[str, str], allowed: str) -> None:
+    program = (
+        "import os; from unit.test_themes import Everything\n"
+        "from gaugeside.app.themes import load_themes, without_colour\n"
+        "app = Everything(ansi_color=without_colour(os.environ) or None)\n"
+        f"app.register_theme(load_themes(None)[0][{name!r}]); app.theme = {name!r}; app.run()"
+    )
+    tests = str(Path(__file__).parent.parent)
+    with Terminal([sys.executable, "-c", program], tmp_path, environ={"PYTHONPATH": tests, **environ}) as shown:
+        shown.wait_for("superheat 9.2 K")
+        shown.send("\t\x1b[B")
+        shown.settle()
+    styles = {code for codes in re.findall(rb"\x1b\[([0-9;]+)m", shown.raw) for code in codes.decode().split(";")}
+    colours = {code for code in styles if int(code) >= 30}
+    assert all(re.fullmatch(allowed, code) for code in colours), colours
+    assert styles & {"1", "7"}, "what colour does not say, bold or reverse does"
 
 
 def test_the_user_s_folder_adds_and_replaces(tmp_path: Path) -> None:

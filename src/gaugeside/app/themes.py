@@ -18,6 +18,14 @@ from gaugeside.settings import Settings, plain_text, reason
 
 TERMINAL_COLOURS = "terminal colours"
 TERMINAL_COLOURS_LIGHT = "terminal colours light"
+# On a plain terminal the screen library colours the cursor of a field by itself; the theme is to do it.
+CURSOR_STYLE = """
+Input > .input--cursor {
+    color: $input-cursor-foreground;
+    background: $input-cursor-background;
+    text-style: $input-cursor-text-style;
+}
+"""
 LARGEST_FILE = 20_000  # [bytes]
 MOST_FILES = 100
 
@@ -88,12 +96,20 @@ def pick_theme(name: str, environ: Mapping[str, str], themes: Mapping[str, Theme
     theme = themes[name] if themes is not None else None
     if theme is not None and theme.ansi:
         return name
-    without_colour = bool(environ.get("NO_COLOR"))
     many_colours = bool(environ.get("COLORTERM")) or "256color" in environ.get("TERM", "")
-    if many_colours and not without_colour:
+    if many_colours and not without_colour(environ):
         return name
     is_light = theme is not None and not theme.dark
     return TERMINAL_COLOURS_LIGHT if is_light and TERMINAL_COLOURS_LIGHT in (themes or ()) else TERMINAL_COLOURS
+
+
+def without_colour(environ: Mapping[str, str]) -> bool:
+    """Tell whether the user asked for no colour at all (no-color.org: NO_COLOR present and not empty).
+
+    The app must then be made with `ansi_color=True`: the screen library decides while it is made, before a
+    theme is set, whether colour is left out or only turned to grey.
+    """
+    return bool(environ.get("NO_COLOR"))
 
 
 def read_theme(text: str) -> Theme:
