@@ -210,9 +210,7 @@ def make_private_folder(folder: Path) -> None:
     Raises Refusal when it cannot be created or no home folder is known.
     """
     if folder.parts[:1] and folder.parts[0].startswith("~"):
-        raise Refusal(
-            "No home folder is known, so nothing can be kept.", "Set GAUGESIDE_HOME to a folder of yours."
-        )
+        raise Refusal("No home folder is known, so nothing can be kept.", "Set GAUGESIDE_HOME to a folder of yours.")
     if folder.is_dir():
         return
     try:
