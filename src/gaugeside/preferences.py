@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from typing import Literal
 
 from gaugeside.errors import Refusal
 from gaugeside.quantities import (
@@ -12,12 +13,19 @@ from gaugeside.quantities import (
     Sense,
     Site,
     checked_single,
+    fold,
+    guard,
+    quoted,
     read,
     site_at_altitude,
     site_with_barometer,
+    spellings,
+    split_number,
 )
 from gaugeside.quantities.site import SEA_LEVEL
 from gaugeside.settings import Settings
+
+Source = Literal["sea level", "altitude", "barometer"]
 
 
 def dress_of(settings: Settings) -> Dress:
@@ -41,6 +49,22 @@ def site_of(settings: Settings) -> Site:
     return read_site(text, settings.site_pressure_from, dress_of(settings))
 
 
+def site_source(text: str) -> Source:
+    """Return whether a text without further word is an altitude or a barometer reading, by its unit.
+
+    An empty text is sea level. Raises Refusal for a number without a unit, which could be either.
+    """
+    if not text.strip():
+        return "sea level"
+    _, unit_text = split_number(guard(text))
+    if not unit_text:
+        raise Refusal(
+            f"{quoted(text)} could be an altitude or a barometer reading.",
+            "Add the unit: 640 m, 2100 ft, 94.1 kPa or 27.8 inHg.",
+        )
+    return "altitude" if fold(unit_text) in spellings(Kind.LENGTH) else "barometer"
+
+
 def read_site(text: str, source: str, dress: Dress) -> Site:
     """Return the site from an altitude or a barometer reading as typed; Refusal naming the field."""
     kind = Kind.LENGTH if source == "altitude" else Kind.ABSOLUTE_PRESSURE
@@ -58,7 +82,7 @@ def overridden(settings: Settings, altitude: str | None, barometer: str | None, 
         settings = replace(settings, site_pressure_text=altitude, site_pressure_from="altitude")
     if barometer is not None:
         settings = replace(settings, site_pressure_text=barometer, site_pressure_from="barometer")
-    if units == "si" or units == "ip":
+    if units is not None:
         # A dress asked for by name is that dress, without the single units kept for the other.
-        settings = replace(settings, dress=units, units={})
+        settings = replace(settings, dress="ip" if units == "ip" else "si", units={})
     return settings

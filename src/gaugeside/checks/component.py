@@ -8,12 +8,15 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from gaugeside.checks.caution import discharge_cautions, model_note, refrigerant_caution
 from gaugeside.checks.sheet import Check, Conditions, Outcome, choice, finding, reading, state
 from gaugeside.errors import Refusal
 from gaugeside.quantities import Kind
-from gaugeside.refrigerants import Fluid, State
+
+if TYPE_CHECKING:
+    from gaugeside.refrigerants import Fluid, State
 
 KINDS = ("condenser", "evaporator", "compressor", "expansion")
 _TITLES = {
@@ -346,9 +349,7 @@ def _report(conditions: Conditions, balance: _Balance, outcome: Outcome) -> None
     _report_energy(balance, outcome)
     if balance.component == "compressor":
         _report_compressor(conditions.fluid, balance, outcome)
-    outcome.note(f"Enthalpies: {conditions.datum.description}.")
-    if conditions.fluid.datum_note:
-        outcome.note(conditions.fluid.datum_note)
+    outcome.note(f"Enthalpies: {conditions.fluid.datum_note}.")
     if balance.component != "expansion":
         outcome.note("Steady flow; kinetic and potential energy neglected.")
     model_note(conditions, outcome)

@@ -9,7 +9,7 @@ from gaugeside.checks import CHECKS
 from gaugeside.checks.sheet import Conditions, answer
 from gaugeside.errors import Refusal
 from gaugeside.quantities import Dress, Kind, Site
-from gaugeside.refrigerants import Datum, find, open_fluid
+from gaugeside.refrigerants import Datum, find
 
 
 def request(
@@ -31,6 +31,9 @@ def request(
 
 def perform(asked: Mapping[str, Any]) -> dict[str, Any]:
     """Return {"answer": ...} or, refused, {"error": {"field", "message", "hint"}}; other exceptions are faults."""
+    # Imported here: it brings the property library, which the screen's process never loads.
+    from gaugeside.refrigerants import open_fluid
+
     try:
         found = find(asked["refrigerant"])
         datum = Datum(asked["datum"])

@@ -5,12 +5,15 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from gaugeside.checks.caution import model_note, refrigerant_caution
 from gaugeside.checks.sheet import Check, Conditions, Outcome, Table, finding, pressure_or_temperature
 from gaugeside.errors import OutOfRange, Refusal
 from gaugeside.quantities import Kind
-from gaugeside.refrigerants import State
+
+if TYPE_CHECKING:
+    from gaugeside.refrigerants import State
 
 
 @dataclass(frozen=True)
@@ -18,7 +21,7 @@ class Readings:
     """What is typed."""
 
     reading: Mapping[str, float] | None = pressure_or_temperature(
-        "pressure or temperature", "One pressure gives the temperatures; one temperature gives the pressures."
+        "pressure or temp.", "One pressure gives the temperatures; one temperature gives the pressures."
     )
 
 
@@ -91,9 +94,7 @@ def _explain(conditions: Conditions, outcome: Outcome, by_pressure: bool) -> Non
                 outcome.remark(name, "at the dew pressure")
     elif abs(found.glide or 0.0) < 1e-6:
         found.glide = 0.0
-    outcome.note(f"Enthalpies: {conditions.datum.description}.")
-    if conditions.fluid.datum_note:
-        outcome.note(conditions.fluid.datum_note)
+    outcome.note(f"Enthalpies: {conditions.fluid.datum_note}.")
     model_note(conditions, outcome)
 
 

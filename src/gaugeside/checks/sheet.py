@@ -9,11 +9,13 @@ from __future__ import annotations
 from collections.abc import Callable, Mapping
 from dataclasses import Field, dataclass, field, fields
 from enum import StrEnum
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from gaugeside.errors import Refusal
 from gaugeside.quantities import SI_UNIT, Kind, Site
-from gaugeside.refrigerants import Datum, Fluid, Refrigerant
+
+if TYPE_CHECKING:
+    from gaugeside.refrigerants import Datum, Fluid, Refrigerant
 
 
 class Entry(StrEnum):

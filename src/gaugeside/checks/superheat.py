@@ -8,12 +8,15 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from gaugeside.checks.caution import discharge_cautions, model_note, refrigerant_caution, suction_caution
 from gaugeside.checks.sheet import Check, Conditions, Outcome, finding, reading
 from gaugeside.errors import OutOfRange, Refusal
 from gaugeside.quantities import Kind
-from gaugeside.refrigerants import State
+
+if TYPE_CHECKING:
+    from gaugeside.refrigerants import Fluid, State
 
 
 @dataclass(frozen=True)
@@ -65,7 +68,7 @@ def run(conditions: Conditions, readings: Readings) -> Outcome:
     found: Findings = outcome.findings
     if readings.suction_pressure is not None and readings.discharge_pressure is not None:
         found.pressure_ratio = readings.discharge_pressure / readings.suction_pressure
-        outcome.remark("pressure_ratio", "absolute discharge over absolute suction pressure at the gauges")
+        outcome.remark("pressure_ratio", "absolute, at the gauges")
         if found.pressure_ratio < 1:
             outcome.note("Discharge pressure is below suction pressure: the two may be swapped.")
     discharge_cautions(outcome, readings.discharge_temperature, found.pressure_ratio)
@@ -79,13 +82,13 @@ def _suction(conditions: Conditions, readings: Readings, outcome: Outcome) -> No
     if pressure is None:
         return
     suction_caution(conditions, outcome, pressure)
-    dew = _saturated(conditions.fluid.dew_at_pressure, pressure, "suction_pressure", outcome)
+    dew = _saturated(conditions.fluid, conditions.fluid.dew_at_pressure, pressure, "suction_pressure", outcome)
     if dew is None:
         return
     found: Findings = outcome.findings
     found.saturated_suction_temperature = dew.temperature
     mean = (dew.temperature + conditions.fluid.bubble_at_pressure(pressure).temperature) / 2
-    _say_which(conditions, outcome, "saturated_suction_temperature", "dew point", mean)
+    _say_which(conditions, outcome, "saturated_suction_temperature", "dew", mean)
     if readings.suction_temperature is not None:
         found.superheat = readings.suction_temperature - dew.temperature
         outcome.remark("superheat", "above the dew point {dew}", dew=(dew.temperature, Kind.TEMPERATURE))
@@ -98,13 +101,13 @@ def _liquid(conditions: Conditions, readings: Readings, outcome: Outcome) -> Non
     pressure = _at_clamp(outcome, readings, "liquid", -1)
     if pressure is None:
         return
-    bubble = _saturated(conditions.fluid.bubble_at_pressure, pressure, "liquid_pressure", outcome)
+    bubble = _saturated(conditions.fluid, conditions.fluid.bubble_at_pressure, pressure, "liquid_pressure", outcome)
     if bubble is None:
         return
     found: Findings = outcome.findings
     found.saturated_liquid_temperature = bubble.temperature
     mean = (bubble.temperature + conditions.fluid.dew_at_pressure(pressure).temperature) / 2
-    _say_which(conditions, outcome, "saturated_liquid_temperature", "bubble point", mean)
+    _say_which(conditions, outcome, "saturated_liquid_temperature", "bubble", mean)
     if readings.liquid_temperature is not None:
         found.subcooling = bubble.temperature - readings.liquid_temperature
         outcome.remark("subcooling", "below the bubble point {bubble}", bubble=(bubble.temperature, Kind.TEMPERATURE))
@@ -119,13 +122,13 @@ def _discharge(conditions: Conditions, readings: Readings, outcome: Outcome) -> 
     pressure = _at_clamp(outcome, readings, "discharge", 0)
     if pressure is None:
         return
-    dew = _saturated(conditions.fluid.dew_at_pressure, pressure, "discharge_pressure", outcome)
+    dew = _saturated(conditions.fluid, conditions.fluid.dew_at_pressure, pressure, "discharge_pressure", outcome)
     if dew is None:
         return
     found: Findings = outcome.findings
     found.saturated_discharge_temperature = dew.temperature
     mean = (dew.temperature + conditions.fluid.bubble_at_pressure(pressure).temperature) / 2
-    _say_which(conditions, outcome, "saturated_discharge_temperature", "dew point", mean)
+    _say_which(conditions, outcome, "saturated_discharge_temperature", "dew", mean)
     if readings.discharge_temperature is not None:
         found.discharge_superheat = readings.discharge_temperature - dew.temperature
         outcome.remark("discharge_superheat", "above the dew point {dew}", dew=(dew.temperature, Kind.TEMPERATURE))
@@ -164,20 +167,31 @@ def _at_clamp(outcome: Outcome, readings: Readings, place: str, sign: int) -> fl
     return there
 
 
-def _saturated(saturation: Callable[[float], State], pressure: float, name: str, outcome: Outcome) -> State | None:
+def _saturated(
+    fluid: Fluid, saturation: Callable[[float], State], pressure: float, name: str, outcome: Outcome
+) -> State | None:
     """Return the saturated state, or None after saying why there is none."""
     try:
         return saturation(pressure)
     except OutOfRange as refusal:
         outcome.no_finding = outcome.no_finding or refusal.about(name)
         place = name.split("_", 1)[0].capitalize()
+        if pressure >= fluid.critical_pressure:
+            outcome.note(
+                f"{place} pressure {{pressure}} is above the critical {{critical}}: there is no bubble or dew point, "
+                "so no subcooling; the high side is a gas cooler, judged by its outlet temperature.",
+                pressure=(pressure, Kind.PRESSURE),
+                critical=(fluid.critical_pressure, Kind.PRESSURE),
+            )
+            return None
         outcome.note(f"{place}: {refusal.sentence()}".replace("{", "(").replace("}", ")"))
         return None
 
 
 def _say_which(conditions: Conditions, outcome: Outcome, name: str, point: str, mean: float) -> None:
     if conditions.refrigerant.nature == "zeotrope":
-        outcome.remark(name, f"{point}; mean of bubble and dew {{mean}}", mean=(mean, Kind.TEMPERATURE))
+        other = "bubble" if point == "dew" else "dew"
+        outcome.remark(name, f"{point}; mean with {other} {{mean}}", mean=(mean, Kind.TEMPERATURE))
     else:
         outcome.remark(name, "at the pressure typed")
 

@@ -21,13 +21,17 @@ from gaugeside.quantities import (
     write,
 )
 
-FOOTNOTE = "Estimates from the readings typed; the maker's figures and local rules come first."
+FOOTNOTE = "Estimates from the readings typed; maker's figures and local rules come first."
 _EVERY_PRESSURE = ("bar", "kPa", "MPa", "psi", "kgf/cm2", "inHg", "mmHg")
 
 
 @dataclass(frozen=True)
 class FindingText:
-    """One line of findings: label, the number, the same in a second form, and the words beside it."""
+    """One line of findings: label, the number, the same in a second form, and the words beside it.
+
+    paired: the two texts are two columns (bubble and dew, inlet and outlet), not two forms of one number.
+    heading: the line names those columns.
+    """
 
     name: str
     label: str
@@ -35,6 +39,8 @@ class FindingText:
     second: str
     remark: str
     main: bool
+    paired: bool = False
+    heading: bool = False
 
 
 def findings(check: Check, answer: Answer, dress: Dress, site: Site) -> list[FindingText]:
@@ -50,7 +56,7 @@ def findings(check: Check, answer: Answer, dress: Dress, site: Site) -> list[Fin
             lines.append(FindingText(line.name, line.label, first, second, remark, line.main))
             continue
         if not rows:
-            lines.append(FindingText("", "", columns[0], columns[1] if len(columns) > 1 else "", "", False))
+            lines.append(FindingText("", "", columns[0], columns[1] if len(columns) > 1 else "", "", False, True, True))
         if line.row not in rows:
             rows.add(line.row)
             lines += _paired([other for other in declared if other.row == line.row], columns, answer, dress, site)
@@ -71,9 +77,9 @@ def _paired(row: list[FindingLine], columns: list[str], answer: Answer, dress: D
             cells[line.column] = (first, second)
     texts = [cells.get(column, ("", "")) for column in columns] + [("", "")]
     main = any(line.main for line in row)
-    lines = [FindingText(row[0].name, row[0].row, texts[0][0], texts[1][0], beside, main)]
+    lines = [FindingText(row[0].name, row[0].row, texts[0][0], texts[1][0], beside, main, True)]
     if row[0].kind is Kind.PRESSURE:
-        lines.append(FindingText(row[0].name, "", texts[0][1], texts[1][1], "", False))
+        lines.append(FindingText(row[0].name, "", texts[0][1], texts[1][1], "", False, True))
     return lines
 
 

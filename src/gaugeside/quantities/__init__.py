@@ -2,6 +2,7 @@
 
 from gaugeside.quantities.dress import CHOOSABLE as CHOOSABLE
 from gaugeside.quantities.dress import Dress as Dress
+from gaugeside.quantities.dress import bare_labels as bare_labels
 from gaugeside.quantities.dress import both_differences as both_differences
 from gaugeside.quantities.dress import checked_single as checked_single
 from gaugeside.quantities.dress import gauge_and_absolute as gauge_and_absolute

@@ -1,0 +1,185 @@
+"""The logbook's pane: what was kept, newest first; filter, open, change tag and note, delete, take back."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, cast
+
+from textual import on
+from textual.app import ComposeResult
+from textual.binding import Binding
+from textual.containers import VerticalScroll
+from textual.widgets import Input
+
+from gaugeside.app.widgets.field import FieldLine, TextField
+from gaugeside.app.widgets.lines import CAUTION, MUTED, Line, Lines, Styled
+from gaugeside.errors import Refusal
+from gaugeside.logbook import Entry
+
+if TYPE_CHECKING:
+    from gaugeside.app.app import GaugesideApp
+
+_MOST = 500
+_RULE = "-" * 300
+
+
+class FilterField(TextField):
+    """The filter; the arrows move through the entries instead."""
+
+    BINDINGS = [
+        Binding("up", "pane_move(-1)", priority=True),
+        Binding("down", "pane_move(1)", priority=True),
+    ]
+
+    def action_pane_move(self, by: int) -> None:
+        """Select another entry."""
+        self.screen.query_one(LogbookPane).move(by)
+
+
+class LogbookPane(VerticalScroll, can_focus=False):
+    """The pane of the logbook."""
+
+    def __init__(self) -> None:
+        super().__init__(id="pane-logbook", classes="pane")
+        self._filter = FieldLine("filter", "show entries with", FilterField(id="filter"))
+        self.entries: list[Entry] = []
+        self._selected = 0
+        self._top = 0
+        self._deleted: list[Entry] = []
+
+    @property
+    def house(self) -> GaugesideApp:
+        """The app, by its own type."""
+        return cast("GaugesideApp", self.app)
+
+    def compose(self) -> ComposeResult:
+        """Filter, list, the entry selected."""
+        yield Line(f"{'':<20}{'as typed':<21}words, all of which must occur", MUTED)
+        yield self._filter
+        yield Line(_RULE, MUTED)
+        yield Lines(id="entries")
+        yield Line(_RULE, MUTED)
+        yield Lines(id="entry")
+
+    def on_mount(self) -> None:
+        """Read the logbook."""
+        self.reload()
+
+    def focus_first(self) -> None:
+        """Put the cursor into the filter."""
+        self._filter.field.focus()
+
+    @property
+    def filter_text(self) -> str:
+        """What the list is filtered by."""
+        return self._filter.field.value
+
+    @property
+    def selected(self) -> Entry | None:
+        """The entry the cursor is on."""
+        return self.entries[self._selected] if self.entries else None
+
+    def reload(self, number: int | None = None) -> None:
+        """Read the entries again and put the cursor on entry `number`, or leave it where it was."""
+        try:
+            self.entries = self.house.logbook.entries(self.filter_text, limit=_MOST)
+        except Refusal as refusal:
+            self.entries = []
+            self.house.say(refusal.sentence(), CAUTION)
+        if number is not None:
+            self._selected = next((i for i, entry in enumerate(self.entries) if entry.number == number), 0)
+        self._selected = min(self._selected, max(0, len(self.entries) - 1))
+        self._show()
+
+    def move(self, by: int) -> None:
+        """Select the entry `by` lines further down."""
+        self._selected = min(max(0, self._selected + by), max(0, len(self.entries) - 1))
+        self._show()
+
+    def _rows(self) -> int:
+        return max(4, (self.size.height or 18) - 9)
+
+    def _show(self) -> None:
+        rows = self._rows()
+        self._top = min(max(self._top, self._selected - rows + 1), self._selected)
+        lines: list[Styled] = []
+        for place, entry in enumerate(self.entries[self._top : self._top + rows], self._top):
+            when = entry.kept_at.astimezone().strftime("%m-%d %H:%M")
+            mark = ">" if place == self._selected else " "
+            what = f"{mark} {when}  {entry.refrigerant:<10}  {(entry.tag or '-')[:12]:<12}  {entry.headline}"
+            lines.append((what, "reverse" if place == self._selected else ""))
+        self._understood()
+        self.query_one("#entries", Lines).show(lines)
+        self.query_one("#entry", Lines).show(self._details())
+
+    def _understood(self) -> None:
+        count = f"{len(self.entries)} shown" if self.entries else "none"
+        self._filter.understood.say(count + ("; newest 500" if len(self.entries) == _MOST else ""))
+
+    def _details(self) -> list[Styled]:
+        entry = self.selected
+        if entry is None:
+            words = (
+                "No entry holds these words." if self.filter_text else "Nothing kept yet: Enter on a sheet keeps it."
+            )
+            return [(words, MUTED)]
+        readings = "  ".join(f"{name.replace('_', ' ')} {text}" for name, text in entry.readings.items())
+        kept = entry.kept_at.astimezone().strftime("%Y-%m-%d %H:%M:%S")
+        return [
+            (f"entry {entry.number}, {kept}, {entry.check}, site {entry.options.get('site', '')}", MUTED),
+            (readings, ""),
+            *([(f"note: {entry.note}", "")] if entry.note else []),
+            *((text, CAUTION) for text in entry.cautions[:1]),
+        ]
+
+    @on(Input.Changed)
+    def _filtered(self, event: Input.Changed) -> None:
+        event.stop()
+        self._selected = 0
+        self.reload()
+
+    @on(Input.Submitted)
+    def _open(self, event: Input.Submitted) -> None:
+        event.stop()
+        if self.selected is not None:
+            self.house.open_entry(self.selected)
+
+    def delete(self) -> None:
+        """Delete the entry selected; it can be brought back until the program ends."""
+        entry = self.selected
+        if entry is None or entry.number is None:
+            self.house.say("There is no entry to delete.", MUTED)
+            return
+        try:
+            self._deleted.append(self.house.logbook.delete(entry.number))
+        except Refusal as refusal:
+            self.house.say(refusal.sentence(), CAUTION)
+            return
+        self.reload()
+        self.house.say(f"Entry {entry.number} is deleted; Ctrl+Z brings it back.", MUTED)
+
+    def undo(self) -> None:
+        """Bring back what was deleted last."""
+        if not self._deleted:
+            self.house.say("Nothing was deleted since the start.", MUTED)
+            return
+        entry = self._deleted[-1]
+        try:
+            self.house.logbook.restore(entry)
+        except Refusal as refusal:
+            self.house.say(refusal.sentence(), CAUTION)
+            return
+        self._deleted.pop()
+        self.reload(entry.number)
+        self.house.say(f"Entry {entry.number} is back.", MUTED)
+
+    def change(self, tag: str, note: str) -> None:
+        """Give the entry selected another tag and note."""
+        entry = self.selected
+        if entry is None or entry.number is None:
+            return
+        try:
+            self.house.logbook.change(entry.number, tag=tag, note=note)
+        except Refusal as refusal:
+            self.house.say(refusal.sentence(), CAUTION)
+            return
+        self.reload(entry.number)

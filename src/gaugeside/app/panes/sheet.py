@@ -1,0 +1,305 @@
+"""A check's pane: its form as declared, its findings as they come back. It computes nothing."""
+
+from __future__ import annotations
+
+import textwrap
+from collections.abc import Mapping
+from typing import TYPE_CHECKING, Any, cast
+
+from textual import events, on
+from textual.app import ComposeResult
+from textual.containers import VerticalScroll
+from textual.timer import Timer
+from textual.widgets import Input
+
+from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
+from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, Line, Lines, Styled
+from gaugeside.checks.perform import request
+from gaugeside.checks.sheet import Answer, Check, Entry, ReadingLine
+from gaugeside.checks.typed import TypedLine, read_line, takes
+from gaugeside.checks.view import FindingText, TableText, every_pressure, findings, sentence, table
+from gaugeside.engine import Reply
+from gaugeside.errors import Refusal
+
+if TYPE_CHECKING:
+    from gaugeside.app.app import GaugesideApp
+
+# Seconds after which a unit that was typed becomes the field's own although the field is not left.
+_SETTLE = 0.7
+# Seconds after which findings of older readings are taken off the screen while an answer is awaited.
+_PATIENCE = 0.25
+RULE = "-" * 300
+
+
+class SheetPane(VerticalScroll, can_focus=False):
+    """The pane of one check."""
+
+    def __init__(self, check: Check, saved: Mapping[str, Any]) -> None:
+        super().__init__(id=f"pane-{check.name}", classes="pane")
+        self.check = check
+        texts, units = saved.get("texts"), saved.get("units")
+        self._texts: dict[str, str] = {
+            line.name: str(texts.get(line.name, ""))[:200] if isinstance(texts, dict) else ""
+            for line in check.reading_lines()
+        }
+        self.units: dict[str, dict[str, str]] = {}
+        if isinstance(units, dict):
+            for name, known in units.items():
+                if isinstance(known, dict):
+                    self.units[str(name)] = {str(kind): str(label) for kind, label in known.items()}
+        self._lines: dict[str, FieldLine] = {}
+        self.typed: dict[str, TypedLine] = {}
+        self.answer: Answer | None = None
+        self.refusal: Refusal | None = None
+        self._left = ""
+        self._asked = 0
+        self._patience: Timer | None = None
+        self._settle: Timer | None = None
+
+    @property
+    def house(self) -> GaugesideApp:
+        """The app, by its own type."""
+        return cast("GaugesideApp", self.app)
+
+    def compose(self) -> ComposeResult:
+        """Column heads, the form, a rule, the findings."""
+        yield Line(f"{'reading':<20}{'as typed':<21}understood", MUTED)
+        for line in self.check.reading_lines():
+            text = self._texts[line.name]
+            field: TextField | ChoiceField
+            if line.entry is Entry.CHOICE:
+                field = ChoiceField(line.choices, text, id=line.name)
+            else:
+                field = TextField(text, id=line.name)
+            self._lines[line.name] = FieldLine(line.name, line.label, field)
+            yield self._lines[line.name]
+        yield Line(RULE, MUTED)
+        yield Lines(id="findings")
+
+    def on_mount(self) -> None:
+        """Read what was saved."""
+        self.read_all()
+
+    def texts(self) -> dict[str, str]:
+        """Return what is typed, by reading."""
+        return {name: line.field.value for name, line in self._lines.items()} if self._lines else self._texts
+
+    def put(self, texts: Mapping[str, str]) -> None:
+        """Replace what is typed."""
+        for name, line in self._lines.items():
+            text = texts.get(name, "")
+            if isinstance(line.field, ChoiceField):
+                if text in line.field.choices:
+                    line.field.value = text
+            else:
+                with self.prevent(Input.Changed):
+                    line.field.value = text
+                    line.field.cursor_position = len(text)
+            self.units.pop(name, None)
+        self.read_all()
+
+    def clear(self) -> None:
+        """Empty every field of the form."""
+        self.put({name: line.field.value for name, line in self._lines.items() if isinstance(line.field, ChoiceField)})
+
+    def focus_first(self) -> None:
+        """Put the cursor where it was left, or in the first field that is typed in."""
+        fields = {name: line.field for name, line in self._lines.items()}
+        typed_in = [field for field in fields.values() if isinstance(field, TextField)]
+        fields.get(self._left, typed_in[0]).focus()
+
+    # Reading
+
+    def read_all(self) -> None:
+        """Read every line again, as after a change of site, units or refrigerant."""
+        for line in self.check.reading_lines():
+            self._read(line)
+        self._ask()
+
+    def _read(self, line: ReadingLine) -> None:
+        house = self.house
+        shown_line = self._lines[line.name]
+        units = self.units.get(line.name, {})
+        typed = read_line(line, shown_line.field.value, units, house.dress, house.site)
+        self.typed[line.name] = typed
+        if isinstance(shown_line.field, TextField):
+            placeholder = takes(line, units, house.dress)
+            if shown_line.field.placeholder != placeholder:
+                shown_line.field.placeholder = placeholder
+        first, second = typed.understood
+        if typed.refusal is not None:
+            shown_line.understood.say("? not understood, see below", CAUTION)
+        else:
+            shown_line.understood.say(f"{first:<18} {second}".rstrip() if second else first)
+
+    @on(Input.Changed)
+    def _typed_in(self, event: Input.Changed) -> None:
+        event.stop()
+        self._changed(str(event.input.id))
+
+    @on(ChoiceField.Changed)
+    def _chosen(self, event: ChoiceField.Changed) -> None:
+        event.stop()
+        self._changed(str(event.field.id))
+
+    def _changed(self, name: str) -> None:
+        self._read(self.check.reading_line(name))
+        self._ask()
+        self.house.form_changed()
+        if self._settle is not None:
+            self._settle.stop()
+        self._settle = self.set_timer(_SETTLE, self.settle_units)
+
+    def settle_units(self) -> None:
+        """Make the units that were typed the fields' own."""
+        for name, typed in self.typed.items():
+            if typed.value is not None and typed.units and dict(typed.units) != self.units.get(name):
+                self.units[name] = dict(typed.units)
+
+    def on_descendant_blur(self, event: events.DescendantBlur) -> None:
+        """A field is left: its unit is settled."""
+        self.settle_units()
+
+    def on_descendant_focus(self, event: events.DescendantFocus) -> None:
+        """A field is entered: say what belongs in it."""
+        self._left = str(event.widget.id)
+        self.say_word()
+
+    # Asking and showing
+
+    def _ask(self) -> None:
+        refused = [typed.refusal for typed in self.typed.values() if typed.refusal is not None]
+        self.answer, self.refusal = None, refused[0] if refused else None
+        house = self.house
+        values = {name: typed.value for name, typed in self.typed.items() if typed.value is not None}
+        typed_in = [name for name in values if self.check.reading_line(name).entry is not Entry.CHOICE]
+        if self.refusal is not None or not typed_in or house.refrigerant is None:
+            self._asked = 0
+            house.engine.forget(self.check.name)
+            self._show_nothing(
+                "" if typed_in or refused else self.check.summary,
+                "" if house.refrigerant else "Press F8 and type part of the refrigerant's name.",
+            )
+            self.say_word()
+            return
+        asked = request(
+            self.check.name,
+            house.refrigerant.designation,
+            values,
+            site=house.site,
+            datum=house.settings.datum,
+            dress=house.dress,
+        )
+        self._asked = house.engine.ask(self.check.name, asked)
+        if self._patience is None:
+            self._patience = self.set_timer(_PATIENCE, self._out_of_patience)
+
+    def _out_of_patience(self) -> None:
+        self._patience = None
+        if self._asked:
+            self._show_nothing(self.house.engine_word or "Working.", "")
+
+    def _show_nothing(self, *words: str) -> None:
+        width = max(30, (self.size.width or 80) - 2)
+        lines = [(text, MUTED) for word in words for text in textwrap.wrap(word, width)]
+        self.query_one("#findings", Lines).show(lines)
+
+    def receive(self, reply: Reply) -> None:
+        """Take the helper's reply, unless another question has been asked since."""
+        if reply.number != self._asked:
+            return
+        self._asked = 0
+        if self._patience is not None:
+            self._patience.stop()
+            self._patience = None
+        if reply.answer is not None:
+            self.answer = Answer.from_plain(reply.answer)
+            unresolved = self.answer.unresolved
+        else:
+            self.answer = None
+            unresolved = reply.error or {"field": None, "message": reply.fault, "hint": ""}
+        self.refusal = (
+            None
+            if unresolved is None
+            else Refusal(str(unresolved["message"]), str(unresolved["hint"] or ""), unresolved["field"])
+        )
+        self._show_answer()
+        self.say_word()
+
+    def _show_answer(self) -> None:
+        house = self.house
+        width = max(30, (self.size.width or 80) - 2)
+        lines: list[Styled] = []
+        if self.answer is not None:
+            for found in findings(self.check, self.answer, house.dress, house.site):
+                style = MAIN if found.main else MUTED if found.heading else ""
+                lines += [(text, style) for text in finding_lines(found, width)]
+            lines += self._tables(self.answer)
+            for remarks, style in ((self.answer.cautions, CAUTION), (self.answer.notes, MUTED)):
+                for remark in remarks:
+                    wrapped = textwrap.wrap(sentence(remark, house.dress, house.site), width, subsequent_indent="  ")
+                    lines += [(text, style) for text in wrapped]
+        self.query_one("#findings", Lines).show(lines)
+
+    def _tables(self, answer: Answer) -> list[Styled]:
+        house = self.house
+        tables = [table(raw, house.dress, house.site) for raw in answer.tables]
+        pressures = every_pressure(answer, house.dress, house.site) if self.check.name == "saturation" else None
+        if pressures is not None:
+            tables.insert(0, pressures)
+        return [(text, "") for text in side_by_side(tables)]
+
+    def say_word(self) -> None:
+        """Show under the sheet what stands in the way, or what belongs in the field."""
+        refusal = self.refusal
+        if refusal is not None:
+            labels = {line.name: line.label for line in self.check.reading_lines()}
+            field = f"{labels.get(refusal.field or '', '')}: " if refusal.field in labels else ""
+            self.house.say(f"{field}{refusal.sentence()}", CAUTION)
+            return
+        focused = self.screen.focused
+        line = next(
+            (line for line in self.check.reading_lines() if focused is not None and line.name == focused.id), None
+        )
+        self.house.say("" if line is None else f"{line.label}: {line.help}", MUTED)
+
+    # Keeping
+
+    @on(Input.Submitted)
+    @on(ChoiceField.Submitted)
+    def _enter(self, event: Any) -> None:
+        event.stop()
+        self.settle_units()
+        self.house.keep(self)
+
+
+def finding_lines(found: FindingText, width: int) -> list[str]:
+    """Return one finding as lines; what does not fit beside the numbers goes on under itself."""
+    first, second = (21, 18) if found.paired else (14, 13)
+    head = f"{found.label:<21} {found.first:<{first}} {found.second:<{second}} "
+    room = width - len(head)
+    if room < 12:
+        return [head.rstrip(), *textwrap.wrap(found.remark, width, initial_indent="  ", subsequent_indent="  ")]
+    words = textwrap.wrap(found.remark, room) or [""]
+    return [(head + words[0]).rstrip(), *(" " * len(head) + more for more in words[1:])]
+
+
+def side_by_side(tables: list[TableText]) -> list[str]:
+    """Return tables as lines, beside each other."""
+    blocks = [_block(one) for one in tables]
+    height = max((len(block) for block in blocks), default=0)
+    lines = []
+    for row in range(height):
+        cells = [block[row] if row < len(block) else " " * len(block[0]) for block in blocks]
+        lines.append("   ".join(cells).rstrip())
+    return lines
+
+
+def _block(one: TableText) -> list[str]:
+    rows = (one.headings, *one.rows)
+    widths = [max(len(row[place]) for row in rows) for place in range(len(one.headings))]
+    lines = []
+    for number, row in enumerate(rows, -1):
+        cells = [f"{row[0]:<{widths[0]}}", *(f"{c:>{w}}" for c, w in zip(row[1:], widths[1:], strict=True))]
+        lines.append(("> " if number == one.marked else "  ") + "  ".join(cells))
+    return lines

@@ -1,0 +1,142 @@
+"""The site's pane: atmosphere, units, what a bare pressure is, enthalpy datum, theme."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+from typing import TYPE_CHECKING, Any, cast
+
+from textual import events, on
+from textual.app import ComposeResult
+from textual.containers import VerticalScroll
+from textual.widgets import Input
+
+from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
+from gaugeside.app.widgets.lines import CAUTION, MUTED, Line
+from gaugeside.checks.view import site_line
+from gaugeside.errors import Refusal
+from gaugeside.preferences import dress_of, read_site, site_source
+from gaugeside.quantities import CHOOSABLE, Dress, bare_labels
+from gaugeside.quantities.site import SEA_LEVEL
+from gaugeside.refrigerants import Datum
+from gaugeside.settings import Settings
+
+if TYPE_CHECKING:
+    from gaugeside.app.app import GaugesideApp
+
+_RULE = "-" * 300
+_HELP = {
+    "site_pressure": "640 m, 2100 ft, or a barometer reading such as 94.1 kPa, absolute and not reduced to sea level; "
+    "empty: sea level.",
+    "dress": "SI or inch-pound; single units below may differ.",
+    "bare_pressure": "What a pressure typed without g or abs is taken for.",
+    "datum": "Where enthalpies count from; only differences mean anything.",
+    "theme": "Colours; files in the themes folder of the settings add to the list.",
+}
+
+
+class SitePane(VerticalScroll, can_focus=False):
+    """The pane of the settings."""
+
+    def __init__(self, settings: Settings, themes: tuple[str, ...]) -> None:
+        super().__init__(id="pane-site", classes="pane")
+        self._lines: dict[str, FieldLine] = {}
+        self._site = FieldLine(
+            "site_pressure", "altitude/barometer", TextField(settings.site_pressure_text, id="site_pressure")
+        )
+        self._choice("dress", "units", ("si", "ip"), settings.dress)
+        plain = Dress(settings.dress)
+        for kind in CHOOSABLE:
+            chosen = settings.units.get(kind.value) or plain.unit(kind).label
+            self._choice(f"unit-{kind.name}", f"  {kind.value}"[:19], bare_labels(kind), chosen)
+        self._choice("bare_pressure", "bare pressure is", ("gauge", "absolute"), settings.bare_pressure)
+        self._choice("datum", "enthalpy datum", tuple(Datum), settings.datum)
+        self._choice("theme", "theme", themes, settings.theme)
+
+    def _choice(self, name: str, label: str, choices: tuple[str, ...], value: str) -> None:
+        self._lines[name] = FieldLine(name, label, ChoiceField([str(c) for c in choices], value, id=name))
+
+    @property
+    def house(self) -> GaugesideApp:
+        """The app, by its own type."""
+        return cast("GaugesideApp", self.app)
+
+    def compose(self) -> ComposeResult:
+        """One line a setting."""
+        yield Line(f"{'setting':<20}{'as typed or chosen':<21}understood", MUTED)
+        yield self._site
+        yield from self._lines.values()
+        yield Line(_RULE, MUTED)
+        yield Line("Left, Right or a first letter change a choice. Changes count at once and are remembered.", MUTED)
+        yield Line(f"Settings: {self.house.places.settings_file}", MUTED)
+        yield Line(f"Logbook:  {self.house.places.logbook_file}", MUTED)
+
+    def on_mount(self) -> None:
+        """Say what each setting means."""
+        self._explain()
+
+    def focus_first(self) -> None:
+        """Put the cursor on the atmosphere."""
+        self._site.field.focus()
+
+    @on(Input.Changed)
+    def _typed(self, event: Input.Changed) -> None:
+        event.stop()
+        text = event.value.strip()
+        house = self.house
+        try:
+            source = site_source(text)
+            if text:
+                read_site(text, source, house.dress)
+        except Refusal as refusal:
+            self._site.understood.say("? not understood, see below", CAUTION)
+            house.say(refusal.sentence(), CAUTION)
+            return
+        house.apply(replace(house.settings, site_pressure_text=text, site_pressure_from=source))
+        self._explain()
+        house.say("", MUTED)
+
+    @on(ChoiceField.Changed)
+    def _chosen(self, event: ChoiceField.Changed) -> None:
+        event.stop()
+        name, value = str(event.field.id), event.value
+        house = self.house
+        settings = house.settings
+        if name == "dress":
+            settings = replace(settings, dress=cast(Any, value), units={})
+            self._dressed(settings)
+        elif name.startswith("unit-"):
+            kind = next(kind for kind in CHOOSABLE if f"unit-{kind.name}" == name)
+            units = {key: label for key, label in settings.units.items() if key != kind.value}
+            if value != Dress(settings.dress).unit(kind).label:
+                units[kind.value] = value
+            settings = replace(settings, units=units)
+        else:
+            settings = replace(settings, **cast(dict[str, Any], {name: value}))
+        house.apply(settings)
+        self._explain()
+
+    def _dressed(self, settings: Settings) -> None:
+        dress = dress_of(settings)
+        for kind in CHOOSABLE:
+            cast(ChoiceField, self._lines[f"unit-{kind.name}"].field).value = dress.unit(kind).label
+
+    def _explain(self) -> None:
+        house = self.house
+        self._site.understood.say(site_line(house.site if house.settings.site_pressure_text else SEA_LEVEL))
+        words = {
+            "dress": {"si": "SI: bar, °C, kg/s, kW", "ip": "inch-pound: psi, °F, lb/h, Btu/h"}[house.settings.dress],
+            "bare_pressure": f"12 {house.dress.unit(CHOOSABLE[0]).label} is read as {house.settings.bare_pressure}",
+            "datum": Datum(house.settings.datum).description,
+        }
+        for name, text in words.items():
+            self._lines[name].understood.say(text)
+
+    def on_descendant_focus(self, event: events.DescendantFocus) -> None:
+        """Say what the setting means."""
+        self.house.say(_HELP.get(str(event.widget.id), "Which unit readings of this kind are shown in."), MUTED)
+
+    @on(Input.Submitted)
+    @on(ChoiceField.Submitted)
+    def _enter(self, event: Any) -> None:
+        event.stop()
+        self.app.action_focus_next()

@@ -1,0 +1,82 @@
+"""Starting and ending the app: environment, signals, what is remembered."""
+
+from __future__ import annotations
+
+import os
+import select
+import signal
+import sys
+import termios
+import threading
+from contextlib import suppress
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+if TYPE_CHECKING:
+    from gaugeside.app.app import GaugesideApp
+
+# Leave the alternate screen, show the cursor, end bracketed paste, mouse, focus and key reporting, plain colours.
+_RESTORE = b"\x1b[?1049l\x1b[?25h\x1b[?2004l\x1b[?1000l\x1b[?1003l\x1b[?1006l\x1b[?1004l\x1b[<u\x1b[0m\r\n"
+_SIGNALS = (signal.SIGHUP, signal.SIGTERM)
+
+
+def start(logbook: Path | None) -> int:
+    """Run the app in this terminal until it is left; return the exit status."""
+    # Read by the screen library when it is imported, therefore here.
+    os.environ.setdefault("ESCDELAY", "400")
+    os.environ.setdefault("TEXTUAL_ANIMATIONS", "none")
+    for number in _SIGNALS:
+        # An inherited "ignore" (nohup) would keep the program alive behind a closed terminal.
+        signal.signal(number, signal.SIG_DFL)
+    # Blocked before any thread starts, so that only the watching thread ever takes them.
+    signal.pthread_sigmask(signal.SIG_BLOCK, _SIGNALS)
+    from gaugeside.app.app import GaugesideApp
+    from gaugeside.app.themes import load_themes, pick_theme
+    from gaugeside.app.widgets.lines import use_ascii
+    from gaugeside.refrigerants import load_own
+    from gaugeside.settings import load_draft, load_settings, places
+
+    if (sys.stderr.encoding or "").lower().replace("-", "") != "utf8":
+        use_ascii()
+    home = places(logbook=logbook)
+    settings, messages = load_settings(home.settings_file)
+    draft, more = load_draft(home.draft_file)
+    themes, bad_themes = load_themes(home.themes_folder)
+    messages += [*more, *bad_themes, *load_own(home.settings_folder)]
+    theme = pick_theme(settings.theme, os.environ, themes)
+    app = GaugesideApp(home, settings, draft, themes, theme, messages)
+    modes = termios.tcgetattr(0)
+    threading.Thread(target=_watch, args=(app, modes), name="signals", daemon=True).start()
+    try:
+        app.run(mouse=False)
+    finally:
+        app.saver.close()
+        app.engine.close()
+    return app.return_code or 0
+
+
+def _watch(app: GaugesideApp, modes: list[Any]) -> None:
+    """End the program in good order on SIGHUP, SIGTERM or a terminal that has gone."""
+    terminal = select.poll()
+    terminal.register(0, select.POLLHUP | select.POLLERR)
+    while True:
+        taken = signal.sigtimedwait(_SIGNALS, 0.5)
+        gone = any(event & (select.POLLHUP | select.POLLERR | select.POLLNVAL) for _, event in terminal.poll(0))
+        if taken is None and not gone:
+            continue
+        with suppress(Exception):
+            app.saver.flush()
+        with suppress(Exception):
+            app.engine.close()
+        if taken is not None and taken.si_signo == signal.SIGTERM and not gone:
+            _restore(modes)
+        os._exit(128 + (taken.si_signo if taken is not None else signal.SIGHUP))
+
+
+def _restore(modes: list[Any]) -> None:
+    """Give the terminal back as it was, without ever waiting for it."""
+    with suppress(OSError, termios.error):
+        os.set_blocking(2, False)
+        os.write(2, _RESTORE)
+        os.set_blocking(2, True)
+        termios.tcsetattr(0, termios.TCSANOW, modes)

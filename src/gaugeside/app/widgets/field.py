@@ -1,0 +1,128 @@
+"""One line of a form: label, what is typed, what was understood."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+from textual import events
+from textual.app import ComposeResult
+from textual.containers import Horizontal
+from textual.message import Message
+from textual.widgets import Input, Static
+
+from gaugeside.app.widgets.lines import Line, shown_text
+
+LONGEST_TYPED = 200
+
+
+class TextField(Input):
+    """The typed part of a line; its value is kept as typed."""
+
+    BINDINGS = [("up", "app.focus_previous"), ("down", "app.focus_next")]
+
+    def __init__(self, value: str = "", *, id: str | None = None, placeholder: str = "") -> None:
+        super().__init__(
+            value,
+            id=id,
+            placeholder=shown_text(placeholder),
+            compact=True,
+            select_on_focus=False,
+            max_length=LONGEST_TYPED,
+        )
+        self.cursor_blink = False
+
+
+class ChoiceField(Static, can_focus=True):
+    """One of a few words: Left and Right, Space, or the first letter of a word change it."""
+
+    BINDINGS = [
+        ("up", "app.focus_previous"),
+        ("down", "app.focus_next"),
+        ("left", "step(-1)"),
+        ("right,space", "step(1)"),
+        ("enter", "submit"),
+    ]
+
+    @dataclass
+    class Changed(Message):
+        """Posted when another word is chosen."""
+
+        field: ChoiceField
+        value: str
+
+        @property
+        def control(self) -> ChoiceField:
+            """The field, for `on` selectors."""
+            return self.field
+
+    @dataclass
+    class Submitted(Message):
+        """Posted on Enter."""
+
+        field: ChoiceField
+
+    def __init__(self, choices: Sequence[str], value: str, *, id: str | None = None) -> None:
+        super().__init__("", id=id, markup=False)
+        self.choices = tuple(choices)
+        self._value = ""
+        self.value = value if value in self.choices else self.choices[0]
+
+    @property
+    def value(self) -> str:
+        """The word that is chosen."""
+        return self._value
+
+    @value.setter
+    def value(self, value: str) -> None:
+        self._value = value
+        self.update(shown_text(f"< {value} >"), layout=False)
+
+    def action_step(self, by: int) -> None:
+        """Choose the next or the previous word."""
+        self._choose(self.choices[(self.choices.index(self._value) + by) % len(self.choices)])
+
+    def action_submit(self) -> None:
+        """Pass Enter on."""
+        self.post_message(self.Submitted(self))
+
+    def on_key(self, event: events.Key) -> None:
+        """Choose the next word that starts with the letter typed."""
+        letter = (event.character or "").casefold()
+        if not letter.isalnum():
+            return
+        event.stop()
+        place = self.choices.index(self._value)
+        order = [*self.choices[place + 1 :], *self.choices[: place + 1]]
+        found = next((choice for choice in order if choice.casefold().startswith(letter)), None)
+        if found is not None:
+            self._choose(found)
+
+    def _choose(self, value: str) -> None:
+        if value != self._value:
+            self.value = value
+            self.post_message(self.Changed(self, value))
+
+
+class FieldLine(Horizontal):
+    """Label, field and what was understood, on one line; two on a narrow screen."""
+
+    DEFAULT_CSS = """
+    FieldLine { height: 1; width: 1fr; }
+    FieldLine > .label { width: 20; }
+    FieldLine > TextField, FieldLine > ChoiceField { width: 20; height: 1; }
+    FieldLine > .understood { width: 1fr; padding-left: 1; }
+    """
+
+    def __init__(self, name: str, label: str, field: TextField | ChoiceField) -> None:
+        super().__init__(id=f"line-{name}")
+        self.reading = name
+        self.field = field
+        self._label = Line(label, classes="label")
+        self.understood = Line(classes="understood")
+
+    def compose(self) -> ComposeResult:
+        """Label, field, understood."""
+        yield self._label
+        yield self.field
+        yield self.understood

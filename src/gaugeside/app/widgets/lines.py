@@ -1,0 +1,84 @@
+"""Lines of text that repaint only where they change: over a slow link every byte counts."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from textual.containers import Vertical
+from textual.content import Content
+from textual.reactive import Reactive
+from textual.screen import Screen
+from textual.widget import Widget
+from textual.widgets import Static
+
+from gaugeside.checks.view import ascii_only
+
+# Text and its style, a style such as "bold $accent".
+Styled = tuple[str, str]
+MAIN, MUTED, CAUTION, REFUSED = "bold $accent", "$text-muted", "bold $warning", "bold $error"
+
+_ascii = False
+
+
+def use_ascii() -> None:
+    """From now on show only the characters every terminal has."""
+    global _ascii
+    _ascii = True
+
+
+def shown_text(text: str) -> str:
+    """Return `text` as this terminal can show it."""
+    return ascii_only(text) if _ascii else text
+
+
+class QuietScreen(Screen[None]):
+    """A screen that does not repaint itself whole when the focus moves."""
+
+    focused: Reactive[Widget | None] = Reactive(None, repaint=False)
+
+
+class Line(Static):
+    """One line of text; setting the same text again costs nothing."""
+
+    DEFAULT_CSS = "Line { height: 1; width: 1fr; text-wrap: nowrap; text-overflow: ellipsis; }"
+
+    def __init__(self, text: str = "", style: str = "", *, id: str | None = None, classes: str | None = None) -> None:
+        super().__init__("", markup=False, id=id, classes=classes)
+        self.text = ""
+        self._style = ""
+        if text:
+            self.say(text, style)
+
+    def say(self, text: str, style: str = "") -> None:
+        """Show `text`, in ASCII where the terminal has no more."""
+        if (text, style) == (self.text, self._style):
+            return
+        self.text, self._style = text, style
+        plain = shown_text(text)
+        self.update(Content.styled(plain, style) if style else Content(plain), layout=False)
+
+
+class Lines(Vertical):
+    """Any number of lines; a line that did not change is not painted again."""
+
+    DEFAULT_CSS = "Lines { height: auto; width: 1fr; }"
+
+    def __init__(self, *, id: str | None = None) -> None:
+        super().__init__(id=id)
+        self._lines: list[Line] = []
+
+    def show(self, lines: Sequence[Styled]) -> None:
+        """Show these (text, style) lines."""
+        for line, (text, style) in zip(self._lines, lines, strict=False):
+            line.say(text, style)
+            line.display = True
+        for line in self._lines[len(lines) :]:
+            line.display = False
+        fresh = [Line(text, style) for text, style in lines[len(self._lines) :]]
+        self._lines += fresh
+        if fresh:
+            self.mount(*fresh)
+
+    def texts(self) -> list[str]:
+        """Return the lines that are shown."""
+        return [line.text for line in self._lines if line.display]
