@@ -50,10 +50,14 @@ def blend_limits(refrigerant: Refrigerant) -> tuple[float, float, float]:
             print(f"  library {temperature:.2f} K, curve {ends[0]:.2f} K: the curve's end taken")
             temperature, pressure = ends
     known = replace(
-        refrigerant, critical_temperature=temperature, critical_pressure=pressure, minimum_temperature=0.33 * temperature
+        refrigerant,
+        critical_temperature=temperature,
+        critical_pressure=pressure,
+        minimum_temperature=0.33 * temperature,
     )
     dew = Model(known).dew
-    floor = dew.at_pressure(LOWEST_PRESSURE).temperature if dew.reaches_pressure(LOWEST_PRESSURE) else dew.lowest.temperature
+    reached = dew.reaches_pressure(LOWEST_PRESSURE)
+    floor = dew.at_pressure(LOWEST_PRESSURE).temperature if reached else dew.lowest.temperature
     return temperature, pressure, floor
 
 
@@ -75,7 +79,7 @@ def written(text: str, designation: str, limits: tuple[float, float, float]) -> 
     end = text.find("\n\n", start)
     table = text[start : end if end >= 0 else len(text)].rstrip()
     table = re.sub(r"\n(critical|floor) = [^\n]*", "", table)
-    table += f"\ncritical = [{limits[0]:.3f}, {limits[1]:.0f}]\nfloor = {limits[2] :.2f}"
+    table += f"\ncritical = [{limits[0]:.3f}, {limits[1]:.0f}]\nfloor = {limits[2]:.2f}"
     return text[:start] + table + (text[end:] if end >= 0 else "\n")
 
 

@@ -141,7 +141,7 @@ def _entry(designation: str, table: dict[str, Any], data: dict[str, Any], pure: 
     composition = _composition(designation, table.get("blend"))
     blend = len(composition) > 1
     modelled = "model" in table
-    model = data["model"][table["model"]] if modelled else {"uncertainty": 0.0, "reason": ""}
+    model: dict[str, Any] = data["model"][table["model"]] if modelled else {"uncertainty": 0.0, "reason": ""}
     fluid = table.get("fluid", "")
     if blend:
         gwp = blend_gwp((pure[name].gwp, share) for name, share in composition)
@@ -183,7 +183,7 @@ def _data() -> dict[str, Any]:
 
 @cache
 def catalogue() -> Catalogue:
-    """Return the catalogue, read once."""
+    """Return the catalogue, read once; `load_own` starts it afresh."""
     data = _data()
     whole = Catalogue()
     for name, table in data.items():

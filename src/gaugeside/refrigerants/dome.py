@@ -13,7 +13,7 @@ from dataclasses import dataclass
 from enum import Enum
 
 from .phases import NoRoot, Phase
-from .saturation import Point
+from .solvers import Point
 
 ACCURACY = 2e-11
 # Near an azeotrope rounding in the fugacities keeps the substitutions from settling further than this.
@@ -136,6 +136,11 @@ def _mixed(residuals: list[list[float]], images: list[list[float]]) -> list[floa
     return mixed
 
 
+def _molar(vapour_fraction: float, heavy: float, light: float) -> float:
+    """Molar vapour fraction from the one by mass; heavy, light: molar masses of liquid and vapour [kg/mol]."""
+    return vapour_fraction / light / (vapour_fraction / light + (1.0 - vapour_fraction) / heavy)
+
+
 class Dome:
     """The two-phase region of one blend."""
 
@@ -145,9 +150,7 @@ class Dome:
         self._whole = tuple(liquid.whole)
         self._molar_mass = liquid.molar_mass
 
-    def split(
-        self, bubble: Point, dew: Point, given: Given, value: float, share: float, pressure_given: bool
-    ) -> Split:
+    def split(self, bubble: Point, dew: Point, given: Given, value: float, share: float, pressure_given: bool) -> Split:
         """Return the equilibrium between two points of the curves at one pressure or one temperature.
 
         value: vapour fraction by mass [kg/kg], enthalpy [J/kg], entropy [J/(kg K)] in the library's datum,
@@ -164,9 +167,7 @@ class _Flash:
     # ln T moves far less than ln K; weighing it up makes one accuracy serve both.
     WEIGHT = 10.0
 
-    def __init__(
-        self, liquid: Phase, vapour: Phase, given: Given, value: float, pressure_given: bool
-    ) -> None:
+    def __init__(self, liquid: Phase, vapour: Phase, given: Given, value: float, pressure_given: bool) -> None:
         self.liquid, self.vapour = liquid, vapour
         self.whole = liquid.whole
         self.given, self.value, self.pressure_given = given, value, pressure_given
@@ -176,9 +177,7 @@ class _Flash:
         def between(a: float, b: float) -> float:
             return math.exp((1.0 - share) * math.log(a) + share * math.log(b))
 
-        ratios = [
-            between(y / z, z / x) for x, y, z in zip(dew.other, bubble.other, self.whole, strict=True)
-        ]
+        ratios = [between(y / z, z / x) for x, y, z in zip(dew.other, bubble.other, self.whole, strict=True)]
         self.temperature, self.pressure = bubble.temperature, bubble.pressure
         if self.pressure_given:
             self.temperature = between(bubble.temperature, dew.temperature)
@@ -217,9 +216,7 @@ class _Flash:
             raise NoRoot("the phases have merged")
         logs = [
             a - math.log(x) - b + math.log(y)
-            for a, x, b, y in zip(
-                self.liquid.log_fugacities(), xs, self.vapour.log_fugacities(), ys, strict=True
-            )
+            for a, x, b, y in zip(self.liquid.log_fugacities(), xs, self.vapour.log_fugacities(), ys, strict=True)
         ]
         return self._corrected(logs, vector)
 
@@ -241,24 +238,23 @@ class _Flash:
         else:
             free = -move / (self.pressure / gas_temperature * (1.0 / self.thin - 1.0 / self.dense))
         free = min(max(free, -0.05), 0.05)
-        return [*(k + move for k in logs), weighted + self.WEIGHT * free, self._share(share)]
+        return [*(k + move for k in logs), weighted + self.WEIGHT * free, self._share()]
 
-    def _share(self, share: float) -> float:
+    def _share(self) -> float:
         """The molar vapour fraction that the given quantity asks for."""
         liquid, vapour = self.liquid.state, self.vapour.state
-        heavy, light = liquid.molar_mass(), vapour.molar_mass()
+        heavy, light = float(liquid.molar_mass()), float(vapour.molar_mass())
         if self.given is Given.VAPOUR_FRACTION:
-            return self.value / light / (self.value / light + (1.0 - self.value) / heavy)
+            return _molar(self.value, heavy, light)
         if self.given is Given.ENTHALPY:
-            low, high = liquid.hmass(), vapour.hmass()
+            low, high = float(liquid.hmass()), float(vapour.hmass())
         else:
-            low, high = liquid.smass(), vapour.smass()
-        mass = (self.value - low) / (high - low)
-        return float(mass / light / (mass / light + (1.0 - mass) / heavy))
+            low, high = float(liquid.smass()), float(vapour.smass())
+        return _molar((self.value - low) / (high - low), heavy, light)
 
     def _result(self, share: float) -> Split:
         liquid, vapour = self.liquid.state, self.vapour.state
-        heavy, light = liquid.molar_mass(), vapour.molar_mass()
+        heavy, light = float(liquid.molar_mass()), float(vapour.molar_mass())
         mass = share * light / (share * light + (1.0 - share) * heavy)
 
         def mean(low: float, high: float) -> float:

@@ -33,12 +33,13 @@ def _standard_output_shut() -> Iterator[None]:
 # The tables speed up single saturation calls a thousandth of a second at the price of two seconds at start.
 os.environ.setdefault("COOLPROP_DISABLE_SUPERANCILLARIES_ENTIRELY", "1")
 with _standard_output_shut():
-    import CoolProp as _coolprop
+    import CoolProp
     from CoolProp.CoolProp import PyGuessesStructure as Guesses
+
+_coolprop: Any = CoolProp  # the library carries types only in part
 
 VERSION: str = f"CoolProp {_coolprop.__version__}"
 
-# mypy sees no types in the library; these constants are plain integers.
 DENSITY_TEMPERATURE: int = _coolprop.DmolarT_INPUTS
 TEMPERATURE_QUALITY: int = _coolprop.QT_INPUTS
 PRESSURE_QUALITY: int = _coolprop.PQ_INPUTS
@@ -53,7 +54,7 @@ S: int = _coolprop.iSmolar
 GAS: int = _coolprop.iphase_gas
 LIQUID: int = _coolprop.iphase_liquid
 
-__all__ = ["Guesses", "VERSION", "components", "open_state"]
+__all__ = ["VERSION", "Guesses", "components", "open_state"]
 
 Library = Any
 """An AbstractState of the library, which carries no type information."""

@@ -3,13 +3,16 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cached_property
+from itertools import combinations
 
 from ..errors import NotModelled
 from . import library
 from .catalogue import Refrigerant
+from .curves import Curve
 from .limits import Limits
 from .phases import NoRoot, Phase
-from .saturation import BUBBLE, DEW, BlendSolver, Curve, PureSolver, Solver
+from .solvers import BUBBLE, DEW, BlendSolver, PureSolver, Solver
 
 # How near the critical temperature the curves are laid [K]; answers are given only farther away.
 PURE_END = 0.05
@@ -50,10 +53,21 @@ def traced_ends(solver: Solver, liquid: Phase) -> tuple[float, float, float]:
         ) from error
 
 
+def _why_not(fluid: str) -> str:
+    """Say which pair of components the library cannot mix, by its own names for them."""
+    for one, other in combinations(fluid.split("&"), 2):
+        try:
+            library.open_state(f"{one}&{other}")
+        except ValueError:
+            return f"no published mixing model is available for {one} with {other}"
+    return "the property library has no model for it"
+
+
 class Model:
     """Phases, curves and limits of one refrigerant. Raises NotModelled when the library refuses it."""
 
     def __init__(self, refrigerant: Refrigerant) -> None:
+        self.refrigerant = refrigerant
         self.blend = refrigerant.is_blend
         fluid = refrigerant.library_fluid
         predefined = not self.blend or fluid.endswith(".mix")
@@ -68,7 +82,7 @@ class Model:
             )
         except ValueError as error:
             raise NotModelled(
-                f"{refrigerant.designation} cannot be computed: the property library has no model for it.",
+                f"{refrigerant.designation} cannot be computed: {_why_not(fluid)}.",
                 "A blend needs published mixing parameters for every pair of its components.",
             ) from error
         state = self.liquid.state
@@ -92,19 +106,17 @@ class Model:
         self.dew = Curve(solver, DEW, floor, critical_temperature, top) if self.blend else self.bubble
         self.highest_density = 4.2 * self.liquid.reducing_density
 
-    @property
+    @cached_property
     def critical_density_bound(self) -> float:
         """A density below that of any liquid colder than the critical point [mol/m3]."""
         if self.blend:
             return 0.9 * self.bubble.highest.liquid_density
         return self.liquid.reducing_density
 
-    @property
-    def window(self) -> Window | None:
-        """Where no phase can be decided: none for a pure fluid but the last hundredths of a kelvin."""
+    @cached_property
+    def window(self) -> Window:
+        """Where no phase can be decided: for a pure fluid only the last hundredths of a kelvin."""
         if not self.blend:
             return Window(self.limits.critical_pressure, self.limits.critical_temperature)
         highest = max(self.limits.critical_pressure, self.bubble.highest.pressure, self.dew.highest.pressure)
         return Window(1.02 * highest, self.limits.critical_temperature + 2.0)
-
-

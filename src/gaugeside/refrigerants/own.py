@@ -32,6 +32,7 @@ def load_own(folder: Path) -> list[str]:
         names = ["mix 1"]
     """
     path = folder / FILE
+    catalogue.cache_clear()  # what an earlier call took in is forgotten
     try:
         if not path.is_file():
             return []
@@ -41,8 +42,11 @@ def load_own(folder: Path) -> list[str]:
     except (OSError, UnicodeDecodeError, tomllib.TOMLDecodeError, RecursionError) as error:
         reason = str(error) if str(error).isprintable() else type(error).__name__
         return [f"{FILE} could not be read: {reason}."]
-    problems = [f"{FILE}: “{_shown(key)}” is not known here; write [names] or [blends.NAME]."
-                for key in data if key not in ("names", "blends")]
+    problems = [
+        f"{FILE}: “{_shown(key)}” is not known here; write [names] or [blends.NAME]."
+        for key in data
+        if key not in ("names", "blends")
+    ]
     problems += _each(data.get("blends", {}), "blends", _take_blend)
     problems += _each(data.get("names", {}), "names", _take_name)
     return problems

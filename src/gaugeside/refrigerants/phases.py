@@ -6,7 +6,7 @@ import math
 from collections.abc import Sequence
 
 from . import library
-from .library import D, DENSITY_TEMPERATURE, P, T
+from .library import DENSITY_TEMPERATURE, D, P, T
 
 MOST_STEPS = 80
 
@@ -77,9 +77,7 @@ class Phase:
                 return float(density)
         raise NoRoot("density does not settle")
 
-    def search(
-        self, pressure: float, temperature: float, low: float, high: float, guess: float | None = None
-    ) -> float:
+    def search(self, pressure: float, temperature: float, low: float, high: float, guess: float | None = None) -> float:
         """Return the density at a pressure [Pa] and temperature [K] between two bounds [mol/m3].
 
         Newton's method kept inside a shrinking bracket in which pressure rises with density.
