@@ -7,8 +7,6 @@ from typing import NoReturn
 
 from ..errors import OutOfRange, Refusal
 
-# Nearer the critical point than this the curves bend so sharply that a reading fixes nothing.
-NEAREST = 1.0
 DRY_ICE = "R-744"
 
 
@@ -25,7 +23,10 @@ def bar(pressure: float) -> str:
 
 @dataclass(frozen=True, slots=True)
 class Limits:
-    """The range of one refrigerant; temperatures [K], pressures absolute [Pa]."""
+    """The range of one refrigerant; temperatures [K], pressures absolute [Pa].
+
+    margin: nearer the critical temperature than this [K] the curves bend so sharply that a reading fixes nothing.
+    """
 
     designation: str
     critical_temperature: float
@@ -33,6 +34,7 @@ class Limits:
     minimum_temperature: float
     maximum_temperature: float
     maximum_pressure: float
+    margin: float
     pure: bool
 
     @property
@@ -52,7 +54,7 @@ class Limits:
         raise OutOfRange(
             f"{what} is too near the critical point of {self.designation}, {self.critical_point}: "
             f"there liquid and vapour become alike and no reliable number can be given.",
-            f"Stay at least {NEAREST:g} K away from it.",
+            f"Stay at least {self.margin:g} K away from it.",
         )
 
     def too_cold(self, what: str) -> NoReturn:
@@ -101,7 +103,7 @@ class Limits:
             self.too_cold(celsius(temperature))
         if temperature > self.critical_temperature:
             self.above_critical(f"{celsius(temperature)} is above it")
-        if temperature > self.critical_temperature - NEAREST + 1e-9:
+        if temperature > self.critical_temperature - self.margin + 1e-9:
             self.too_near(celsius(temperature))
 
     def check_saturation_pressure(self, pressure: float) -> None:
