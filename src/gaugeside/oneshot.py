@@ -170,8 +170,8 @@ def _as_text(check: Check, answer: Answer, typed: Mapping[str, TypedLine], dress
             lines.append(f"{declared.label:<24}{line.text.strip():<18}  {first:<14} {second}".rstrip())
     lines.append("-" * 78)
     for found in findings(check, answer, dress, site):
-        first, second = (21, 18) if found.paired else (14, 13)
-        lines.append(f"{found.label:<23} {found.first:<{first}} {found.second:<{second}} {found.remark}".rstrip())
+        wide, narrow = (21, 18) if found.paired else (14, 13)
+        lines.append(f"{found.label:<23} {found.first:<{wide}} {found.second:<{narrow}} {found.remark}".rstrip())
     pressures = every_pressure(answer, dress, site) if check.name == "saturation" else None
     for shown_table in [*([pressures] if pressures else []), *(table(raw, dress, site) for raw in answer.tables)]:
         lines += ["", *table_lines(shown_table)]

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import asyncio
 import textwrap
+from collections.abc import Callable
 from contextlib import suppress
 from dataclasses import replace
 from functools import partial
@@ -17,11 +18,11 @@ from textual.widget import Widget
 
 from gaugeside.app.help_text import help_lines
 from gaugeside.app.panes.logbook import LogbookPane
-from gaugeside.app.panes.sheet import RULE, SheetPane
+from gaugeside.app.panes.sheet import SheetPane
 from gaugeside.app.panes.site import SitePane
 from gaugeside.app.saver import Saver
-from gaugeside.app.widgets.dialogs import Help, MachineAndNote, Menu, RefrigerantPicker
-from gaugeside.app.widgets.lines import CAUTION, MUTED, Line, QuietScreen
+from gaugeside.app.widgets.dialogs import Dialog, Help, MachineAndNote, Menu, RefrigerantPicker
+from gaugeside.app.widgets.lines import CAUTION, MUTED, RULE, Line, QuietScreen
 from gaugeside.checks import CHECKS
 from gaugeside.checks.view import FOOTNOTE
 from gaugeside.engine import Engine, Reply
@@ -70,9 +71,10 @@ class GaugesideApp(App[None]):
     TextField, TextField:focus, ChoiceField { background: $background; color: $foreground; border: none; }
     TextField:focus { text-style: underline; background: $surface; }
     ChoiceField:focus { text-style: reverse; }
+    .rule { text-overflow: clip; }
     #word { height: 2; }
     #word > Line { height: 1; }
-    Screen.-narrow FieldLine { height: 2; layout: grid; grid-size: 2 2; grid-columns: 18 1fr; grid-rows: 1 1; }
+    Screen.-narrow FieldLine { height: 2; layout: grid; grid-size: 2 2; grid-columns: 20 1fr; grid-rows: 1 1; }
     Screen.-narrow FieldLine > .understood { column-span: 2; width: 1fr; padding-left: 2; }
     Screen.-narrow FieldLine > TextField { width: 1fr; }
     Screen.-narrow FieldLine > ChoiceField { width: 1fr; }
@@ -245,7 +247,7 @@ class GaugesideApp(App[None]):
         """Head, panes, word, keys."""
         yield Line(id="head")
         yield Line(id="tabs")
-        yield Line(RULE, MUTED)
+        yield Line(RULE, MUTED, classes="rule")
         yield Container(id="panes")
         with Container(id="word"):
             yield Line()
@@ -276,11 +278,7 @@ class GaugesideApp(App[None]):
     def _show_keys(self) -> None:
         width, height = self.size
         small = width < 80 or height < 24
-        words = (
-            f"{width} x {height}: PgUp PgDn scroll; whole at 80 x 24. Ctrl+O menu"
-            if small
-            else _OTHER_KEYS.get(self._now, _KEYS)
-        )
+        words = f"{width}x{height} PgUp PgDn scroll  Ctrl+O menu" if small else _OTHER_KEYS.get(self._now, _KEYS)
         self._base.query_one("#keys", Line).say(words, CAUTION if small else MUTED)
         self._head()
 
@@ -291,9 +289,12 @@ class GaugesideApp(App[None]):
         else:
             left, style = f"{r.designation}  {r.safety_class}  {r.nature}", "bold"
         site = f"{self.site.atmosphere / 1000:.2f} kPa abs {self.site.source.split(',')[0]}"
-        text = f" {left:<26}{site:<38}{self.settings.tag[:14]}"
+        narrow = self.size.width < 80
+        text = f" {left}  {self.settings.tag}" if narrow else f" {left:<26}{site:<38}{self.settings.tag[:14]}"
         self._base.query_one("#head", Line).say(text.rstrip(), style)
         tabs = "  ".join(f"{key} {name.upper() if name == self._now else name}" for name, key in PANES.items())
+        if narrow:
+            tabs = f"{self._now.upper()}   F2 to F7 or Ctrl+O"
         self._base.query_one("#tabs", Line).say(f" {tabs}")
 
     # Actions
@@ -331,6 +332,13 @@ class GaugesideApp(App[None]):
     def _pane(self) -> Any:
         return self._base.query_one(f"#pane-{self._now}")
 
+    def _open(self, dialog: Dialog, answered: Callable[[Any], None] | None) -> None:
+        """Lay a dialog over the pane; any key that opens one closes the one that is open."""
+        if len(self.screen_stack) > 1:
+            self.screen.dismiss(None)
+        else:
+            self.push_screen(dialog, answered)
+
     def action_pick(self) -> None:
         """Pick the refrigerant."""
 
@@ -340,8 +348,7 @@ class GaugesideApp(App[None]):
                 self.apply(replace(self.settings, refrigerant=found.designation))
                 self._head()
 
-        if len(self.screen_stack) == 1:
-            self.push_screen(RefrigerantPicker(), picked)
+        self._open(RefrigerantPicker(), picked)
 
     def _use(self, found: Refrigerant) -> None:
         self.refrigerant = found
@@ -350,8 +357,6 @@ class GaugesideApp(App[None]):
 
     def action_words(self) -> None:
         """Ask for machine and note: of the entry selected in the logbook, else of what is kept next."""
-        if len(self.screen_stack) > 1:
-            return
         pane = self._pane()
         if isinstance(pane, LogbookPane):
             entry = pane.selected
@@ -364,7 +369,7 @@ class GaugesideApp(App[None]):
                 if words:
                     pane.change(*words)
 
-            self.push_screen(MachineAndNote(title, entry.tag, entry.note), changed)
+            self._open(MachineAndNote(title, entry.tag, entry.note), changed)
             return
 
         def given(words: Any) -> None:
@@ -375,7 +380,7 @@ class GaugesideApp(App[None]):
                 self.say(f"Kept next: machine {tag or '-'}, note {self.note or '-'}.")
                 self.form_changed()
 
-        self.push_screen(MachineAndNote("For what is kept next", self.settings.tag, self.note), given)
+        self._open(MachineAndNote("For what is kept next", self.settings.tag, self.note), given)
 
     def action_menu(self) -> None:
         """Show every action under a letter."""
@@ -384,16 +389,13 @@ class GaugesideApp(App[None]):
             if action:
                 self.call_later(self.run_action, action)
 
-        if len(self.screen_stack) == 1:
-            self.push_screen(Menu(_MENU), chosen)
+        self._open(Menu(_MENU), chosen)
 
     def action_help(self) -> None:
         """Show help for the pane."""
-        if len(self.screen_stack) > 1:
-            return
         pane = self._pane()
         check, units = (pane.check, pane.units) if isinstance(pane, SheetPane) else (None, {})
-        self.push_screen(Help(help_lines(check, units, self.dress)))
+        self._open(Help(help_lines(check, units, self.dress)), None)
 
     def action_keep_here(self) -> None:
         """Keep what this pane shows."""
@@ -423,7 +425,7 @@ class GaugesideApp(App[None]):
     def action_scroll_pane(self, by: int) -> None:
         """Scroll the pane by most of its height."""
         pane = self._pane()
-        pane.scroll_relative(y=by * max(1, pane.size.height - 2), animate=False)
+        pane.scroll_relative(y=by * max(1, pane.size.height - 1), animate=False)
 
     def action_repaint(self) -> None:
         """Paint the whole screen again."""
@@ -432,7 +434,7 @@ class GaugesideApp(App[None]):
     def action_leave(self) -> None:
         """Save and leave."""
         if len(self.screen_stack) > 1:
-            self.pop_screen()
+            self.screen.dismiss(None)
             return
         self.saver.draft(self.draft())
         self.exit()

@@ -11,7 +11,7 @@ from textual.containers import VerticalScroll
 from textual.widgets import Input
 
 from gaugeside.app.widgets.field import FieldLine, TextField
-from gaugeside.app.widgets.lines import CAUTION, MUTED, Line, Lines, Styled
+from gaugeside.app.widgets.lines import CAUTION, MUTED, RULE, Line, Lines, Styled
 from gaugeside.errors import Refusal
 from gaugeside.logbook import Entry
 
@@ -19,7 +19,6 @@ if TYPE_CHECKING:
     from gaugeside.app.app import GaugesideApp
 
 _MOST = 500
-_RULE = "-" * 300
 
 
 class FilterField(TextField):
@@ -55,9 +54,9 @@ class LogbookPane(VerticalScroll, can_focus=False):
         """Filter, list, the entry selected."""
         yield Line(f"{'':<20}{'as typed':<21}words, all of which must occur", MUTED)
         yield self._filter
-        yield Line(_RULE, MUTED)
+        yield Line(RULE, MUTED, classes="rule")
         yield Lines(id="entries")
-        yield Line(_RULE, MUTED)
+        yield Line(RULE, MUTED, classes="rule")
         yield Lines(id="entry")
 
     def on_mount(self) -> None:

@@ -13,7 +13,7 @@ from textual.timer import Timer
 from textual.widgets import Input
 
 from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
-from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, Line, Lines, Styled
+from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, RULE, Line, Lines, Styled
 from gaugeside.checks.perform import request
 from gaugeside.checks.sheet import Answer, Check, Entry, ReadingLine
 from gaugeside.checks.typed import TypedLine, read_line, takes
@@ -28,7 +28,6 @@ if TYPE_CHECKING:
 _SETTLE = 0.7
 # Seconds after which findings of older readings are taken off the screen while an answer is awaited.
 _PATIENCE = 0.25
-RULE = "-" * 300
 
 
 class SheetPane(VerticalScroll, can_focus=False):
@@ -73,7 +72,7 @@ class SheetPane(VerticalScroll, can_focus=False):
                 field = TextField(text, id=line.name)
             self._lines[line.name] = FieldLine(line.name, line.label, field)
             yield self._lines[line.name]
-        yield Line(RULE, MUTED)
+        yield Line(RULE, MUTED, classes="rule")
         yield Lines(id="findings")
 
     def on_mount(self) -> None:
@@ -275,13 +274,13 @@ class SheetPane(VerticalScroll, can_focus=False):
 
 def finding_lines(found: FindingText, width: int) -> list[str]:
     """Return one finding as lines; what does not fit beside the numbers goes on under itself."""
+    if width < 60:
+        words = f"{found.label}  {found.first}  {found.second}  {found.remark}".strip()
+        return textwrap.wrap(words, width, subsequent_indent="    ")
     first, second = (21, 18) if found.paired else (14, 13)
     head = f"{found.label:<21} {found.first:<{first}} {found.second:<{second}} "
-    room = width - len(head)
-    if room < 12:
-        return [head.rstrip(), *textwrap.wrap(found.remark, width, initial_indent="  ", subsequent_indent="  ")]
-    words = textwrap.wrap(found.remark, room) or [""]
-    return [(head + words[0]).rstrip(), *(" " * len(head) + more for more in words[1:])]
+    beside = textwrap.wrap(found.remark, max(12, width - len(head))) or [""]
+    return [(head + beside[0]).rstrip(), *(" " * len(head) + more for more in beside[1:])]
 
 
 def side_by_side(tables: list[TableText]) -> list[str]:

@@ -11,7 +11,7 @@ from textual.containers import VerticalScroll
 from textual.widgets import Input
 
 from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
-from gaugeside.app.widgets.lines import CAUTION, MUTED, Line
+from gaugeside.app.widgets.lines import CAUTION, MUTED, RULE, Line
 from gaugeside.checks.view import site_line
 from gaugeside.errors import Refusal
 from gaugeside.preferences import dress_of, read_site, site_source
@@ -23,7 +23,6 @@ from gaugeside.settings import Settings
 if TYPE_CHECKING:
     from gaugeside.app.app import GaugesideApp
 
-_RULE = "-" * 300
 _HELP = {
     "site_pressure": "640 m, 2100 ft, or a barometer reading such as 94.1 kPa, absolute and not reduced to sea level; "
     "empty: sea level.",
@@ -65,7 +64,7 @@ class SitePane(VerticalScroll, can_focus=False):
         yield Line(f"{'setting':<20}{'as typed or chosen':<21}understood", MUTED)
         yield self._site
         yield from self._lines.values()
-        yield Line(_RULE, MUTED)
+        yield Line(RULE, MUTED, classes="rule")
         yield Line("Left, Right or a first letter change a choice. Changes count at once and are remembered.", MUTED)
         yield Line(f"Settings: {self.house.places.settings_file}", MUTED)
         yield Line(f"Logbook:  {self.house.places.logbook_file}", MUTED)

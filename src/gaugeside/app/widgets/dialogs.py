@@ -30,9 +30,10 @@ class Dialog(ModalScreen[Any]):
     focused: Reactive[Widget | None] = Reactive(None, repaint=False)
     DEFAULT_CSS = """
     Dialog { align: center top; background: $background; }
+    Dialog > VerticalScroll { scrollbar-size: 0 0; }
     Dialog > Vertical, Dialog > VerticalScroll { width: 80; max-width: 100%; height: auto; max-height: 100%; }
     """
-    BINDINGS = [Binding("escape", "leave", priority=True), Binding("f10", "leave", priority=True)]
+    BINDINGS = [Binding("escape", "leave", priority=True)]
 
     def action_leave(self) -> None:
         """Close without an answer."""
@@ -56,8 +57,6 @@ class PickField(TextField):
 
 class RefrigerantPicker(Dialog):
     """Type part of a designation, a name or a component; Enter takes the line with the mark."""
-
-    BINDINGS = [Binding("f8", "leave", priority=True)]
 
     def __init__(self, typed: str = "") -> None:
         super().__init__()
@@ -122,8 +121,6 @@ class RefrigerantPicker(Dialog):
 class Menu(Dialog):
     """Every action under a letter, for terminals that lose function keys."""
 
-    BINDINGS = [Binding("ctrl+o", "leave", priority=True)]
-
     def __init__(self, items: Sequence[tuple[str, str, str]]) -> None:
         super().__init__()
         self._items = items
@@ -151,7 +148,7 @@ class Help(Dialog):
     """What each field accepts, and the keys."""
 
     BINDINGS = [
-        Binding("f1,enter,space", "leave", priority=True),
+        Binding("enter,space", "leave", priority=True),
         Binding("down", "scroll(1)"),
         Binding("up", "scroll(-1)"),
         Binding("pagedown", "scroll(18)"),
@@ -175,8 +172,6 @@ class Help(Dialog):
 
 class MachineAndNote(Dialog):
     """Which machine the readings are of, and a note; Enter on the note takes both."""
-
-    BINDINGS = [Binding("f9", "leave", priority=True)]
 
     def __init__(self, title: str, tag: str, note: str) -> None:
         super().__init__()

@@ -17,6 +17,8 @@ from gaugeside.checks.view import ascii_only
 Styled = tuple[str, str]
 MAIN, MUTED, CAUTION, REFUSED = "bold $accent", "$text-muted", "bold $warning", "bold $error"
 
+RULE = "-" * 300
+
 _ascii = False
 
 
