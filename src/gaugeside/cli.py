@@ -97,7 +97,8 @@ def _add_check(commands: Any, check: Any) -> None:
     after = [line for line in check.reading_lines() if line.positional and not line.choices]
     for line in before:
         command.add_argument(line.name, help=line.help)
-    command.add_argument("refrigerant", help="designation or common name: R-134a, 134a, CO2")
+    if check.needs_refrigerant:
+        command.add_argument("refrigerant", help="designation or common name: R-134a, 134a, CO2")
     for line in after:
         command.add_argument(line.name, help=line.help)
     for line in check.reading_lines():

@@ -62,7 +62,7 @@ def run_check(arguments: Namespace, say: Printer) -> int:
         settings = replace(settings, tag=arguments.tag)
     load_own(home.settings_folder)
     dress, site = dress_of(settings), site_of(settings)
-    refrigerant = _named(arguments.refrigerant)
+    refrigerant = _named(arguments.refrigerant) if check.needs_refrigerant else ""
     typed = read_form(check, _texts(check, arguments), {}, dress, site)
     for line in typed.values():
         if line.refusal is not None:
@@ -155,13 +155,17 @@ def _reading_json(entry: Entry, kind: Kind, line: TypedLine) -> dict[str, Any]:
     if entry is Entry.STATE:
         values = {name: {"value": value, "unit": SI_UNIT[PROPERTIES[name]]} for name, value in line.value.items()}
         return {"values": values, "typed": line.text.strip()}
+    if entry is Entry.WORDS:
+        return {"value": line.value, "unit": "", "typed": line.text.strip()}
     ((name, value),) = line.value.items()
     return {"value": value, "unit": SI_UNIT[Kind(name)], "kind": name, "typed": line.text.strip()}
 
 
 def _as_text(check: Check, answer: Answer, typed: Mapping[str, TypedLine], dress: Dress, site: Site) -> list[str]:
-    refrigerant = find(answer.refrigerant)
-    head = f"{refrigerant.designation}  {refrigerant.safety_class}  {refrigerant.nature}"
+    head = check.label
+    if answer.refrigerant:
+        refrigerant = find(answer.refrigerant)
+        head = f"{refrigerant.designation}  {refrigerant.safety_class}  {refrigerant.nature}"
     lines = [f"{head}   site {site_line(site)}", "-" * 78]
     for declared in check.reading_lines():
         line = typed[declared.name]

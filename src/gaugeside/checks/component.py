@@ -32,7 +32,9 @@ Given = Mapping[str, float]
 class Readings:
     """What is typed; what is wanted stays blank."""
 
-    component: str | None = choice("component", KINDS, "condenser (gas cooler too), evaporator, compressor, expansion.")
+    component: str | None = choice(
+        "component", KINDS, "condenser (gas cooler too), evaporator, compressor, expansion.", positional=True
+    )
     inlet: Given | None = state("inlet", "Pressure and one more: 9.1 bar g, 68 C · SH 5 K · sat vapour · x 0.3.")
     outlet: Given | None = state("outlet", "Like the inlet; the pressure alone when this state is wanted.")
     mass_flow: float | None = reading("mass flow", Kind.MASS_FLOW, "Refrigerant; blank when it is wanted.")

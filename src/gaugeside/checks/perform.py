@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from typing import Any
 
 from gaugeside.checks import CHECKS
-from gaugeside.checks.sheet import Conditions, answer
+from gaugeside.checks.sheet import Conditions, Surroundings, answer
 from gaugeside.errors import Refusal
 from gaugeside.quantities import Dress, Kind, Site
 from gaugeside.refrigerants import Datum, find
@@ -31,16 +31,18 @@ def request(
 
 def perform(asked: Mapping[str, Any]) -> dict[str, Any]:
     """Return {"answer": ...} or, refused, {"error": {"field", "message", "hint"}}; other exceptions are faults."""
-    # Imported here: it brings the property library, which the screen's process never loads.
+    # Imported here: they bring the property library, which the screen's process never loads.
     from gaugeside.refrigerants import open_fluid
+    from gaugeside.refrigerants.library import VERSION
 
     try:
-        found = find(asked["refrigerant"])
-        datum = Datum(asked["datum"])
-        origin, step = asked["grid"]
-        conditions = Conditions(
-            open_fluid(found, datum), found, datum, Site(asked["atmosphere"], asked["site"]), (origin, step)
-        )
-        return {"answer": answer(CHECKS[asked["check"]], conditions, asked["values"]).plain()}
+        check = CHECKS[asked["check"]]
+        datum, (origin, step) = Datum(asked["datum"]), asked["grid"]
+        site = Site(asked["atmosphere"], asked["site"])
+        where = Surroundings(datum, site, (origin, step))
+        if check.needs_refrigerant:
+            found = find(asked["refrigerant"])
+            where = Conditions(datum, site, (origin, step), fluid=open_fluid(found, datum), refrigerant=found)
+        return {"answer": answer(check, where, asked["values"], VERSION).plain()}
     except Refusal as refusal:
         return {"error": {"field": refusal.field, "message": refusal.message, "hint": refusal.hint}}

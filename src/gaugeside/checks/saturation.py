@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from gaugeside.checks.caution import model_note, refrigerant_caution
-from gaugeside.checks.sheet import Check, Conditions, Outcome, Table, finding, pressure_or_temperature
+from gaugeside.checks.sheet import Check, Conditions, Outcome, Table, either, finding
 from gaugeside.errors import OutOfRange, Refusal
 from gaugeside.quantities import Kind
 
@@ -20,8 +20,11 @@ if TYPE_CHECKING:
 class Readings:
     """What is typed."""
 
-    reading: Mapping[str, float] | None = pressure_or_temperature(
-        "pressure or temp.", "One pressure gives the temperatures; one temperature gives the pressures."
+    reading: Mapping[str, float] | None = either(
+        "pressure or temp.",
+        (Kind.PRESSURE, Kind.TEMPERATURE),
+        "One pressure gives the temperatures; one temperature gives the pressures.",
+        positional=True,
     )
 
 

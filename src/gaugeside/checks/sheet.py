@@ -22,9 +22,10 @@ class Entry(StrEnum):
     """How the text of a reading is read."""
 
     QUANTITY = "quantity"
+    EITHER = "one of several kinds"
     STATE = "state"
-    PRESSURE_OR_TEMPERATURE = "pressure or temperature"
     CHOICE = "choice"
+    WORDS = "words"
 
 
 @dataclass(frozen=True)
@@ -32,7 +33,9 @@ class ReadingLine:
     """One line of the form.
 
     name: full words with underscores, as in JSON. label: as on the screen. help: one line, what belongs here.
-    kind: for a quantity. choices: for a choice. positional: given without an option name on the command line.
+    kind: for a quantity. kinds: for one of several kinds. choices: for a choice. positional: given without an option
+    name on the command line. only: the choices of the form's first line under which this line has a meaning; empty
+    for all.
     """
 
     name: str
@@ -40,8 +43,14 @@ class ReadingLine:
     entry: Entry
     help: str
     kind: Kind = Kind.WORDS
+    kinds: tuple[Kind, ...] = ()
     choices: tuple[str, ...] = ()
     positional: bool = False
+    only: tuple[str, ...] = ()
+
+    def meant(self, chosen: str | None) -> bool:
+        """Whether the line has a meaning under what is chosen in the form's first line."""
+        return not self.only or chosen in self.only
 
 
 @dataclass(frozen=True)
@@ -79,17 +88,23 @@ class Table:
 
 
 @dataclass(frozen=True)
-class Conditions:
+class Surroundings:
     """What every check may ask for besides its readings.
 
     grid: origin and step [K] of the whole degrees in which the reader counts, for table rows.
     """
 
-    fluid: Fluid
-    refrigerant: Refrigerant
     datum: Datum
     site: Site
     grid: tuple[float, float] = (273.15, 1.0)
+
+
+@dataclass(frozen=True)
+class Conditions(Surroundings):
+    """The surroundings, and the refrigerant ready to be asked."""
+
+    fluid: Fluid = field(kw_only=True)
+    refrigerant: Refrigerant = field(kw_only=True)
 
 
 @dataclass
@@ -124,14 +139,18 @@ class Outcome:
 
 @dataclass(frozen=True)
 class Check:
-    """A check: name on the command line, label on the screen, its two dataclasses and its function."""
+    """A check: name on the command line, label on the screen, its two dataclasses and its function.
+
+    needs_refrigerant: the function takes Conditions; else Surroundings.
+    """
 
     name: str
     label: str
     summary: str
     readings: type[Any]
     findings: type[Any]
-    run: Callable[[Conditions, Any], Outcome]
+    run: Callable[[Any, Any], Outcome]
+    needs_refrigerant: bool = True
 
     def reading_lines(self) -> tuple[ReadingLine, ...]:
         """Return the declared readings in their order."""
@@ -151,25 +170,30 @@ def _line(item: Field[Any], what: str) -> Any:
     return type(declared)(**{**declared.__dict__, "name": item.name})
 
 
-def reading(label: str, kind: Kind, help: str) -> Any:
+def reading(label: str, kind: Kind, help: str, *, only: tuple[str, ...] = ()) -> Any:
     """Declare a reading that is one quantity."""
-    return field(default=None, metadata={"reading": ReadingLine("", label, Entry.QUANTITY, help, kind)})
+    return field(default=None, metadata={"reading": ReadingLine("", label, Entry.QUANTITY, help, kind, only=only)})
 
 
-def state(label: str, help: str) -> Any:
+def state(label: str, help: str, *, only: tuple[str, ...] = ()) -> Any:
     """Declare a reading that is a state of the refrigerant; its value maps property names to SI numbers."""
-    return field(default=None, metadata={"reading": ReadingLine("", label, Entry.STATE, help)})
+    return field(default=None, metadata={"reading": ReadingLine("", label, Entry.STATE, help, only=only)})
 
 
-def pressure_or_temperature(label: str, help: str) -> Any:
-    """Declare a reading that is either a pressure or a temperature; its value has the one name it was given."""
-    line = ReadingLine("", label, Entry.PRESSURE_OR_TEMPERATURE, help, positional=True)
+def either(label: str, kinds: tuple[Kind, ...], help: str, *, positional: bool = False) -> Any:
+    """Declare a reading that is one of several kinds, told apart by its unit; its value maps the kind to a number."""
+    line = ReadingLine("", label, Entry.EITHER, help, kinds=kinds, positional=positional)
     return field(default=None, metadata={"reading": line})
 
 
-def choice(label: str, choices: tuple[str, ...], help: str) -> Any:
+def words(label: str, help: str, *, positional: bool = False) -> Any:
+    """Declare a reading that is text."""
+    return field(default=None, metadata={"reading": ReadingLine("", label, Entry.WORDS, help, positional=positional)})
+
+
+def choice(label: str, choices: tuple[str, ...], help: str, *, positional: bool = False) -> Any:
     """Declare a reading that is one of a few words."""
-    line = ReadingLine("", label, Entry.CHOICE, help, choices=choices, positional=True)
+    line = ReadingLine("", label, Entry.CHOICE, help, choices=choices, positional=positional)
     return field(default=None, metadata={"reading": line})
 
 
@@ -247,7 +271,7 @@ def _remark(plain: Any) -> Remark:
     return Remark(text, {name: (value, Kind(kind)) for name, (value, kind) in values.items()})
 
 
-def answer(check: Check, conditions: Conditions, values: Mapping[str, Any]) -> Answer:
+def answer(check: Check, conditions: Surroundings, values: Mapping[str, Any], library_version: str) -> Answer:
     """Run `check` on SI `values` (reading name -> value) and return its answer; Refusal when there is none."""
     outcome = check.run(conditions, check.readings(**values))
     found = {
@@ -261,7 +285,7 @@ def answer(check: Check, conditions: Conditions, values: Mapping[str, Any]) -> A
         raise reason
     return Answer(
         check=check.name,
-        refrigerant=conditions.refrigerant.designation,
+        refrigerant=conditions.refrigerant.designation if isinstance(conditions, Conditions) else "",
         findings=found,
         remarks={name: remark for name, remark in outcome.remarks.items() if name in found},
         notes=tuple(outcome.notes),
@@ -270,7 +294,7 @@ def answer(check: Check, conditions: Conditions, values: Mapping[str, Any]) -> A
         unresolved=None
         if unresolved is None
         else {"field": unresolved.field, "message": unresolved.message, "hint": unresolved.hint},
-        library_version=conditions.fluid.library_version,
+        library_version=library_version,
     )
 
 

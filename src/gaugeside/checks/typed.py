@@ -65,8 +65,11 @@ def takes(line: ReadingLine, units: FieldUnits, dress: Dress) -> str:
         return " / ".join(line.choices)
     if line.entry is Entry.QUANTITY:
         return default_unit(line.kind, units, dress).label
-    pressure, temperature = (default_unit(kind, units, dress).label for kind in (Kind.PRESSURE, Kind.TEMPERATURE))
-    return f"{pressure}, {temperature}" if line.entry is Entry.STATE else f"{pressure} or {temperature}"
+    if line.entry is Entry.EITHER:
+        return " or ".join(default_unit(kind, units, dress).label for kind in line.kinds)
+    if line.entry is Entry.STATE:
+        return ", ".join(default_unit(kind, units, dress).label for kind in (Kind.PRESSURE, Kind.TEMPERATURE))
+    return ""
 
 
 def read_line(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site: Site) -> TypedLine:
@@ -82,11 +85,26 @@ def read_line(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, sit
 def read_form(
     check: Check, texts: Mapping[str, str], units: Mapping[str, FieldUnits], dress: Dress, site: Site
 ) -> dict[str, TypedLine]:
-    """Return every line of a check's form, read."""
-    return {
+    """Return every line of a check's form, read; a line that has no meaning under the first choice is refused."""
+    typed = {
         line.name: read_line(line, texts.get(line.name, ""), units.get(line.name, {}), dress, site)
         for line in check.reading_lines()
     }
+    chosen = first_choice(check, typed)
+    for line in check.reading_lines():
+        if not line.meant(chosen) and typed[line.name].text.strip():
+            refusal = Refusal(f"A {chosen} takes no {line.label} here.", f"Leave the {line.label} out.", line.name)
+            typed[line.name] = TypedLine(typed[line.name].text, refusal=refusal)
+    return typed
+
+
+def first_choice(check: Check, typed: Mapping[str, TypedLine]) -> str | None:
+    """Return what is chosen in the form's first line, None where that is no choice or not understood."""
+    first = check.reading_lines()[0]
+    if first.entry is not Entry.CHOICE or first.name not in typed:
+        return None
+    value = typed[first.name].value
+    return None if value is None else str(value)
 
 
 def _quantity(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site: Site) -> TypedLine:
@@ -104,23 +122,31 @@ def _kept(units: FieldUnits, reading: Reading) -> FieldUnits:
 
 
 def _either(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site: Site) -> TypedLine:
-    """Read a pressure or a temperature; a bare number is what the field was last typed in, at first a pressure."""
+    """Read one of several kinds; a bare number is of the kind the field was last typed in, at first the first."""
     _, unit_text = split_number(guard(text))
+    known = [kind for kind in line.kinds if kind.value in units]
+    kind = line.kinds[0]
     if unit_text:
-        kind = Kind.TEMPERATURE if fold(unit_text) in spellings(Kind.TEMPERATURE) else Kind.PRESSURE
-    else:
-        kind = Kind.TEMPERATURE if list(units)[-1:] == [Kind.TEMPERATURE.value] else Kind.PRESSURE
+        kind = next((k for k in line.kinds if fold(unit_text) in spellings(k)), kind)
+    elif known:
+        order = list(units)
+        kind = max(known, key=lambda k: order.index(k.value))
     others = {name: label for name, label in units.items() if name != kind.value}
     try:
         found = _from_reading(text, kind, units, dress, site, named=True)
     except Refusal as refusal:
-        if refusal.message.endswith(f"this field takes a {Kind.PRESSURE.value}."):
-            refusal.message = refusal.message.removesuffix("pressure.") + "pressure or a temperature."
+        if refusal.message.endswith(f"this field takes a {kind.value}."):
+            wanted = " or a ".join(k.value for k in line.kinds)
+            refusal.message = refusal.message.removesuffix(f"{kind.value}.") + f"{wanted}."
         raise
     # The kind typed last stands last: it decides what a bare number is.
-    return TypedLine(
-        text, found.value, found.understood, found.complete, {**others, kind.value: found.units[kind.value]}
-    )
+    kept = {**others, kind.value: found.units[kind.value]}
+    return TypedLine(text, found.value, found.understood, found.complete, kept)
+
+
+def _words(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site: Site) -> TypedLine:
+    said = guard(text)
+    return TypedLine(text, said, (said, ""), said, units)
 
 
 def _state(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site: Site) -> TypedLine:
@@ -147,6 +173,7 @@ def _choice(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site:
 _READERS = {
     Entry.QUANTITY: _quantity,
     Entry.STATE: _state,
-    Entry.PRESSURE_OR_TEMPERATURE: _either,
+    Entry.EITHER: _either,
+    Entry.WORDS: _words,
     Entry.CHOICE: _choice,
 }

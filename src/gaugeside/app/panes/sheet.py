@@ -16,7 +16,7 @@ from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
 from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, RULE, Line, Lines, Styled
 from gaugeside.checks.perform import request
 from gaugeside.checks.sheet import Answer, Check, Entry, ReadingLine
-from gaugeside.checks.typed import TypedLine, read_line, takes
+from gaugeside.checks.typed import TypedLine, first_choice, read_line, takes
 from gaugeside.checks.view import FindingText, TableText, every_pressure, findings, sentence, table
 from gaugeside.engine import Reply
 from gaugeside.errors import Refusal
@@ -113,7 +113,14 @@ class SheetPane(VerticalScroll, can_focus=False):
         """Read every line again, as after a change of site, units or refrigerant."""
         for line in self.check.reading_lines():
             self._read(line)
+        self._show_meant()
         self._ask()
+
+    def _show_meant(self) -> None:
+        """Show only the lines that have a meaning under what the form's first line chooses."""
+        chosen = first_choice(self.check, self.typed)
+        for line in self.check.reading_lines():
+            self._lines[line.name].display = line.meant(chosen)
 
     def _read(self, line: ReadingLine) -> None:
         house = self.house
@@ -142,7 +149,10 @@ class SheetPane(VerticalScroll, can_focus=False):
         self._changed(str(event.field.id))
 
     def _changed(self, name: str) -> None:
-        self._read(self.check.reading_line(name))
+        line = self.check.reading_line(name)
+        self._read(line)
+        if line.entry is Entry.CHOICE:
+            self._show_meant()
         self._ask()
         self.house.form_changed()
         if self._settle is not None:
@@ -167,23 +177,24 @@ class SheetPane(VerticalScroll, can_focus=False):
     # Asking and showing
 
     def _ask(self) -> None:
-        refused = [typed.refusal for typed in self.typed.values() if typed.refusal is not None]
+        meant = {name: typed for name, typed in self.typed.items() if self._lines[name].display}
+        refused = [typed.refusal for typed in meant.values() if typed.refusal is not None]
         self.answer, self.refusal = None, refused[0] if refused else None
         house = self.house
-        values = {name: typed.value for name, typed in self.typed.items() if typed.value is not None}
+        values = {name: typed.value for name, typed in meant.items() if typed.value is not None}
         typed_in = [name for name in values if self.check.reading_line(name).entry is not Entry.CHOICE]
-        if self.refusal is not None or not typed_in or house.refrigerant is None:
+        if self.refusal is not None or not typed_in or not self._has_refrigerant:
             self._asked = 0
             house.engine.forget(self.check.name)
             self._show_nothing(
                 "" if typed_in or refused else self.check.summary,
-                "" if house.refrigerant else "Press F8 and type part of the refrigerant's name.",
+                "" if self._has_refrigerant else "Press F8 and type part of the refrigerant's name.",
             )
             self.say_word()
             return
         asked = request(
             self.check.name,
-            house.refrigerant.designation,
+            house.refrigerant.designation if house.refrigerant is not None else "",
             values,
             site=house.site,
             datum=house.settings.datum,
@@ -192,6 +203,10 @@ class SheetPane(VerticalScroll, can_focus=False):
         self._asked = house.engine.ask(self.check.name, asked)
         if self._patience is None:
             self._patience = self.set_timer(_PATIENCE, self._out_of_patience)
+
+    @property
+    def _has_refrigerant(self) -> bool:
+        return self.house.refrigerant is not None or not self.check.needs_refrigerant
 
     def _out_of_patience(self) -> None:
         self._patience = None
