@@ -192,7 +192,7 @@ class GaugesideApp(App[None]):
             word = pane.refusal.sentence() if pane.refusal else "There is no answer on this sheet yet."
             self.say(f"Not kept: {word}", CAUTION)
             return
-        entry = entry_of(pane.check, pane.answer, pane.typed, self.settings, self.dress, self.site, self.note)
+        entry = entry_of(pane.check, pane.answer, pane.meant(), self.settings, self.dress, self.site, self.note)
         try:
             kept = self.logbook.keep(entry)
         except Refusal as refusal:

@@ -79,6 +79,10 @@ class SheetPane(VerticalScroll, can_focus=False):
         """Read what was saved."""
         self.read_all()
 
+    def meant(self) -> dict[str, TypedLine]:
+        """Return the lines that are shown, as read."""
+        return {name: typed for name, typed in self.typed.items() if self._lines[name].display}
+
     def texts(self) -> dict[str, str]:
         """Return what is typed, by reading."""
         return {name: line.field.value for name, line in self._lines.items()} if self._lines else self._texts
@@ -177,7 +181,7 @@ class SheetPane(VerticalScroll, can_focus=False):
     # Asking and showing
 
     def _ask(self) -> None:
-        meant = {name: typed for name, typed in self.typed.items() if self._lines[name].display}
+        meant = self.meant()
         refused = [typed.refusal for typed in meant.values() if typed.refusal is not None]
         self.answer, self.refusal = None, refused[0] if refused else None
         house = self.house
