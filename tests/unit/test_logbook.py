@@ -281,6 +281,17 @@ def test_locked_file_waits_then_says_so(path: Path) -> None:
     assert [file.name for file in path.parent.iterdir()] == ["logbook.sqlite3"], "nothing is set aside"
 
 
+def test_a_folder_held_by_others_waits_then_says_so(path: Path) -> None:
+    book = Logbook(path, busy_seconds=0.05)
+    book.keep(entry("first"))
+    with damage_module.folder_held(path, 1, alone=True):
+        for act in (book.entries, lambda: book.keep(entry("second"))):
+            with pytest.raises(LogbookTrouble, match="stayed locked"):
+                act()
+    with damage_module.folder_held(path, 1):
+        assert book.count() == 1
+
+
 def test_a_lock_that_ends_in_time_is_waited_for(path: Path) -> None:
     Logbook(path).keep(entry("first"))
     other = sqlite3.connect(path, isolation_level=None, check_same_thread=False)
@@ -347,6 +358,21 @@ def test_without_reading_first_the_keep_itself_sets_aside(path: Path) -> None:
     assert len(book.messages) == 1
 
 
+def test_many_find_the_damage_at_once_and_one_sets_aside(path: Path) -> None:
+    path.parent.mkdir()
+    path.write_bytes(b"x" * 5000)
+    books = [Logbook(path, busy_seconds=30) for _ in range(8)]
+    threads = [threading.Thread(target=book.keep, args=[entry(f"thread {n}")]) for n, book in enumerate(books)]
+    for thread in threads:
+        thread.start()
+    for thread in threads:
+        thread.join()
+    (aside,) = path.parent.glob("logbook-damaged-*")
+    assert aside.read_bytes() == b"x" * 5000
+    assert len([message for book in books for message in book.messages]) == 1
+    assert Logbook(path).count("thread") == 8
+
+
 def test_a_document_named_by_mistake_is_never_set_aside(tmp_path: Path) -> None:
     document = tmp_path / "report.txt"
     document.write_text("visit of the cold store, page 1\n" * 50)
@@ -386,7 +412,7 @@ def test_a_sound_file_put_there_meanwhile_is_not_set_aside(path: Path) -> None:
     Logbook(path).keep(entry("another program's"))
     assert book.keep(entry("mine")).entry.number == 2
     assert book.messages == []
-    assert damage_module.set_aside(path, damage_module.identity(path) or (0, 0)) is None
+    assert damage_module.set_aside(path, damage_module.identity(path) or (0, 0), 1) is None
 
 
 def test_read_only_folder_and_file(tmp_path: Path) -> None:

@@ -5,6 +5,7 @@ from __future__ import annotations
 import os
 import sqlite3
 import sys
+import time
 from collections.abc import Iterator
 from contextlib import closing, contextmanager, suppress
 from dataclasses import replace
@@ -13,7 +14,7 @@ from pathlib import Path
 
 from gaugeside.errors import Refusal
 from gaugeside.logbook.entry import COLUMNS, UNREADABLE, Entry, from_row
-from gaugeside.logbook.trouble import LogbookTrouble
+from gaugeside.logbook.trouble import LogbookTrouble, locked
 from gaugeside.settings import reason, sync_folder
 
 if sys.platform != "win32":
@@ -33,11 +34,13 @@ def identity(path: Path) -> tuple[int, int] | None:
     return found.st_dev, found.st_ino
 
 
-def set_aside(path: Path, seen: tuple[int, int]) -> Path | None:
+def set_aside(path: Path, seen: tuple[int, int], seconds: float) -> Path | None:
     """Rename the damaged file at `path` and return its new name.
 
     Return None and touch nothing when the file is no longer the one that was `seen`, or proves sound: another
     program may have set it aside and begun a new one meanwhile.
+
+    seconds: how long other programs that use it are waited for [s].
 
     Raises LogbookTrouble when its name is not a logbook's (it may be a document named by mistake), or when
     it cannot be renamed.
@@ -47,7 +50,7 @@ def set_aside(path: Path, seen: tuple[int, int]) -> Path | None:
             "foreign", f"{path} is damaged or not a logbook; it is left as it is, since its name is not *.sqlite3."
         )
     try:
-        with _alone_in(path.parent):
+        with folder_held(path, seconds, alone=True):
             if identity(path) != seen or not _is_damaged(path):
                 return None
             aside = _free_name(path)
@@ -114,14 +117,32 @@ def _free_name(path: Path) -> Path:
 
 
 @contextmanager
-def _alone_in(folder: Path) -> Iterator[None]:
-    """Hold the folder, so that two programs never set the same logbook aside."""
-    handle = os.open(folder, os.O_RDONLY) if sys.platform != "win32" else -1
+def folder_held(path: Path, seconds: float, alone: bool = False) -> Iterator[None]:
+    """Hold the folder of `path` together with others who use it, or `alone` to rename in it.
+
+    seconds: how long to wait for the others [s].
+
+    Raises LogbookTrouble when they take longer. A folder that cannot be held (absent, on some networks) is
+    used without.
+    """
+    handle = -1
     try:
         if sys.platform != "win32":
             with suppress(OSError):
-                fcntl.flock(handle, fcntl.LOCK_EX)
+                handle = os.open(path.parent, os.O_RDONLY)
+                _wait_for(handle, fcntl.LOCK_EX if alone else fcntl.LOCK_SH, path, seconds)
         yield
     finally:
         if handle >= 0:
             os.close(handle)
+
+
+def _wait_for(handle: int, lock: int, path: Path, seconds: float) -> None:
+    deadline = time.monotonic() + seconds
+    while True:
+        try:
+            return fcntl.flock(handle, lock | fcntl.LOCK_NB)
+        except BlockingIOError as fault:
+            if time.monotonic() > deadline:
+                raise locked(path, seconds) from fault
+        time.sleep(0.005)

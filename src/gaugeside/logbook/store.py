@@ -9,8 +9,9 @@ from __future__ import annotations
 import os
 import sqlite3
 import stat
+import tempfile
 from collections.abc import Iterator
-from contextlib import contextmanager, suppress
+from contextlib import AbstractContextManager, contextmanager, suppress
 from dataclasses import dataclass, replace
 from datetime import timedelta
 from pathlib import Path
@@ -163,13 +164,13 @@ class Logbook:
 
     @contextmanager
     def _reading(self) -> Iterator[sqlite3.Connection | None]:
-        if not self._exists():
-            yield None
-            return
-        with self._connection() as connection:
-            # One transaction, so that the marks and the rows are of the same moment.
-            connection.execute("BEGIN")
-            yield connection if _is_begun(connection, self.path) else None
+        with self._held():
+            if not self._exists():
+                yield None
+                return
+            with self._connection() as connection:
+                connection.execute("BEGIN")
+                yield connection if _is_begun(connection, self.path) else None
 
     @contextmanager
     def _changing(self, number: int) -> Iterator[sqlite3.Connection]:
@@ -181,19 +182,30 @@ class Logbook:
     @contextmanager
     def _writing(self) -> Iterator[sqlite3.Connection]:
         """Yield a connection inside one transaction, committed when the block ends well."""
-        if not self._exists():
-            self._create()
-        with self._connection() as connection:
-            # Any other database is refused before a setting could change it.
-            _is_begun(connection, self.path)
-            connection.execute("PRAGMA journal_mode = DELETE")
-            # With a deleted journal only EXTRA also waits for the folder, so only it outlasts a power cut.
-            connection.execute("PRAGMA synchronous = EXTRA")
-            connection.execute("BEGIN IMMEDIATE")
-            if not _is_begun(connection, self.path):
-                _begin(connection)
-            yield connection
-            connection.execute("COMMIT")
+        try:
+            make_private_folder(self.path.parent)
+        except Refusal as fault:
+            raise LogbookTrouble("cannot open", fault.message, fault.hint) from fault
+        with self._held():
+            if not self._exists():
+                self._create()
+            with self._connection() as connection:
+                # Any other database is refused before a setting could change it.
+                connection.execute("BEGIN")
+                _is_begun(connection, self.path)
+                connection.execute("COMMIT")
+                connection.execute("PRAGMA journal_mode = DELETE")
+                # With a deleted journal only EXTRA also waits for the folder, so only it outlasts a power cut.
+                connection.execute("PRAGMA synchronous = EXTRA")
+                connection.execute("BEGIN IMMEDIATE")
+                if not _is_begun(connection, self.path):
+                    _begin(connection)
+                yield connection
+                connection.execute("COMMIT")
+
+    def _held(self) -> AbstractContextManager[None]:
+        """While the file is in use nobody renames it: its journal would be taken for the next file's."""
+        return damage.folder_held(self.path, self._busy_seconds)
 
     @contextmanager
     def _connection(self) -> Iterator[sqlite3.Connection]:
@@ -225,10 +237,7 @@ class Logbook:
 
     def _create(self) -> None:
         try:
-            make_private_folder(self.path.parent)
-            os.close(os.open(self.path, os.O_RDWR | os.O_CREAT, 0o600))
-        except Refusal as fault:
-            raise LogbookTrouble("cannot open", fault.message, fault.hint) from fault
+            _create_private_file(self.path)
         except OSError as fault:
             raise LogbookTrouble(
                 "cannot open", f"The logbook {self.path} cannot be created: {reason(fault)}."
@@ -238,7 +247,7 @@ class Logbook:
         if self._damaged is None:
             return
         seen, self._damaged = self._damaged, None
-        aside = damage.set_aside(self.path, seen)
+        aside = damage.set_aside(self.path, seen, self._busy_seconds)
         if aside is None:
             return
         self.messages.append(f"The logbook was damaged and is set aside untouched as {aside}; a new one is begun.")
@@ -248,6 +257,26 @@ class Logbook:
                 insert = _INSERT.replace("INSERT", "INSERT OR IGNORE", 1)
                 added = connection.executemany(insert, [to_row(cleaned(entry)) for entry in saved]).rowcount
             self.messages.append(f"{added} of its entries could be read and are in the new logbook.")
+
+
+def _create_private_file(path: Path) -> None:
+    """Create an empty file for its owner alone, unless there is one.
+
+    The name appears only after the file is closed: closing one gives up every lock that this process, in
+    another thread, may hold on it by then.
+    """
+    handle, temporary = tempfile.mkstemp(prefix=f".{path.name}.", dir=path.parent)
+    os.close(handle)
+    try:
+        os.link(temporary, path)
+    except FileExistsError:
+        return
+    except OSError:
+        # Some file systems have no second names for a file.
+        with suppress(FileExistsError):
+            os.close(os.open(path, os.O_RDWR | os.O_CREAT | os.O_EXCL, 0o600))
+    finally:
+        os.unlink(temporary)
 
 
 def _decoded(raw: bytes) -> str:
@@ -269,7 +298,10 @@ def _one(connection: sqlite3.Connection, number: int) -> Entry:
 
 
 def _is_begun(connection: sqlite3.Connection, path: Path) -> bool:
-    """Tell a logbook from an empty file; raises LogbookTrouble for any other database."""
+    """Tell a logbook from an empty file, inside a transaction: all marks must be of the same moment.
+
+    Raises LogbookTrouble for any other database.
+    """
     (version,) = connection.execute("PRAGMA user_version").fetchone()
     (application,) = connection.execute("PRAGMA application_id").fetchone()
     (tables,) = connection.execute("SELECT count(*) FROM sqlite_master").fetchone()

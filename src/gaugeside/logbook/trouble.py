@@ -74,3 +74,9 @@ def trouble_from(fault: sqlite3.Error, path: Path, seconds: float) -> LogbookTro
     cause = getattr(fault, "sqlite_errorcode", 0) & 0xFF
     kind, message, hint = _KINDS.get(cause, ("other", "The logbook {path} cannot be used ({words}).", ELSEWHERE))
     return LogbookTrouble(kind, message.format(path=path, seconds=seconds, words=fault), hint)
+
+
+def locked(path: Path, seconds: float) -> LogbookTrouble:
+    """Return what to say of a logbook that others hold for longer than `seconds` [s]."""
+    kind, message, hint = _KINDS[sqlite3.SQLITE_BUSY]
+    return LogbookTrouble(kind, message.format(path=path, seconds=seconds), hint)
