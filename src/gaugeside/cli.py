@@ -18,7 +18,13 @@ _MINUS_READING = re.compile(r"[-−]\s*[.,]?[0-9]")
 
 
 class _Parser(argparse.ArgumentParser):
-    """A parser whose complaints are refusals, so that --json can carry them."""
+    """A parser whose complaints are refusals, so that --json can carry them; options are written whole."""
+
+    def __init__(self, **settings: Any) -> None:
+        super().__init__(allow_abbrev=False, **settings)
+
+    def _print_message(self, message: str, file: Any = None) -> None:
+        _print(message.removesuffix("\n"), file)
 
     def error(self, message: str) -> NoReturn:
         raise Refusal(f"{message[:1].upper()}{message[1:]}.", f"See '{self.prog} --help'.")
@@ -27,18 +33,30 @@ class _Parser(argparse.ArgumentParser):
 def main(argv: Sequence[str] | None = None) -> int:
     """Run the command line; return 0 for an answer, 2 for refused input, 1 for trouble of our own."""
     words = [_shielded(word) for word in (sys.argv[1:] if argv is None else argv)]
-    as_json = "--json" in words
     try:
-        arguments = _parser().parse_args(words)
-        if arguments.run is None:
-            return _open_app(arguments)
-        return int(arguments.run(arguments))
-    except Refusal as refusal:
-        return _refuse(refusal, as_json)
+        try:
+            code = _run(words)
+        except Refusal as refusal:
+            code = _refuse(refusal, "--json" in words)
+        if sys.stdout is not None:
+            # Here and not at the interpreter's end, where a reader that went away cannot be caught.
+            sys.stdout.flush()
+        return code
     except BrokenPipeError:
         # The reader went away, as `| head` does; nothing is left to say to it.
         os.dup2(os.open(os.devnull, os.O_WRONLY), 1)
         return 0
+    except KeyboardInterrupt:
+        return 130
+
+
+def _run(words: Sequence[str]) -> int:
+    try:
+        arguments = _parser().parse_args(words)
+    except SystemExit as leave:
+        # After --help and --version.
+        return int(leave.code or 0)
+    return _open_app(arguments) if arguments.run is None else int(arguments.run(arguments))
 
 
 def _shielded(word: str) -> str:
@@ -48,8 +66,9 @@ def _shielded(word: str) -> str:
 
 def _refuse(refusal: Refusal, as_json: bool) -> int:
     if as_json:
+        # JSON goes out in ASCII everywhere: no locale can spoil it.
         error = {"field": refusal.field, "message": refusal.message, "hint": refusal.hint}
-        print(json.dumps({"error": error}, ensure_ascii=False))
+        _print(json.dumps({"error": error}))
     else:
         field = f"{refusal.field.replace('_', ' ')}: " if refusal.field else ""
         _print(f"{field}{refusal.sentence()}", sys.stderr)
@@ -60,6 +79,8 @@ def _print(text: str, stream: Any = None) -> None:
     from gaugeside.checks.view import ascii_only
 
     stream = sys.stdout if stream is None else stream
+    if stream is None:
+        return
     if (stream.encoding or "ascii").lower().replace("-", "") not in ("utf8", "utf16", "utf32"):
         text = ascii_only(text)
     print(text, file=stream)
@@ -92,24 +113,29 @@ def _parser() -> argparse.ArgumentParser:
 
 
 def _add_check(commands: Any, check: Any) -> None:
-    command = commands.add_parser(check.name, help=check.summary)
+    command = commands.add_parser(check.name, help=_plain(check.summary))
     before = [line for line in check.reading_lines() if line.positional and line.choices]
     after = [line for line in check.reading_lines() if line.positional and not line.choices]
     for line in before:
-        command.add_argument(line.name, help=line.help)
+        command.add_argument(line.name, help=_plain(line.help))
     if check.needs_refrigerant:
         command.add_argument("refrigerant", help="designation or common name: R-134a, 134a, CO2")
     for line in after:
-        command.add_argument(line.name, help=line.help)
+        command.add_argument(line.name, help=_plain(line.help))
     for line in check.reading_lines():
         if not line.positional:
-            command.add_argument(f"--{line.name.replace('_', '-')}", default="", metavar="READING", help=line.help)
+            command.add_argument(f"--{line.name.replace('_', '-')}", metavar="READING", help=_plain(line.help))
     _add_common(command)
     command.add_argument("--datum", choices=("iir", "ashrae", "nbp"), help="zero of the enthalpies")
     command.add_argument("--keep", action="store_true", help="keep the calculation in the logbook")
     command.add_argument("--tag", default=None, help="which machine, for the logbook")
     command.add_argument("--note", default="", help="a note for the logbook")
     command.set_defaults(run=_run_check, check=check)
+
+
+def _plain(help_text: str) -> str:
+    """Return a text in which the option parser sees no format."""
+    return help_text.replace("%", "%%")
 
 
 def _add_common(command: argparse.ArgumentParser) -> None:

@@ -10,7 +10,7 @@ from dataclasses import replace
 from typing import Any
 
 from gaugeside.checks.perform import perform, request
-from gaugeside.checks.sheet import Answer, Check, Entry
+from gaugeside.checks.sheet import Answer, Check, Entry, Remark
 from gaugeside.checks.typed import TypedLine, read_form
 from gaugeside.checks.view import (
     FOOTNOTE,
@@ -36,6 +36,7 @@ from gaugeside.quantities import (
     example,
     fold,
     guard,
+    nearest_kind,
     quoted,
     read,
     spellings,
@@ -55,12 +56,12 @@ def run_check(arguments: Namespace, say: Printer) -> int:
     """Run one check on what the command line gives, print its sheet or its JSON, keep it when asked."""
     check: Check = arguments.check
     home = places(logbook=arguments.logbook)
-    remembered, _ = load_settings(home.settings_file)
+    remembered, troubles = load_settings(home.settings_file)
     settings = overridden(remembered, arguments.altitude, arguments.barometer, arguments.units)
     settings = replace(settings, datum=arguments.datum or settings.datum)
     if arguments.tag is not None:
         settings = replace(settings, tag=arguments.tag)
-    load_own(home.settings_folder)
+    troubles += load_own(home.settings_folder)
     dress, site = dress_of(settings), site_of(settings)
     refrigerant = _named(arguments.refrigerant) if check.needs_refrigerant else ""
     typed = read_form(check, _texts(check, arguments), {}, dress, site)
@@ -84,8 +85,9 @@ def run_check(arguments: Namespace, say: Printer) -> int:
         entry = entry_of(check, answer, typed, settings, dress, site, arguments.note)
         result = Logbook(home.logbook_file).keep(entry)
         kept = f"{'already kept' if result.already else 'kept'} as entry {result.entry.number}"
+    answer = replace(answer, notes=(*answer.notes, *map(Remark, troubles)))
     if arguments.json:
-        say(json.dumps(_as_json(check, answer, typed, settings, dress, site, kept), ensure_ascii=False))
+        say(json.dumps(_as_json(check, answer, typed, settings, dress, site, kept)))
     else:
         say("\n".join(_as_text(check, answer, typed, dress, site)))
         if kept:
@@ -107,7 +109,11 @@ def _raise_refused(error: Mapping[str, Any] | None) -> None:
 
 def _texts(check: Check, arguments: Namespace) -> dict[str, str]:
     """Return what was typed for every reading; an option that is given but empty is refused."""
-    return {line.name: getattr(arguments, line.name) or "" for line in check.reading_lines()}
+    given = {line.name: getattr(arguments, line.name) for line in check.reading_lines()}
+    for name, text in given.items():
+        if text is not None and not text.strip():
+            raise Refusal("It is given, but empty.", "Write a reading, or leave it out.", name)
+    return {name: text or "" for name, text in given.items()}
 
 
 def _as_json(
@@ -202,7 +208,7 @@ def table_lines(shown_table: TableText) -> list[str]:
 def convert(arguments: Namespace, say: Printer) -> int:
     """Print one reading in every unit of its kind."""
     home = places(logbook=arguments.logbook)
-    remembered, _ = load_settings(home.settings_file)
+    remembered, notes = load_settings(home.settings_file)
     settings = overridden(remembered, arguments.altitude, arguments.barometer, arguments.units)
     dress, site = dress_of(settings), site_of(settings)
     try:
@@ -218,7 +224,6 @@ def convert(arguments: Namespace, say: Printer) -> int:
         }
     else:
         found = {kind.value.replace(" ", "_"): {"value": reading.value, "unit": SI_UNIT[kind]}}
-    notes = []
     if kind is Kind.TEMPERATURE:
         difference = read(arguments.reading, Kind.TEMPERATURE_DIFFERENCE, unit(Kind.TEMPERATURE_DIFFERENCE, "K"),
                           dress, site)  # fmt: skip
@@ -236,8 +241,7 @@ def convert(arguments: Namespace, say: Printer) -> int:
                     "findings": found,
                     "notes": notes,
                     "cautions": [],
-                },
-                ensure_ascii=False,
+                }
             )
         )  # fmt: skip
         return 0
@@ -266,19 +270,9 @@ def _kind_of(text: str) -> Kind:
     if folded in spellings(Kind.PRESSURE_DIFFERENCE):
         return Kind.PRESSURE_DIFFERENCE
     # Not a unit of any kind: the refusal of the likeliest kind offers the nearest spelling.
-    read(text, _nearest_kind(folded), unit(Kind.PRESSURE, "bar g"), Dress(), Site())
+    kind = nearest_kind(unit_text, [kind for kind in Kind if kind is not Kind.WORDS])
+    read(text, kind, unit(Kind.PRESSURE, "bar g"), Dress(), Site())
     raise Refusal(f"{quoted(text)} is not understood.", f"Write for example {example(Kind.PRESSURE)}.")
-
-
-def _nearest_kind(folded: str) -> Kind:
-    import difflib
-
-    best = {
-        kind: max((difflib.SequenceMatcher(None, folded, s).ratio() for s in spellings(kind)), default=0.0)
-        for kind in Kind
-        if kind is not Kind.WORDS
-    }
-    return max(best, key=lambda kind: best[kind])
 
 
 def list_refrigerants(arguments: Namespace, say: Printer) -> int:
@@ -300,7 +294,7 @@ def list_refrigerants(arguments: Namespace, say: Printer) -> int:
             }
             for r in found
         ]  # fmt: skip
-        say(json.dumps({"refrigerants": documents, "notes": troubles}, ensure_ascii=False))
+        say(json.dumps({"refrigerants": documents, "notes": troubles}))
         return 0
     for r in found:
         say(refrigerant_line(r))
@@ -325,7 +319,7 @@ def list_logbook(arguments: Namespace, say: Printer) -> int:
     logbook = Logbook(places(logbook=arguments.logbook).logbook_file)
     found = logbook.entries(" ".join(arguments.words), limit=max(1, arguments.most))
     if arguments.json:
-        say(json.dumps({"entries": [entry_json(entry) for entry in found]}, ensure_ascii=False))
+        say(json.dumps({"entries": [entry_json(entry) for entry in found]}))
         return 0
     for entry in found:
         say(entry_line(entry))
@@ -338,7 +332,7 @@ def show_entry(arguments: Namespace, say: Printer) -> int:
     """Print one entry whole."""
     entry = Logbook(places(logbook=arguments.logbook).logbook_file).entry(arguments.number)
     if arguments.json:
-        say(json.dumps(entry_json(entry), ensure_ascii=False))
+        say(json.dumps(entry_json(entry)))
         return 0
     say(entry_line(entry))
     for name, text in entry.readings.items():

@@ -77,7 +77,10 @@ def read_site(text: str, source: str, dress: Dress) -> Site:
 
 
 def overridden(settings: Settings, altitude: str | None, barometer: str | None, units: str | None) -> Settings:
-    """Return the settings with what one command line says instead."""
+    """Return the settings with what one command line says instead; Refusal for an empty reading."""
+    for name, text in (("altitude", altitude), ("barometer", barometer)):
+        if text is not None and not text.strip():
+            raise Refusal("It is given, but empty.", "Write for example 640 m, or 94.1 kPa.", name)
     if altitude is not None:
         settings = replace(settings, site_pressure_text=altitude, site_pressure_from="altitude")
     if barometer is not None:

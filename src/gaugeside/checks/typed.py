@@ -17,6 +17,7 @@ from gaugeside.quantities import (
     Unit,
     fold,
     guard,
+    nearest_kind,
     quoted,
     read,
     read_state,
@@ -127,7 +128,7 @@ def _either(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site:
     known = [kind for kind in line.kinds if kind.value in units]
     kind = line.kinds[0]
     if unit_text:
-        kind = next((k for k in line.kinds if fold(unit_text) in spellings(k)), kind)
+        kind = next((k for k in line.kinds if fold(unit_text) in spellings(k)), nearest_kind(unit_text, line.kinds))
     elif known:
         order = list(units)
         kind = max(known, key=lambda k: order.index(k.value))

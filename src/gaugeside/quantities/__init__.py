@@ -14,6 +14,7 @@ from gaugeside.quantities.dress import write as write
 from gaugeside.quantities.reading import Reading as Reading
 from gaugeside.quantities.reading import example as example
 from gaugeside.quantities.reading import guard as guard
+from gaugeside.quantities.reading import nearest_kind as nearest_kind
 from gaugeside.quantities.reading import quoted as quoted
 from gaugeside.quantities.reading import read as read
 from gaugeside.quantities.reading import split_number as split_number

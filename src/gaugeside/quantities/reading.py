@@ -10,6 +10,7 @@ import difflib
 import math
 import re
 import unicodedata
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 from gaugeside.errors import Refusal
@@ -196,6 +197,16 @@ def _look_up(unit_text: str, kind: Kind, text: str) -> Unit:
         f"{quoted(unit_text)} is not a unit of {kind.value} known here.",
         f"{offer}Write for example {example(kind)}.",
     )
+
+
+def nearest_kind(unit_text: str, kinds: Sequence[Kind]) -> Kind:
+    """Return which of `kinds` a text that is no unit of any comes nearest to, the first of several."""
+    folded = fold(unit_text)
+
+    def likeness(kind: Kind) -> float:
+        return max((difflib.SequenceMatcher(None, s, folded).ratio() for s in spellings(kind)), default=0.0)
+
+    return max(kinds, key=likeness)
 
 
 def _counted(value: float, unit: Unit, kind: Kind, site: Site, text: str) -> float:

@@ -80,6 +80,11 @@ _SUFFIXES = {
 }
 _SENSE_LABEL = {Sense.GAUGE: "g", Sense.ABSOLUTE: "abs", Sense.VACUUM: "vac"}
 _MICRON = ("micron", "micron", 0, "microns mtorr umhg micronhg micronshg")
+# A difference may be typed in every spelling of a temperature.
+_CELSIUS = "c degc degreec degreesc celsius centigrade"
+_FAHRENHEIT = "f degf degreef degreesf fahrenheit"
+_KELVIN = "k kelvin kelvins degk"
+_RANKINE = "rankine degr degreer"
 
 _OTHERS: dict[Kind, tuple[tuple[str, str, int, str], ...]] = {
     Kind.PRESSURE_DIFFERENCE: (
@@ -88,14 +93,14 @@ _OTHERS: dict[Kind, tuple[tuple[str, str, int, str], ...]] = {
         ("mH2O", "metre_of_water", 3, "mwc metresofwater"),
     ),
     Kind.TEMPERATURE: (
-        ("°C", "celsius", 1, "c degc degreec degreesc celsius centigrade"),
-        ("°F", "fahrenheit", 1, "f degf degreef degreesf fahrenheit"),
-        ("K", "kelvin", 2, "k kelvin degk"),
-        ("degR", "rankine", 1, "rankine degreer"),
+        ("°C", "celsius", 1, _CELSIUS),
+        ("°F", "fahrenheit", 1, _FAHRENHEIT),
+        ("K", "kelvin", 2, _KELVIN),
+        ("degR", "rankine", 1, _RANKINE),
     ),
     Kind.TEMPERATURE_DIFFERENCE: (
-        ("K", "kelvin", 1, "k kelvin c degc celsius deltac dc cdeg cdiff deltak dk"),
-        ("°F", "fahrenheit_difference", 1, "f degf fahrenheit deltaf df fdeg fdiff degr"),
+        ("K", "kelvin", 1, f"{_CELSIUS} {_KELVIN} deltac dc cdeg cdiff deltak dk"),
+        ("°F", "fahrenheit_difference", 1, f"{_FAHRENHEIT} {_RANKINE} deltaf df fdeg fdiff"),
     ),
     Kind.MASS_FLOW: (
         ("kg/s", "kilogram_per_second", 4, "kg/sec kgpersecond kgs-1"),
