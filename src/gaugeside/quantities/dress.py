@@ -116,10 +116,11 @@ def number(value: float, decimals: int, *, significant: int = 3) -> str:
     if not math.isfinite(value):
         return "-"
     if value != 0 and abs(value) < 10.0 ** (1 - decimals) and decimals > 1:
-        text = f"{value:.{min(significant - 1 - math.floor(math.log10(abs(value))), 9)}f}"
+        text = f"{value:.{min(significant - 1 - math.floor(math.log10(abs(value))), decimals + 4)}f}"
     else:
         text = f"{value:.{decimals}f}"
-    return text.removeprefix("-") if text.startswith("-") and float(text) == 0 else text
+    # Nothing is left of it: zero, and without a sign.
+    return f"{0:.{decimals}f}" if float(text) == 0 else text
 
 
 def write(value: float, to: Unit, kind: Kind, site: Site) -> str:
