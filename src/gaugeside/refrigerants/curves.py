@@ -16,6 +16,7 @@ from .solvers import Point, Solver, point_from
 
 WIDEST_STEP = 5.0
 NARROWEST_STEP = 0.004
+REFINEMENTS = 6
 # Starting points, as parts of the critical temperature: where most blends converge without help.
 STARTS = (0.70, 0.72, 0.68, 0.75, 0.65, 0.78, 0.62, 0.80, 0.58, 0.84)
 
@@ -91,19 +92,56 @@ class Curve:
 
     def at_temperature(self, temperature: float) -> Point:
         """Return the point at a temperature [K]; raises NoRoot outside the curve."""
-        guess = self.guess_at_temperature(temperature)
-        point = self._solver.at_temperature(temperature, self._side, guess)
-        self._near(point, guess)
-        return point
+        self._reach(temperature, self._temperatures)
+        return self._polished(self._solver.at_temperature, temperature, temperature, self._temperatures)
 
     def at_pressure(self, pressure: float) -> Point:
         """Return the point at a pressure [Pa]; raises NoRoot outside the curve."""
         log = math.log(pressure)
         self._reach(log, self._log_pressures)
-        guess = point_from(self._interpolate(log, self._log_pressures))
-        point = self._solver.at_pressure(pressure, self._side, guess)
+        try:
+            return self._polished(self._solver.at_pressure, pressure, log, self._log_pressures)
+        except NoRoot:
+            return self._at_pressure_by_temperature(log)
+
+    def _at_pressure_by_temperature(self, log: float) -> Point:
+        """Find a pressure by its temperature, which works where the curve runs nearly level (bisection)."""
+        place = min(max(bisect_left(self._log_pressures, log), 1), len(self._log_pressures) - 1)
+        low, high = self._temperatures[place - 1], self._temperatures[place]
+        while high - low > 1e-10 * high:
+            middle = 0.5 * (low + high)
+            point = self.at_temperature(middle)
+            low, high = (low, middle) if math.log(point.pressure) > log else (middle, high)
+        return self.at_temperature(high)
+
+    def _polished(
+        self, solve: Callable[[float, int, Point], Point], value: float, place: float, axis: list[float]
+    ) -> Point:
+        """Solve from an interpolated guess; where that fails, lay nodes between and try again."""
+        for _ in range(REFINEMENTS):
+            guess = point_from(self._interpolate(place, axis))
+            try:
+                point = solve(value, self._side, guess)
+                self._near(point, guess)
+                return point
+            except NoRoot:
+                self._refine(guess.temperature)
+        raise NoRoot("no point on the curve there")
+
+    def _refine(self, temperature: float) -> None:
+        """Lay a node halfway between a temperature [K] and the nearer of its neighbours."""
+        share, below, above = self.around(temperature)
+        nearer = below[0] if share < 0.5 else above[0]
+        middle = 0.5 * (temperature + nearer)
+        if abs(middle - nearer) < NARROWEST_STEP:
+            raise NoRoot("no point on the curve there")
+        guess = point_from(self._interpolate(middle, self._temperatures))
+        point = self._solver.at_temperature(middle, self._side, guess)
         self._near(point, guess)
-        return point
+        place = bisect_left(self._temperatures, middle)
+        if not self._log_pressures[place - 1] < math.log(point.pressure) < self._log_pressures[place]:
+            raise NoRoot("off the curve")
+        self._insert(point, place)
 
     @staticmethod
     def _near(point: Point, guess: Point) -> None:
@@ -140,13 +178,12 @@ class Curve:
             # ln p of any fluid rises by 6 to 9 per unit of ln T around 0.7 of the critical temperature
             # and more below; a root outside this is not a saturation state.
             if 3.0 < slope * temperature < 60.0:
-                self._insert(first, 1)
+                self._insert(first, 0)
                 self._insert(second, 1)
                 return
         raise NoRoot("no starting point found")
 
-    def _insert(self, point: Point, direction: int) -> None:
-        place = len(self._nodes) if direction > 0 else 0
+    def _insert(self, point: Point, place: int) -> None:
         self._nodes.insert(place, point.coordinates())
         self._temperatures.insert(place, point.temperature)
         self._log_pressures.insert(place, math.log(point.pressure))
@@ -172,10 +209,11 @@ class Curve:
             step = room if room < 1.3 * step else step
         while step > NARROWEST_STEP or step == room:
             try:
-                self._insert(self._following(edge + direction * step, direction), direction)
+                following = self._following(edge + direction * step, direction)
             except NoRoot:
                 step *= 0.5
                 continue
+            self._insert(following, len(self._nodes) if direction > 0 else 0)
             self._step[direction] = 1.6 * step
             return
         self._ended[direction] = True

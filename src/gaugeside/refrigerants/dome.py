@@ -19,6 +19,8 @@ ACCURACY = 2e-11
 # Near an azeotrope rounding in the fugacities keeps the substitutions from settling further than this.
 ROUGH_ACCURACY = 2e-9
 DEPTH = 6
+MARCH = 16
+FINE = 1e-11
 
 
 class Given(Enum):
@@ -160,6 +162,33 @@ class Dome:
         flash = _Flash(self._liquid, self._vapour, given, value, pressure_given)
         return flash.run(bubble, dew, min(max(share, 0.0), 1.0))
 
+    def split_slowly(self, bubble: Point, dew: Point, given: Given, wanted: float) -> Split:
+        """Return the equilibrium on an isobar that has the wanted temperature [K], enthalpy or entropy.
+
+        Slower than `split`, for blends whose components boil far apart: regula falsi with the Illinois weighting
+        over the vapour fraction. given: BOTH means the temperature is wanted. Raises NoRoot.
+        """
+        low, high = 0.0, 1.0
+        below = above = 0.0
+        for _ in range(80):
+            share = high - above * (high - low) / (above - below) if below < 0.0 < above else 0.5 * (low + high)
+            flash = _Flash(self._liquid, self._vapour, Given.VAPOUR_FRACTION, share, True)
+            split = flash.run(bubble, dew, share)
+            excess = (
+                split.temperature
+                if given is Given.BOTH
+                else split.enthalpy
+                if given is Given.ENTHALPY
+                else split.entropy
+            ) - wanted
+            if abs(excess) < FINE * abs(wanted) or high - low < FINE:
+                return split
+            if excess > 0.0:
+                high, above, below = share, excess, 0.5 * below
+            else:
+                low, below, above = share, excess, 0.5 * above
+        raise NoRoot("the flash does not settle")
+
 
 class _Flash:
     """One flash: holds what stays from one substitution to the next, above all the two densities."""
@@ -174,6 +203,18 @@ class _Flash:
         self.temperature = self.pressure = self.dense = self.thin = 0.0
 
     def run(self, bubble: Point, dew: Point, share: float) -> Split:
+        try:
+            end = fixed_point(self._substitute, self._start(bubble, dew, share))
+        except NoRoot:
+            if self.given is not Given.VAPOUR_FRACTION:
+                raise
+            end = self._march(bubble, dew)
+        self._substitute(end)
+        return self._result(end[-1])
+
+    def _start(self, bubble: Point, dew: Point, share: float) -> list[float]:
+        """A first vector between the two ends, exact at either."""
+
         def between(a: float, b: float) -> float:
             return math.exp((1.0 - share) * math.log(a) + share * math.log(b))
 
@@ -186,10 +227,17 @@ class _Flash:
         self.dense = between(bubble.liquid_density, dew.liquid_density)
         self.thin = between(bubble.vapour_density, dew.vapour_density)
         free = self.temperature if self.pressure_given else self.pressure
-        start = [*map(math.log, ratios), self.WEIGHT * math.log(free), share]
-        end = fixed_point(self._substitute, start)
-        self._substitute(end)
-        return self._result(end[-1])
+        return [*map(math.log, ratios), self.WEIGHT * math.log(free), share]
+
+    def _march(self, bubble: Point, dew: Point) -> list[float]:
+        """Go to the wanted vapour fraction in steps from the nearer end, for blends of very unlike components."""
+        wanted = self.value
+        end = 0.0 if wanted < 0.5 else 1.0
+        vector = self._start(bubble, dew, end)
+        for step in range(1, MARCH + 1):
+            self.value = end + (wanted - end) * step / MARCH
+            vector = fixed_point(self._substitute, vector)
+        return vector
 
     def _substitute(self, vector: list[float]) -> list[float]:
         """One substitution: K-values to compositions to fugacities to K-values."""
@@ -237,7 +285,8 @@ class _Flash:
             free = move * gas_temperature / latent
         else:
             free = -move / (self.pressure / gas_temperature * (1.0 / self.thin - 1.0 / self.dense))
-        free = min(max(free, -0.05), 0.05)
+        most = 0.05 if self.pressure_given else 0.5
+        free = min(max(free, -most), most)
         return [*(k + move for k in logs), weighted + self.WEIGHT * free, self._share()]
 
     def _share(self) -> float:

@@ -96,12 +96,13 @@ class Fluid:
             self._no_number(celsius(temperature))
 
     def _point_at_pressure(self, side: int, pressure: float) -> Point:
-        self._limits.check_saturation_pressure(pressure)
+        self._limits.check_positive(pressure)
         curve = self._curve(side)
         try:
             if not curve.reaches_pressure(pressure):
                 if pressure < curve.lowest.pressure:
                     self._limits.too_cold(bar(pressure))
+                self._limits.check_saturation_pressure(pressure)
                 self._limits.too_near(bar(pressure))
             point = curve.at_pressure(pressure)
         except NoRoot:
@@ -251,16 +252,31 @@ class Fluid:
     def _across(self, pressure: float, wanted: float, given: Given) -> State:
         """Return the state on an isobar, from compressed liquid across the dome to superheated vapour."""
         coldest, warmest = self.minimum_temperature, self.maximum_temperature
-        may_boil = pressure <= self.critical_pressure or self._model.blend
-        has_dew = may_boil and self._dew.reaches_pressure(pressure)
-        if has_dew and (not self._model.blend or self._bubble.reaches_pressure(pressure)):
+        if self._boils_at(pressure):
             return self._across_dome(pressure, wanted, given)
-        if has_dew or pressure < self._dew.lowest.pressure:
+        if pressure < self._dew.highest.pressure and not self._boils_above(pressure):
+            has_dew = self._dew.reaches_pressure(pressure)
             start = self._dew.at_pressure(pressure).temperature if has_dew else coldest
             found = self._one.along(Region.SUPERHEATED, pressure, wanted, given, (start, warmest), start)
+        elif pressure < self._model.window.pressure:
+            found = self._one.beside_critical(pressure, wanted, given)
         else:
-            found = self._one.along(None, pressure, wanted, given, (coldest, warmest), self.critical_temperature)
+            # Started well above the critical temperature: beside it Newton's method has no slope to follow.
+            start = 1.08 * self.critical_temperature
+            found = self._one.along(None, pressure, wanted, given, (coldest, warmest), start)
         return self._single(found)
+
+    def _boils_at(self, pressure: float) -> bool:
+        """Whether both curves have a point at a pressure [Pa]."""
+        if pressure > self.critical_pressure and not self._model.blend:
+            return False
+        return self._dew.reaches_pressure(pressure) and (
+            not self._model.blend or self._bubble.reaches_pressure(pressure)
+        )
+
+    def _boils_above(self, pressure: float) -> bool:
+        """Whether a pressure [Pa] is above the beginning of the bubble curve."""
+        return pressure > self._bubble.lowest.pressure
 
     def _across_dome(self, pressure: float, wanted: float, given: Given) -> State:
         bubble = self._bubble.at_pressure(pressure)
@@ -307,7 +323,11 @@ class Fluid:
         if share > 1.0 - FINEST:
             return self._saturated(dew, DEW)
         ends = [replace(point, pressure=pressure) for point in (bubble, dew)]
-        split = self._dome.split(ends[0], ends[1], Given.BOTH, 0.0, share, True)
+        try:
+            split = self._dome.split(ends[0], ends[1], Given.BOTH, 0.0, share, True)
+        except NoRoot:
+            bubble, dew = self._bubble.at_pressure(pressure), self._dew.at_pressure(pressure)
+            split = self._dome.split_slowly(bubble, dew, Given.BOTH, temperature)
         if not 0.0 < split.vapour_fraction < 1.0:
             raise NoRoot("not between bubble and dew")
         return self._mixed(split)
@@ -318,7 +338,13 @@ class Fluid:
         if not self._model.blend:
             return self._pure_mixture(bubble, share)
         try:
-            return self._mixed(self._dome.split(bubble, dew, given, value, share, pressure_given))
+            try:
+                split = self._dome.split(bubble, dew, given, value, share, pressure_given)
+            except NoRoot:
+                if given is Given.VAPOUR_FRACTION:
+                    raise
+                split = self._dome.split_slowly(bubble, dew, given, value)
+            return self._mixed(split)
         except NoRoot:
             self._no_number(f"{bar(bubble.pressure)} and {celsius(bubble.temperature)}")
 

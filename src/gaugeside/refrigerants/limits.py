@@ -84,10 +84,14 @@ class Limits:
                 "Check the unit of the reading.",
             )
 
-    def check_pressure(self, pressure: float) -> None:
-        """Refuse a pressure [Pa] outside the equation."""
+    def check_positive(self, pressure: float) -> None:
+        """Refuse an absolute pressure [Pa] of zero or less."""
         if not pressure > 0.0:
             raise OutOfRange("An absolute pressure must be above zero.", "Check the reading and its reference.")
+
+    def check_pressure(self, pressure: float) -> None:
+        """Refuse a pressure [Pa] outside the equation."""
+        self.check_positive(pressure)
         if pressure > self.maximum_pressure:
             raise OutOfRange(
                 f"{bar(pressure)} is above {bar(self.maximum_pressure)}, the highest pressure for which the "
@@ -108,8 +112,6 @@ class Limits:
 
     def check_saturation_pressure(self, pressure: float) -> None:
         """Refuse a pressure [Pa] above the critical one."""
-        if not pressure > 0.0:
-            self.check_pressure(pressure)
         if pressure > self.critical_pressure:
             self.above_critical(f"{bar(pressure)} is above it")
 

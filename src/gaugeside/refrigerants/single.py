@@ -123,27 +123,39 @@ class OnePhase:
         guess: molar density to start from [mol/m3].
         """
         phase = self.phase_of(region)
-        if self._blend:
-            phase.compose(phase.whole)
         try:
-            density = phase.settle(pressure, temperature, guess or self._guess(region, phase, pressure, temperature))
+            start, low, high = self._guess(region, phase, pressure, temperature, guess)
+            self._whole(phase)
+            density = phase.settle(pressure, temperature, start)
+            if not low < density < high:  # some equations have a second, spurious root
+                raise NoRoot("beyond saturation")
         except NoRoot:
             density = self._bracketed(region, phase, pressure, temperature)
         return Found(region, pressure, temperature, density)
 
-    def _guess(self, region: Region, phase: Phase, pressure: float, temperature: float) -> float:
-        """A density to start from, between the nodes of the curves; raises NoRoot where there are none."""
+    def _whole(self, phase: Phase) -> None:
+        """Give a phase the whole composition; laying nodes of a curve leaves another one behind."""
+        if self._blend:
+            phase.compose(phase.whole)
+
+    def _guess(
+        self, region: Region, phase: Phase, pressure: float, temperature: float, guess: float | None
+    ) -> tuple[float, float, float]:
+        """A density to start from and the bounds it may not leave; raises NoRoot where there is none."""
         if region is Region.SUPERCRITICAL or not self._covers(temperature):
-            raise NoRoot("no curve at this temperature")
-        ideal = pressure / (phase.gas_constant * temperature)
+            if guess is None:
+                raise NoRoot("no curve at this temperature")
+            return guess, 0.0, self._model.highest_density
         if region is Region.SUPERHEATED:
             share, below, above = self._dew.around(temperature)
             saturated = math.exp(below[1] + share * (above[1] - below[1]))
             density = math.exp(below[3] + share * (above[3] - below[3]))
-            shortfall = 1.0 - saturated / (density * phase.gas_constant * temperature)
-            return ideal / (1.0 - shortfall * min(pressure / saturated, 1.0))
+            gas = phase.gas_constant * temperature
+            shortfall = 1.0 - saturated / (density * gas)
+            start = pressure / gas / (1.0 - shortfall * min(pressure / saturated, 1.0))
+            return start, 0.0, 1.001 * math.exp(above[3])
         share, below, above = self._bubble.around(temperature)
-        return math.exp(below[2] + share * (above[2] - below[2]))
+        return math.exp(below[2] + share * (above[2] - below[2])), 0.999 * math.exp(above[2]), math.inf
 
     def _bracketed(self, region: Region, phase: Phase, pressure: float, temperature: float) -> float:
         """The density between bounds that hold one root only; raises NoRoot."""
@@ -152,14 +164,18 @@ class OnePhase:
         if region is Region.SUPERHEATED:
             if covered:
                 highest = 1.001 * self._dew.guess_at_temperature(temperature).vapour_density
+            self._whole(phase)
             return phase.gas_density(pressure, temperature, highest)
         if region is Region.SUPERCRITICAL:
             ideal = pressure / (phase.gas_constant * temperature)
+            self._whole(phase)
             return phase.search(pressure, temperature, 0.0, highest, min(ideal, phase.reducing_density))
         if covered:
             saturated = self._bubble.guess_at_temperature(temperature).liquid_density
+            self._whole(phase)
             return phase.search(pressure, temperature, 0.999 * saturated, highest, saturated)
         low = self._model.critical_density_bound
+        self._whole(phase)
         return phase.search(pressure, temperature, low, highest, 1.3 * low)
 
     # --- along an isobar
@@ -168,6 +184,27 @@ class OnePhase:
         """Enthalpy [J/kg] or entropy [J/(kg K)] of a phase as last evaluated."""
         state = self.phase_of(region).state
         return float(state.hmass() if given is Given.ENTHALPY else state.smass())
+
+    def beside_critical(self, pressure: float, wanted: float, given: Given) -> Found:
+        """Return the state on an isobar [Pa] that passes the critical point too near to decide every phase there.
+
+        Raises OutOfRange where the state itself is too near, Outside, NoRoot.
+        """
+        limits = self._model.limits
+        warm = self._model.window.temperature
+        region = Region.SUPERCRITICAL if pressure > self._critical_pressure else Region.SUPERHEATED
+        self.at(region, pressure, warm)
+        if wanted >= self.measure(region, given):
+            return self.along(region, pressure, wanted, given, (warm, limits.maximum_temperature), warm)
+        if self._bubble.reaches_pressure(pressure):
+            cold = self._bubble.at_pressure(pressure).temperature
+        else:
+            cold = min(self._bubble.highest.temperature, self._dew.highest.temperature)
+        region = self._liquid(pressure)
+        self.at(region, pressure, cold)
+        if wanted > self.measure(region, given):
+            limits.too_near(f"This state at {bar(pressure)}")
+        return self.along(region, pressure, wanted, given, (limits.minimum_temperature, cold), cold)
 
     def along(
         self,
@@ -187,7 +224,7 @@ class OnePhase:
         temperature, density = min(max(start, low), high), None
         while True:
             here = region or self.region(pressure, temperature)
-            found = self.at(here, pressure, temperature, density if region else None)
+            found = self.at(here, pressure, temperature, density)
             state = self.phase_of(here).state
             slope = state.cpmass() if given is Given.ENTHALPY else state.cpmass() / temperature
             excess = self.measure(here, given) - wanted
