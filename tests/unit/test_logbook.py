@@ -464,6 +464,14 @@ def keep_many(book: Logbook, count: int) -> None:
         book.keep(entry(f"{number} " + "n" * 600))
 
 
+def test_a_path_with_control_characters_is_told_harmlessly(tmp_path: Path) -> None:
+    path = tmp_path / "a\x1b[2J.sqlite3"
+    path.mkdir()
+    with pytest.raises(LogbookTrouble) as trouble:
+        Logbook(path).entries()
+    assert trouble.value.sentence().isprintable()
+
+
 def test_full_disk_keeps_what_was_there(path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     book = Logbook(path)
     book.keep(entry("first"))

@@ -7,6 +7,7 @@ from pathlib import Path
 from typing import Literal
 
 from gaugeside.errors import Refusal
+from gaugeside.settings import plain_text
 
 Kind = Literal["locked", "read-only", "cannot open", "full", "disk error", "damaged", "newer", "foreign", "other"]
 
@@ -54,7 +55,8 @@ class LogbookTrouble(Refusal):
     """The logbook file cannot be used; kind says in a word why."""
 
     def __init__(self, kind: Kind, message: str, hint: str = ELSEWHERE) -> None:
-        super().__init__(message, hint)
+        # The message names a path, and a path may hold anything.
+        super().__init__(plain_text(message), hint)
         self.kind = kind
 
 
