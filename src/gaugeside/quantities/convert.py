@@ -20,6 +20,8 @@ second = [time]
 kelvin = [temperature]
 one = []
 percent = 0.01 one
+gram_per_kilogram = 0.001 one
+grain_per_pound = 0.00014285714285714286 one
 foot = 0.3048 metre
 kilometre = 1000 metre
 celsius = kelvin; offset: 273.15
@@ -88,6 +90,7 @@ _SI_DEFINITION = {
     "J/(kg K)": "joule_per_kilogram",
     "kg/m3": "kilogram_per_cubic_metre",
     "1": "one",
+    "kg/kg": "one",
     "m": "metre",
 }
 

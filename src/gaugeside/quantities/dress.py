@@ -22,8 +22,10 @@ _SI: dict[Kind, str] = {
     Kind.POWER: "kW",
     Kind.SPECIFIC_ENTHALPY: "kJ/kg",
     Kind.SPECIFIC_ENTROPY: "kJ/(kg K)",
+    Kind.SPECIFIC_HEAT_CAPACITY: "kJ/(kg K)",
     Kind.DENSITY: "kg/m3",
     Kind.FRACTION: "%",
+    Kind.HUMIDITY_RATIO: "g/kg",
     Kind.LENGTH: "m",
     Kind.RATIO: "",
 }
@@ -38,7 +40,9 @@ _IP: dict[Kind, str] = _SI | {
     Kind.POWER: "Btu/h",
     Kind.SPECIFIC_ENTHALPY: "Btu/lb",
     Kind.SPECIFIC_ENTROPY: "Btu/(lb °F)",
+    Kind.SPECIFIC_HEAT_CAPACITY: "Btu/(lb °F)",
     Kind.DENSITY: "lb/ft3",
+    Kind.HUMIDITY_RATIO: "gr/lb",
     Kind.LENGTH: "ft",
 }
 _SYSTEMS = {"si": _SI, "ip": _IP}

@@ -29,7 +29,9 @@ class Kind(StrEnum):
     SPECIFIC_ENTHALPY = "specific enthalpy"
     SPECIFIC_ENTROPY = "specific entropy"
     DENSITY = "density"
+    SPECIFIC_HEAT_CAPACITY = "specific heat capacity"
     FRACTION = "fraction"
+    HUMIDITY_RATIO = "humidity ratio"
     LENGTH = "length"
     RATIO = "ratio"
     WORDS = "words"
@@ -152,6 +154,10 @@ _OTHERS: dict[Kind, tuple[tuple[str, str, int, str], ...]] = {
         ("kJ/(kg K)", "kilojoule_per_kilogram", 4, "kj/kg/k kj/kg-k"),
         ("Btu/(lb °F)", "btu_per_pound_fahrenheit", 4, "btu/lbf btu/lb-f btu/lbr"),
     ),
+    Kind.SPECIFIC_HEAT_CAPACITY: (
+        ("kJ/(kg K)", "kilojoule_per_kilogram", 3, "kj/kg/k kj/kg-k"),
+        ("Btu/(lb °F)", "btu_per_pound_fahrenheit", 4, "btu/lbf btu/lb-f btu/lbr"),
+    ),
     Kind.DENSITY: (
         ("kg/m3", "kilogram_per_cubic_metre", 2, ""),
         ("lb/ft3", "pound_per_cubic_foot", 3, "lbm/ft3"),
@@ -159,6 +165,12 @@ _OTHERS: dict[Kind, tuple[tuple[str, str, int, str], ...]] = {
     Kind.FRACTION: (
         ("%", "percent", 1, "percent pct"),
         ("kg/kg", "one", 3, ""),
+    ),
+    Kind.HUMIDITY_RATIO: (
+        ("g/kg", "gram_per_kilogram", 2, ""),
+        ("kg/kg", "one", 5, ""),
+        ("gr/lb", "grain_per_pound", 1, "grain/lb grains/lb"),
+        ("lb/lb", "one", 5, ""),
     ),
     Kind.LENGTH: (
         ("m", "metre", 0, "metre metres meter meters masl"),
@@ -180,8 +192,10 @@ SI_UNIT: dict[Kind, str] = {
     Kind.POWER: "W",
     Kind.SPECIFIC_ENTHALPY: "J/kg",
     Kind.SPECIFIC_ENTROPY: "J/(kg K)",
+    Kind.SPECIFIC_HEAT_CAPACITY: "J/(kg K)",
     Kind.DENSITY: "kg/m3",
     Kind.FRACTION: "1",
+    Kind.HUMIDITY_RATIO: "kg/kg",
     Kind.LENGTH: "m",
     Kind.RATIO: "1",
     Kind.WORDS: "",
