@@ -9,6 +9,7 @@ from collections.abc import Callable, Mapping
 from dataclasses import replace
 from typing import Any
 
+from gaugeside.checks.compressor_map import CompressorMap, load_maps
 from gaugeside.checks.perform import perform, request
 from gaugeside.checks.sheet import Answer, Check, Entry, Remark
 from gaugeside.checks.typed import TypedLine, read_form
@@ -46,7 +47,7 @@ from gaugeside.quantities import (
     write,
 )
 from gaugeside.refrigerants import find, load_own, search
-from gaugeside.settings import Settings, load_settings, places
+from gaugeside.settings import Places, Settings, load_settings, places
 
 Printer = Callable[[str], None]
 _WIDTH = 100
@@ -75,6 +76,7 @@ def run_check(arguments: Namespace, say: Printer) -> int:
         site=site,
         datum=settings.datum,
         dress=dress,
+        compressor=_compressor(home, settings, refrigerant, troubles) if check.name == "machine" else None,
     )
     reply = perform(asked)
     _raise_refused(reply.get("error"))
@@ -93,6 +95,17 @@ def run_check(arguments: Namespace, say: Printer) -> int:
         if kept:
             say(f"Logbook: {kept}.")
     return 0
+
+
+def _compressor(home: Places, settings: Settings, refrigerant: str, troubles: list[str]) -> CompressorMap | None:
+    """Return the polynomials kept for the machine named, where they are for this refrigerant."""
+    maps, more = load_maps(home.settings_folder)
+    troubles += more
+    found = maps.get(settings.tag.casefold())
+    if found is not None and find(found.refrigerant).designation != refrigerant:
+        troubles.append(f"The polynomials of {found.tag} are for {found.refrigerant} and are left out.")
+        return None
+    return found
 
 
 def _named(text: str) -> str:

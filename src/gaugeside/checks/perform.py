@@ -6,6 +6,7 @@ from collections.abc import Mapping
 from typing import Any
 
 from gaugeside.checks import CHECKS
+from gaugeside.checks.compressor_map import CompressorMap
 from gaugeside.checks.sheet import Conditions, Surroundings, answer
 from gaugeside.errors import Refusal
 from gaugeside.quantities import Dress, Kind, Site
@@ -13,9 +14,16 @@ from gaugeside.refrigerants import Datum, find
 
 
 def request(
-    check: str, refrigerant: str, values: Mapping[str, Any], *, site: Site, datum: str, dress: Dress
+    check: str,
+    refrigerant: str,
+    values: Mapping[str, Any],
+    *,
+    site: Site,
+    datum: str,
+    dress: Dress,
+    compressor: CompressorMap | None = None,
 ) -> dict[str, Any]:
-    """Return the request that asks for `check` on SI `values`."""
+    """Return the request that asks for `check` on SI `values`; `compressor` is the machine's polynomials."""
     fahrenheit = dress.unit(Kind.TEMPERATURE).label == "°F"
     return {
         "check": check,
@@ -24,6 +32,7 @@ def request(
         "atmosphere": site.atmosphere,
         "site": site.source,
         "datum": datum,
+        "compressor": None if compressor is None else compressor.plain(),
         # Origin and step of the whole degrees in which the reader counts.
         "grid": [459.67 * 5 / 9, 10 / 9] if fahrenheit else [273.15, 1.0],
     }
@@ -42,7 +51,15 @@ def perform(asked: Mapping[str, Any]) -> dict[str, Any]:
         where = Surroundings(datum, site, (origin, step))
         if check.needs_refrigerant:
             found = find(asked["refrigerant"])
-            where = Conditions(datum, site, (origin, step), fluid=open_fluid(found, datum), refrigerant=found)
+            plain = asked.get("compressor")
+            where = Conditions(
+                datum,
+                site,
+                (origin, step),
+                fluid=open_fluid(found, datum),
+                refrigerant=found,
+                compressor=None if plain is None else CompressorMap.from_plain(plain),
+            )
         return {"answer": answer(check, where, asked["values"], VERSION).plain()}
     except Refusal as refusal:
         return {"error": {"field": refusal.field, "message": refusal.message, "hint": refusal.hint}}

@@ -15,6 +15,7 @@ from gaugeside.errors import Refusal
 from gaugeside.quantities import SI_UNIT, Kind, Site
 
 if TYPE_CHECKING:
+    from gaugeside.checks.compressor_map import CompressorMap
     from gaugeside.refrigerants import Datum, Fluid, Refrigerant
 
 
@@ -79,11 +80,11 @@ class Remark:
 
 @dataclass(frozen=True)
 class Table:
-    """Rows of SI numbers beside the findings; `marked` is the row that is the reading itself."""
+    """Rows of SI numbers (and words) beside the findings; `marked` is the row that is the reading itself."""
 
     title: str
     columns: tuple[tuple[str, Kind], ...]
-    rows: tuple[tuple[float, ...], ...]
+    rows: tuple[tuple[float | str, ...], ...]
     marked: int | None = None
 
 
@@ -101,10 +102,11 @@ class Surroundings:
 
 @dataclass(frozen=True)
 class Conditions(Surroundings):
-    """The surroundings, and the refrigerant ready to be asked."""
+    """The surroundings, the refrigerant ready to be asked, and the machine's polynomials where it has any."""
 
     fluid: Fluid = field(kw_only=True)
     refrigerant: Refrigerant = field(kw_only=True)
+    compressor: CompressorMap | None = field(default=None, kw_only=True)
 
 
 @dataclass

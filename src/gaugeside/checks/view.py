@@ -10,6 +10,7 @@ from gaugeside.quantities import (
     Kind,
     Sense,
     Site,
+    Unit,
     both_differences,
     gauge_and_absolute,
     in_unit,
@@ -124,20 +125,25 @@ class TableText:
 
 def table(raw: Table, dress: Dress, site: Site) -> TableText:
     """Return a table of SI numbers in the reader's units; pressures in the reader's sense."""
-    units = [
-        with_sense(dress.unit(kind), dress.bare) if kind is Kind.PRESSURE else dress.unit(kind)
-        for _, kind in raw.columns
-    ]
-    headings = tuple(f"{label}" for label, _ in raw.columns)
+    units = [_column_unit(kind, dress) for _, kind in raw.columns]
     rows = tuple(
-        tuple(
-            number(in_unit(value, to, kind, site), to.decimals)
-            for value, to, (_, kind) in zip(row, units, raw.columns, strict=True)
-        )
+        tuple(_cell(value, to, kind, site) for value, to, (_, kind) in zip(row, units, raw.columns, strict=True))
         for row in raw.rows
     )
-    title = f"{raw.title}, {', '.join(dict.fromkeys(u.label for u in units))}"
-    return TableText(title, headings, rows, raw.marked)
+    said = ", ".join(dict.fromkeys(to.label for to in units if to is not None))
+    return TableText(f"{raw.title}, {said}", tuple(label for label, _ in raw.columns), rows, raw.marked)
+
+
+def _column_unit(kind: Kind, dress: Dress) -> Unit | None:
+    if kind is Kind.WORDS:
+        return None
+    return with_sense(dress.unit(kind), dress.bare) if kind is Kind.PRESSURE else dress.unit(kind)
+
+
+def _cell(value: float | str, to: Unit | None, kind: Kind, site: Site) -> str:
+    if to is None or isinstance(value, str):
+        return str(value)
+    return number(in_unit(value, to, kind, site), to.decimals)
 
 
 def every_pressure(answer: Answer, dress: Dress, site: Site) -> TableText | None:

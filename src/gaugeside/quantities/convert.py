@@ -77,6 +77,8 @@ btu_per_pound = 2326 joule_per_kilogram
 kilocalorie_per_kilogram = 4186.8 joule_per_kilogram
 btu_per_pound_fahrenheit = 4186.8 joule_per_kilogram
 kilogram_per_cubic_metre = kilogram / metre ** 3
+kilojoule_per_cubic_metre = 1000 pascal
+btu_per_cubic_foot = 37258.94580783128 pascal
 pound_per_cubic_foot = 16.018463373960142 kilogram_per_cubic_metre
 """
 
@@ -89,6 +91,7 @@ _SI_DEFINITION = {
     "J/kg": "joule_per_kilogram",
     "J/(kg K)": "joule_per_kilogram",
     "kg/m3": "kilogram_per_cubic_metre",
+    "J/m3": "pascal",
     "1": "one",
     "kg/kg": "one",
     "m": "metre",

@@ -24,6 +24,7 @@ _SI: dict[Kind, str] = {
     Kind.SPECIFIC_ENTROPY: "kJ/(kg K)",
     Kind.SPECIFIC_HEAT_CAPACITY: "kJ/(kg K)",
     Kind.DENSITY: "kg/m3",
+    Kind.VOLUMETRIC_CAPACITY: "kJ/m3",
     Kind.FRACTION: "%",
     Kind.HUMIDITY_RATIO: "g/kg",
     Kind.LENGTH: "m",
@@ -42,6 +43,7 @@ _IP: dict[Kind, str] = _SI | {
     Kind.SPECIFIC_ENTROPY: "Btu/(lb °F)",
     Kind.SPECIFIC_HEAT_CAPACITY: "Btu/(lb °F)",
     Kind.DENSITY: "lb/ft3",
+    Kind.VOLUMETRIC_CAPACITY: "Btu/ft3",
     Kind.HUMIDITY_RATIO: "gr/lb",
     Kind.LENGTH: "ft",
 }

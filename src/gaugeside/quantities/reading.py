@@ -38,6 +38,7 @@ _EXAMPLES: dict[Kind, str] = {
     Kind.SPECIFIC_ENTROPY: "1.7 kJ/(kg K)",
     Kind.SPECIFIC_HEAT_CAPACITY: "3.9 kJ/(kg K)",
     Kind.DENSITY: "12 kg/m3",
+    Kind.VOLUMETRIC_CAPACITY: "3000 kJ/m3 or 80 Btu/ft3",
     Kind.FRACTION: "25 % or 0.25",
     Kind.HUMIDITY_RATIO: "8.5 g/kg or 60 gr/lb",
     Kind.LENGTH: "640 m or 2100 ft",

@@ -29,6 +29,7 @@ class Kind(StrEnum):
     SPECIFIC_ENTHALPY = "specific enthalpy"
     SPECIFIC_ENTROPY = "specific entropy"
     DENSITY = "density"
+    VOLUMETRIC_CAPACITY = "volumetric capacity"
     SPECIFIC_HEAT_CAPACITY = "specific heat capacity"
     FRACTION = "fraction"
     HUMIDITY_RATIO = "humidity ratio"
@@ -83,8 +84,8 @@ _SUFFIXES = {
 _SENSE_LABEL = {Sense.GAUGE: "g", Sense.ABSOLUTE: "abs", Sense.VACUUM: "vac"}
 _MICRON = ("micron", "micron", 0, "microns mtorr umhg micronhg micronshg")
 # A difference may be typed in every spelling of a temperature.
-_CELSIUS = "c degc degreec degreesc celsius centigrade"
-_FAHRENHEIT = "f degf degreef degreesf fahrenheit"
+_CELSIUS = "c degc degreec degreesc celsius degcelsius degreecelsius degreescelsius centigrade"
+_FAHRENHEIT = "f degf degreef degreesf fahrenheit degfahrenheit degreefahrenheit degreesfahrenheit"
 _KELVIN = "k kelvin kelvins degk"
 _RANKINE = "rankine degr degreer"
 
@@ -162,6 +163,10 @@ _OTHERS: dict[Kind, tuple[tuple[str, str, int, str], ...]] = {
         ("kg/m3", "kilogram_per_cubic_metre", 2, ""),
         ("lb/ft3", "pound_per_cubic_foot", 3, "lbm/ft3"),
     ),
+    Kind.VOLUMETRIC_CAPACITY: (
+        ("kJ/m3", "kilojoule_per_cubic_metre", 0, ""),
+        ("Btu/ft3", "btu_per_cubic_foot", 2, ""),
+    ),
     Kind.FRACTION: (
         ("%", "percent", 1, "percent pct"),
         ("kg/kg", "one", 3, ""),
@@ -194,6 +199,7 @@ SI_UNIT: dict[Kind, str] = {
     Kind.SPECIFIC_ENTROPY: "J/(kg K)",
     Kind.SPECIFIC_HEAT_CAPACITY: "J/(kg K)",
     Kind.DENSITY: "kg/m3",
+    Kind.VOLUMETRIC_CAPACITY: "J/m3",
     Kind.FRACTION: "1",
     Kind.HUMIDITY_RATIO: "kg/kg",
     Kind.LENGTH: "m",
