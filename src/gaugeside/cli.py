@@ -96,6 +96,7 @@ def _parser() -> argparse.ArgumentParser:
     )
     parser.add_argument("--version", action="version", version=f"gaugeside {__version__}")
     parser.add_argument("--logbook", type=Path, metavar="PATH", help="use this logbook file")
+    parser.add_argument("--ascii", action="store_true", help="write ASCII characters alone, on the screen too")
     parser.set_defaults(run=None)
     commands = parser.add_subparsers(title="commands", metavar="COMMAND")
     for check in CHECKS.values():
@@ -169,7 +170,7 @@ def _open_app(arguments: argparse.Namespace) -> int:
         )
     from gaugeside.app.start import start
 
-    return start(arguments.logbook)
+    return start(arguments.logbook, ascii_alone=arguments.ascii)
 
 
 def _run_check(arguments: argparse.Namespace) -> int:

@@ -3,63 +3,98 @@
 from __future__ import annotations
 
 import textwrap
+from collections.abc import Sequence
 
-from gaugeside.app.widgets.lines import MAIN, MUTED, Styled
+from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, Styled
 from gaugeside.checks.sheet import Check, Entry
 from gaugeside.checks.typed import FieldUnits, takes
 from gaugeside.quantities import Dress, Kind, bare_labels, example
 
+_WIDEST = 80
+_KINDS = (
+    Kind.PRESSURE,
+    Kind.TEMPERATURE,
+    Kind.TEMPERATURE_DIFFERENCE,
+    Kind.MASS_FLOW,
+    Kind.POWER,
+    Kind.SPECIFIC_ENTHALPY,
+    Kind.FRACTION,
+    Kind.LENGTH,
+)
 CAUTIONS = (
     "Refrigerant circuits are under pressure; escaping liquid freezes skin and eyes.",
     "Refrigerants displace air in closed rooms; some burn, some are poisonous: see the class beside the name.",
-    "Results are estimates from the readings typed. They replace neither the maker's data nor local codes",
+    "Results are estimates from the readings typed. They replace neither the maker's data, nor local codes, "
     "nor a licensed person's judgement.",
 )
 KEYS = (
     ("Tab, Down / Up", "next / previous field"),
-    ("Enter", "keep the calculation in the logbook; on a choice too"),
-    ("PageDown / PageUp", "scroll, when the window is low"),
+    ("Enter", "keep the calculation in the logbook; in the logbook, open the entry"),
+    ("PageDown / PageUp", "scroll, where a rule says that there is more"),
     ("F2 F3 F4 F6 F7", "saturation, superheat, component, logbook, site"),
     ("F8", "pick the refrigerant"),
     ("F9", "machine and note for what is kept next, or of the entry selected"),
     ("F10, Ctrl+Q", "leave; what is typed comes back at the next start"),
     ("Ctrl+O", "menu with every action under a letter, if function keys get lost"),
+    ("Delete, Ctrl+Z", "in the logbook: delete the entry selected, bring it back"),
     ("Ctrl+L", "paint the screen again;  Ctrl+U clear the field"),
+)
+WRITING = (
+    "A number, then its unit: 185 psig, 12,4 bar g, -5 °C, 23 inHg vac, 0.14 kg/s, 6 TR. Point or comma for "
+    "decimals; 1,234 is refused, as it can be read two ways. A number alone takes the unit the field shows; a "
+    "unit once typed stays the field's own. Upper and lower case do not matter.",
+    "Pressures: g is gauge, abs or a is absolute, vac counts down from the atmosphere. Without one of them the "
+    "field takes it as {bare} (site pane). micron is absolute.",
 )
 
 
-def help_lines(check: Check | None, units: dict[str, dict[str, str]], dress: Dress) -> list[Styled]:
-    """Return the help for a pane; `check` is None for the logbook and the site."""
-    lines: list[Styled] = [("F1, Enter or Space goes back. Up, Down, PageUp, PageDown scroll.", MUTED), ("", "")]
+def help_lines(
+    check: Check | None, units: dict[str, dict[str, str]], dress: Dress, messages: Sequence[str], width: int
+) -> list[Styled]:
+    """Return the help for a pane; `check` is None for the logbook and the site.
+
+    messages: what the program had to tell since its start. width: of the window [characters].
+    """
+    width = min(width, _WIDEST) - 2
+    back = "F1, Enter or Space goes back. Up, Down, PageUp, PageDown scroll."
+    lines: list[Styled] = [*_wrapped("", back, 0, width, MUTED), ("", "")]
+    for message in messages:
+        lines += _wrapped("", f"! {message}", 2, width, CAUTION)
     if check is not None:
-        lines += _fields(check, units, dress)
-    lines += [("Keys", MAIN), *((f"  {keys:<19}{what}", "") for keys, what in KEYS), ("", "")]
-    lines += [("How a reading is written", MAIN)]
-    for text in (
-        "A number, then its unit: 185 psig, 12,4 bar g, -5 °C, 23 inHg vac, 0.14 kg/s, 6 TR. Point or comma for "
-        "decimals; 1,234 is refused, as it can be read two ways. A number alone takes the unit the field shows; a "
-        "unit once typed stays the field's own. Upper and lower case do not matter.",
-        "Pressures: g is gauge, abs or a is absolute, vac counts down from the atmosphere. Without one of them the "
-        f"field takes it as {dress.bare.value} (site pane). micron is absolute.",
-    ):
-        lines += [(f"  {line}", "") for line in textwrap.wrap(text, 76)]
+        lines += _fields(check, units, dress, width)
+    lines.append(("Keys", MAIN))
+    for keys, what in KEYS:
+        lines += _wrapped(keys, what, 21, width)
+    lines += [("", ""), ("How a reading is written", MAIN)]
+    for text in WRITING:
+        lines += _wrapped("", text.format(bare=dress.bare.value), 2, width)
     lines += [("", ""), ("Units", MAIN)]
-    for kind in (Kind.PRESSURE, Kind.TEMPERATURE, Kind.TEMPERATURE_DIFFERENCE, Kind.MASS_FLOW, Kind.POWER,
-                 Kind.SPECIFIC_ENTHALPY, Kind.FRACTION, Kind.LENGTH):  # fmt: skip
-        wrapped = textwrap.wrap(" · ".join(bare_labels(kind)), 52)
-        lines += [(f"  {kind.value if not n else '':<23}{text}", "") for n, text in enumerate(wrapped)]
-    lines += [("", ""), ("Care", MAIN), *((f"  {text}", "") for text in CAUTIONS)]
+    for kind in _KINDS:
+        lines += _wrapped(kind.value, " · ".join(bare_labels(kind)), 25, width)
+    lines += [("", ""), ("Care", MAIN)]
+    for text in CAUTIONS:
+        lines += _wrapped("", text, 2, width)
     return lines
 
 
-def _fields(check: Check, units: dict[str, dict[str, str]], dress: Dress) -> list[Styled]:
-    lines: list[Styled] = [(f"{check.label.capitalize()}: {check.summary}", MAIN)]
+def _wrapped(label: str, text: str, column: int, width: int, style: str = "") -> list[Styled]:
+    """Return `text` from a column on, the label before it; under the label in a window too narrow for both."""
+    if width - column < 20:
+        head, column = ([(f"  {label}", style)] if label else []), 4 if label else min(column, 2)
+    else:
+        head = []
+    parts = textwrap.wrap(text, max(10, width - column))
+    first = "" if head else f"  {label}"
+    return [*head, *((f"{first if not n else '':<{column}}{part}", style) for n, part in enumerate(parts))]
+
+
+def _fields(check: Check, units: dict[str, dict[str, str]], dress: Dress, width: int) -> list[Styled]:
+    lines: list[Styled] = _wrapped("", f"{check.label.capitalize()}: {check.summary}", 0, width, MAIN)
     for line in check.reading_lines():
         known: FieldUnits = units.get(line.name, {})
-        lines += [(f"  {line.label:<23}{text}", "") for text in textwrap.wrap(line.help, 55)[:1]]
-        lines += [(f"  {'':<23}{text}", "") for text in textwrap.wrap(line.help, 55)[1:]]
+        lines += _wrapped(line.label, line.help, 25, width)
         if line.entry is Entry.QUANTITY:
-            lines.append((f"  {'':<23}{example(line.kind)}; alone: {takes(line, known, dress)}", MUTED))
+            lines += _wrapped("", f"{example(line.kind)}; alone: {takes(line, known, dress)}", 25, width, MUTED)
         elif line.entry is not Entry.CHOICE:
-            lines.append((f"  {'':<23}a number alone: {takes(line, known, dress)}", MUTED))
+            lines += _wrapped("", f"a number alone: {takes(line, known, dress)}", 25, width, MUTED)
     return [*lines, ("", "")]

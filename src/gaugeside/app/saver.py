@@ -19,6 +19,7 @@ class Saver:
         self._places = places
         self._on_trouble = on_trouble
         self._wake = threading.Condition()
+        self._writing = threading.Lock()
         self._draft: Mapping[str, Any] | None = None
         self._settings: Settings | None = None
         self._closed = False
@@ -39,7 +40,11 @@ class Saver:
             self._wake.notify()
 
     def flush(self) -> None:
-        """Save what is waiting now, from the calling thread."""
+        """Save what is waiting now, from the calling thread, after what is being saved already."""
+        with self._writing:
+            self._flush()
+
+    def _flush(self) -> None:
         with self._wake:
             draft, settings = self._draft, self._settings
             self._draft = self._settings = None

@@ -20,8 +20,14 @@ _RESTORE = b"\x1b[?1049l\x1b[?25h\x1b[?2004l\x1b[?1000l\x1b[?1003l\x1b[?1006l\x1
 _SIGNALS = (signal.SIGHUP, signal.SIGTERM)
 
 
-def start(logbook: Path | None) -> int:
-    """Run the app in this terminal until it is left; return the exit status."""
+def start(logbook: Path | None, ascii_alone: bool = False) -> int:
+    """Run the app in this terminal until it is left; return the exit status.
+
+    ascii_alone: show no character but ASCII, as on a terminal whose locale is not UTF-8.
+    """
+    if not os.environ.get("NO_COLOR", "-"):
+        # Only a value that is not empty asks for no colour; the screen library takes the name alone for it.
+        del os.environ["NO_COLOR"]
     # Read by the screen library when it is imported, therefore here.
     os.environ.setdefault("ESCDELAY", "400")
     os.environ.setdefault("TEXTUAL_ANIMATIONS", "none")
@@ -31,20 +37,19 @@ def start(logbook: Path | None) -> int:
     # Blocked before any thread starts, so that only the watching thread ever takes them.
     signal.pthread_sigmask(signal.SIG_BLOCK, _SIGNALS)
     from gaugeside.app.app import GaugesideApp
-    from gaugeside.app.themes import load_themes, pick_theme
-    from gaugeside.app.widgets.lines import use_ascii
+    from gaugeside.app.charset import speaks_utf8, use_ascii
+    from gaugeside.app.themes import load_themes
     from gaugeside.refrigerants import load_own
     from gaugeside.settings import load_draft, load_settings, places
 
-    if (sys.stderr.encoding or "").lower().replace("-", "") != "utf8":
+    if ascii_alone or not speaks_utf8(os.environ, sys.stderr.encoding):
         use_ascii()
     home = places(logbook=logbook)
     settings, messages = load_settings(home.settings_file)
     draft, more = load_draft(home.draft_file)
     themes, bad_themes = load_themes(home.themes_folder)
     messages += [*more, *bad_themes, *load_own(home.settings_folder)]
-    theme = pick_theme(settings.theme, os.environ, themes)
-    app = GaugesideApp(home, settings, draft, themes, theme, messages)
+    app = GaugesideApp(home, settings, draft, themes, messages, dict(os.environ))
     modes = termios.tcgetattr(0)
     threading.Thread(target=_watch, args=(app, modes), name="signals", daemon=True).start()
     try:
@@ -52,6 +57,7 @@ def start(logbook: Path | None) -> int:
     finally:
         app.saver.close()
         app.engine.close()
+        app.book.close()
     return app.return_code or 0
 
 

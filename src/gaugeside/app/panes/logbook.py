@@ -2,21 +2,24 @@
 
 from __future__ import annotations
 
+import textwrap
 from typing import TYPE_CHECKING, cast
 
 from textual import on
 from textual.app import ComposeResult
 from textual.binding import Binding
 from textual.containers import VerticalScroll
+from textual.widget import Widget
 from textual.widgets import Input
 
+from gaugeside.app.frame import WIDE
 from gaugeside.app.widgets.field import FieldLine, TextField
 from gaugeside.app.widgets.lines import CAUTION, MUTED, RULE, Line, Lines, Styled
 from gaugeside.errors import Refusal
 from gaugeside.logbook import Entry
 
 if TYPE_CHECKING:
-    from gaugeside.app.app import GaugesideApp
+    from gaugeside.app.house import House
 
 _MOST = 500
 
@@ -46,9 +49,9 @@ class LogbookPane(VerticalScroll, can_focus=False):
         self._deleted: list[Entry] = []
 
     @property
-    def house(self) -> GaugesideApp:
+    def house(self) -> House:
         """The app, by its own type."""
-        return cast("GaugesideApp", self.app)
+        return cast("House", self.app)
 
     def compose(self) -> ComposeResult:
         """Filter, list, the entry selected."""
@@ -63,9 +66,9 @@ class LogbookPane(VerticalScroll, can_focus=False):
         """Read the logbook."""
         self.reload()
 
-    def focus_first(self) -> None:
-        """Put the cursor into the filter."""
-        self._filter.field.focus()
+    def first_field(self) -> Widget:
+        """The field the cursor starts in."""
+        return self._filter.field
 
     @property
     def filter_text(self) -> str:
@@ -79,11 +82,18 @@ class LogbookPane(VerticalScroll, can_focus=False):
 
     def reload(self, number: int | None = None) -> None:
         """Read the entries again and put the cursor on entry `number`, or leave it where it was."""
-        try:
-            self.entries = self.house.logbook.entries(self.filter_text, limit=_MOST)
-        except Refusal as refusal:
-            self.entries = []
-            self.house.say(refusal.sentence(), CAUTION)
+        words = self.filter_text
+        self.house.book.do(
+            lambda logbook: logbook.entries(words, limit=_MOST),
+            lambda entries: self._take(entries, number),
+            self._refused,
+        )
+
+    def _refused(self, refusal: Refusal) -> None:
+        self.house.say(refusal.sentence(), CAUTION)
+
+    def _take(self, entries: list[Entry], number: int | None) -> None:
+        self.entries = entries
         if number is not None:
             self._selected = next((i for i, entry in enumerate(self.entries) if entry.number == number), 0)
         self._selected = min(self._selected, max(0, len(self.entries) - 1))
@@ -91,20 +101,25 @@ class LogbookPane(VerticalScroll, can_focus=False):
 
     def move(self, by: int) -> None:
         """Select the entry `by` lines further down."""
+        self.house.book.after(lambda: self._move(by))
+
+    def _move(self, by: int) -> None:
         self._selected = min(max(0, self._selected + by), max(0, len(self.entries) - 1))
         self._show()
 
     def _rows(self) -> int:
-        return max(4, (self.size.height or 18) - 9)
+        return max(3, (self.size.height or 18) - 9)
 
     def _show(self) -> None:
         rows = self._rows()
         self._top = min(max(self._top, self._selected - rows + 1), self._selected)
         lines: list[Styled] = []
+        wide = self.size.width >= WIDE
         for place, entry in enumerate(self.entries[self._top : self._top + rows], self._top):
             when = entry.kept_at.astimezone().strftime("%m-%d %H:%M")
             mark = ">" if place == self._selected else " "
-            what = f"{mark} {when}  {entry.refrigerant:<10}  {(entry.tag or '-')[:12]:<12}  {entry.headline}"
+            machine = f"{(entry.tag or '-')[:12]:<12}  " if wide else ""
+            what = f"{mark} {when}  {entry.refrigerant:<10}  {machine}{entry.headline}"
             lines.append((what, "reverse" if place == self._selected else ""))
         self._understood()
         self.query_one("#entries", Lines).show(lines)
@@ -120,15 +135,19 @@ class LogbookPane(VerticalScroll, can_focus=False):
             words = (
                 "No entry holds these words." if self.filter_text else "Nothing kept yet: Enter on a sheet keeps it."
             )
-            return [(words, MUTED)]
+            return self._wrapped(words, MUTED)
         readings = "  ".join(f"{name.replace('_', ' ')} {text}" for name, text in entry.readings.items())
         kept = entry.kept_at.astimezone().strftime("%Y-%m-%d %H:%M:%S")
         return [
-            (f"entry {entry.number}, {kept}, {entry.check}, site {entry.options.get('site', '')}", MUTED),
-            (readings, ""),
-            *([(f"note: {entry.note}", "")] if entry.note else []),
-            *((text, CAUTION) for text in entry.cautions[:1]),
+            *self._wrapped(f"entry {entry.number}, {kept}, {entry.check}, site {entry.options.get('site', '')}", MUTED),
+            *self._wrapped(readings, ""),
+            *self._wrapped(f"note: {entry.note}" if entry.note else "", ""),
+            *(line for text in entry.cautions[:1] for line in self._wrapped(text, CAUTION)),
         ]
+
+    def _wrapped(self, text: str, style: str) -> list[Styled]:
+        width = max(16, (self.size.width or self.app.size.width) - 1)
+        return [(line, style) for line in textwrap.wrap(text, width, subsequent_indent="  ")]
 
     @on(Input.Changed)
     def _filtered(self, event: Input.Changed) -> None:
@@ -139,46 +158,54 @@ class LogbookPane(VerticalScroll, can_focus=False):
     @on(Input.Submitted)
     def _open(self, event: Input.Submitted) -> None:
         event.stop()
+        self.house.book.after(self._open_selected)
+
+    def _open_selected(self) -> None:
         if self.selected is not None:
-            self.house.open_entry(self.selected)
+            self.house.call_later(self.house.open_entry, self.selected)
 
     def delete(self) -> None:
         """Delete the entry selected; it can be brought back until the program ends."""
-        entry = self.selected
-        if entry is None or entry.number is None:
-            self.house.say("There is no entry to delete.", MUTED)
+        self.house.book.after(self._delete)
+
+    def _delete(self) -> None:
+        number = self.selected.number if self.selected is not None else None
+        if number is None:
+            self.house.say("There is no entry to delete.")
             return
-        try:
-            self._deleted.append(self.house.logbook.delete(entry.number))
-        except Refusal as refusal:
-            self.house.say(refusal.sentence(), CAUTION)
-            return
+        self.house.book.do(lambda logbook: logbook.delete(number), self._is_deleted, self._refused)
+
+    def _is_deleted(self, entry: Entry) -> None:
+        self._deleted.append(entry)
         self.reload()
-        self.house.say(f"Entry {entry.number} is deleted; Ctrl+Z brings it back.", MUTED)
+        self.house.say(f"Entry {entry.number} is deleted; Ctrl+Z brings it back.")
 
     def undo(self) -> None:
         """Bring back what was deleted last."""
+        self.house.book.after(self._undo)
+
+    def _undo(self) -> None:
         if not self._deleted:
-            self.house.say("Nothing was deleted since the start.", MUTED)
+            self.house.say("Nothing was deleted since the start.")
             return
-        entry = self._deleted[-1]
-        try:
-            self.house.logbook.restore(entry)
-        except Refusal as refusal:
-            self.house.say(refusal.sentence(), CAUTION)
-            return
-        self._deleted.pop()
-        self.reload(entry.number)
-        self.house.say(f"Entry {entry.number} is back.", MUTED)
+        entry = self._deleted.pop()
+
+        def is_back(_: None) -> None:
+            self.reload(entry.number)
+            self.house.say(f"Entry {entry.number} is back.")
+
+        def is_not_back(refusal: Refusal) -> None:
+            self._deleted.append(entry)
+            self._refused(refusal)
+
+        self.house.book.do(lambda logbook: logbook.restore(entry), is_back, is_not_back)
 
     def change(self, tag: str, note: str) -> None:
         """Give the entry selected another tag and note."""
-        entry = self.selected
-        if entry is None or entry.number is None:
-            return
-        try:
-            self.house.logbook.change(entry.number, tag=tag, note=note)
-        except Refusal as refusal:
-            self.house.say(refusal.sentence(), CAUTION)
-            return
-        self.reload(entry.number)
+        number = self.selected.number if self.selected is not None else None
+        if number is not None:
+            self.house.book.do(
+                lambda logbook: logbook.change(number, tag=tag, note=note),
+                lambda entry: self.reload(entry.number),
+                self._refused,
+            )

@@ -3,26 +3,27 @@
 from __future__ import annotations
 
 import textwrap
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from typing import TYPE_CHECKING, Any, cast
 
 from textual import events, on
 from textual.app import ComposeResult
 from textual.containers import VerticalScroll
 from textual.timer import Timer
+from textual.widget import Widget
 from textual.widgets import Input
 
 from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
 from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, RULE, Line, Lines, Styled
 from gaugeside.checks.perform import request
-from gaugeside.checks.sheet import Answer, Check, Entry, ReadingLine
+from gaugeside.checks.sheet import Answer, Check, Entry, ReadingLine, Remark
 from gaugeside.checks.typed import TypedLine, first_choice, read_line, takes
 from gaugeside.checks.view import FindingText, TableText, every_pressure, findings, sentence, table
 from gaugeside.engine import Reply
 from gaugeside.errors import Refusal
 
 if TYPE_CHECKING:
-    from gaugeside.app.app import GaugesideApp
+    from gaugeside.app.house import House
 
 # Seconds after which a unit that was typed becomes the field's own although the field is not left.
 _SETTLE = 0.7
@@ -52,13 +53,14 @@ class SheetPane(VerticalScroll, can_focus=False):
         self.refusal: Refusal | None = None
         self._left = ""
         self._asked = 0
+        self._keep_then = False
         self._patience: Timer | None = None
         self._settle: Timer | None = None
 
     @property
-    def house(self) -> GaugesideApp:
+    def house(self) -> House:
         """The app, by its own type."""
-        return cast("GaugesideApp", self.app)
+        return cast("House", self.app)
 
     def compose(self) -> ComposeResult:
         """Column heads, the form, a rule, the findings."""
@@ -105,11 +107,11 @@ class SheetPane(VerticalScroll, can_focus=False):
         """Empty every field of the form."""
         self.put({name: line.field.value for name, line in self._lines.items() if isinstance(line.field, ChoiceField)})
 
-    def focus_first(self) -> None:
-        """Put the cursor where it was left, or in the first field that is typed in."""
+    def first_field(self) -> Widget:
+        """The field the cursor was left in, or the first that is typed in."""
         fields = {name: line.field for name, line in self._lines.items()}
         typed_in = [field for field in fields.values() if isinstance(field, TextField)]
-        fields.get(self._left, typed_in[0]).focus()
+        return fields.get(self._left, typed_in[0])
 
     # Reading
 
@@ -184,6 +186,7 @@ class SheetPane(VerticalScroll, can_focus=False):
         meant = self.meant()
         refused = [typed.refusal for typed in meant.values() if typed.refusal is not None]
         self.answer, self.refusal = None, refused[0] if refused else None
+        self._keep_then = False
         house = self.house
         values = {name: typed.value for name, typed in meant.items() if typed.value is not None}
         typed_in = [name for name in values if self.check.reading_line(name).entry is not Entry.CHOICE]
@@ -218,9 +221,13 @@ class SheetPane(VerticalScroll, can_focus=False):
             self._show_nothing(self.house.engine_word or "Working.", "")
 
     def _show_nothing(self, *words: str) -> None:
-        width = max(30, (self.size.width or 80) - 2)
+        width = self._width
         lines = [(text, MUTED) for word in words for text in textwrap.wrap(word, width)]
         self.query_one("#findings", Lines).show(lines)
+
+    @property
+    def _width(self) -> int:
+        return max(16, (self.size.width or self.app.size.width) - 1)
 
     def receive(self, reply: Reply) -> None:
         """Take the helper's reply, unless another question has been asked since."""
@@ -230,34 +237,34 @@ class SheetPane(VerticalScroll, can_focus=False):
         if self._patience is not None:
             self._patience.stop()
             self._patience = None
-        if reply.answer is not None:
-            self.answer = Answer.from_plain(reply.answer)
-            unresolved = self.answer.unresolved
-        else:
-            self.answer = None
-            unresolved = reply.error or {"field": None, "message": reply.fault, "hint": ""}
-        self.refusal = (
-            None
-            if unresolved is None
-            else Refusal(str(unresolved["message"]), str(unresolved["hint"] or ""), unresolved["field"])
-        )
+        self.answer, self.refusal = answer_of(reply)
         self._show_answer()
         self.say_word()
+        if self._keep_then:
+            self.house.keep(self)
 
     def _show_answer(self) -> None:
         house = self.house
-        width = max(30, (self.size.width or 80) - 2)
+        width = self._width
         lines: list[Styled] = []
         if self.answer is not None:
             for found in findings(self.check, self.answer, house.dress, house.site):
                 style = MAIN if found.main else MUTED if found.heading else ""
                 lines += [(text, style) for text in finding_lines(found, width)]
+            # Cautions stand before the tables: what can hurt somebody is not left below the window's end.
+            lines += self._remarks(self.answer.cautions, width, CAUTION)
             lines += self._tables(self.answer)
-            for remarks, style in ((self.answer.cautions, CAUTION), (self.answer.notes, MUTED)):
-                for remark in remarks:
-                    wrapped = textwrap.wrap(sentence(remark, house.dress, house.site), width, subsequent_indent="  ")
-                    lines += [(text, style) for text in wrapped]
+            lines += self._remarks(self.answer.notes, width, MUTED)
         self.query_one("#findings", Lines).show(lines)
+
+    def _remarks(self, remarks: Sequence[Remark], width: int, style: str) -> list[Styled]:
+        return [
+            (text, style)
+            for remark in remarks
+            for text in textwrap.wrap(
+                sentence(remark, self.house.dress, self.house.site), width, subsequent_indent="  "
+            )
+        ]
 
     def _tables(self, answer: Answer) -> list[Styled]:
         house = self.house
@@ -269,6 +276,8 @@ class SheetPane(VerticalScroll, can_focus=False):
 
     def say_word(self) -> None:
         """Show under the sheet what stands in the way, or what belongs in the field."""
+        if not self.display:
+            return
         refusal = self.refusal
         if refusal is not None:
             labels = {line.name: line.label for line in self.check.reading_lines()}
@@ -279,7 +288,9 @@ class SheetPane(VerticalScroll, can_focus=False):
         line = next(
             (line for line in self.check.reading_lines() if focused is not None and line.name == focused.id), None
         )
-        self.house.say("" if line is None else f"{line.label}: {line.help}", MUTED)
+        # Where the field is filled and answered its help gives way to the word that stands under every answer.
+        done = line is None or (self.answer is not None and self._lines[line.name].field.value.strip())
+        self.house.say("" if line is None or done else f"{line.label}: {line.help}", MUTED)
 
     # Keeping
 
@@ -288,7 +299,30 @@ class SheetPane(VerticalScroll, can_focus=False):
     def _enter(self, event: Any) -> None:
         event.stop()
         self.settle_units()
-        self.house.keep(self)
+        self.keep()
+
+    def keep(self) -> None:
+        """Keep the answer in the logbook, one that is still awaited when it comes."""
+        if self._asked:
+            self._keep_then = True
+            self.house.say("Working; the answer is kept when it comes.")
+        else:
+            self.house.keep(self)
+
+
+def answer_of(reply: Reply) -> tuple[Answer | None, Refusal | None]:
+    """Return what a reply answers and what it refuses; one that makes no sense is refused."""
+    answer = None
+    unresolved: dict[str, Any] | None = reply.error or {"field": None, "message": reply.fault, "hint": ""}
+    try:
+        if reply.answer is not None:
+            answer = Answer.from_plain(reply.answer)
+            unresolved = answer.unresolved
+        if unresolved is None:
+            return answer, None
+        return answer, Refusal(str(unresolved["message"]), str(unresolved["hint"] or ""), unresolved["field"])
+    except (KeyError, TypeError, ValueError, AttributeError):
+        return None, Refusal("The property helper's answer makes no sense.", "Change a reading to try again.")
 
 
 def finding_lines(found: FindingText, width: int) -> list[str]:
@@ -296,8 +330,8 @@ def finding_lines(found: FindingText, width: int) -> list[str]:
     if width < 60:
         words = f"{found.label}  {found.first}  {found.second}  {found.remark}".strip()
         return textwrap.wrap(words, width, subsequent_indent="    ")
-    first, second = (21, 18) if found.paired else (14, 13)
-    head = f"{found.label:<21} {found.first:<{first}} {found.second:<{second}} "
+    label, first, second = (16, 17, 17) if found.paired else (21, 13, 12)
+    head = f"{found.label:<{label}} {found.first:<{first}} {found.second:<{second}} "
     beside = textwrap.wrap(found.remark, max(12, width - len(head))) or [""]
     return [(head + beside[0]).rstrip(), *(" " * len(head) + more for more in beside[1:])]
 

@@ -8,21 +8,27 @@ from typing import TYPE_CHECKING, Any, cast
 from textual import events, on
 from textual.app import ComposeResult
 from textual.containers import VerticalScroll
+from textual.widget import Widget
 from textual.widgets import Input
 
 from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
 from gaugeside.app.widgets.lines import CAUTION, MUTED, RULE, Line
-from gaugeside.checks.view import site_line
 from gaugeside.errors import Refusal
 from gaugeside.preferences import dress_of, read_site, site_source
-from gaugeside.quantities import CHOOSABLE, Dress, bare_labels
-from gaugeside.quantities.site import SEA_LEVEL
+from gaugeside.quantities import CHOOSABLE, Dress, Kind, bare_labels
 from gaugeside.refrigerants import Datum
 from gaugeside.settings import Settings
 
 if TYPE_CHECKING:
-    from gaugeside.app.app import GaugesideApp
+    from gaugeside.app.house import House
 
+_SHORT = {Kind.TEMPERATURE_DIFFERENCE: "temp. difference"}
+_FROM = {"sea level": "standard atmosphere", "altitude": "standard atmosphere", "barometer": "as read"}
+_ZERO = {
+    Datum.IIR: "200 kJ/kg, liquid at 0 °C",
+    Datum.ASHRAE: "0 kJ/kg, liquid at -40 °C",
+    Datum.NBP: "0 kJ/kg, liquid at 101.325 kPa",
+}
 _HELP = {
     "site_pressure": "640 m, 2100 ft, or a barometer reading such as 94.1 kPa, absolute and not reduced to sea level; "
     "empty: sea level.",
@@ -46,7 +52,7 @@ class SitePane(VerticalScroll, can_focus=False):
         plain = Dress(settings.dress)
         for kind in CHOOSABLE:
             chosen = settings.units.get(kind.value) or plain.unit(kind).label
-            self._choice(f"unit-{kind.name}", f"  {kind.value}"[:19], bare_labels(kind), chosen)
+            self._choice(f"unit-{kind.name}", f" {_SHORT.get(kind, kind.value)}", bare_labels(kind), chosen)
         self._choice("bare_pressure", "bare pressure is", ("gauge", "absolute"), settings.bare_pressure)
         self._choice("datum", "enthalpy datum", tuple(Datum), settings.datum)
         self._choice("theme", "theme", themes, settings.theme)
@@ -55,9 +61,9 @@ class SitePane(VerticalScroll, can_focus=False):
         self._lines[name] = FieldLine(name, label, ChoiceField([str(c) for c in choices], value, id=name))
 
     @property
-    def house(self) -> GaugesideApp:
+    def house(self) -> House:
         """The app, by its own type."""
-        return cast("GaugesideApp", self.app)
+        return cast("House", self.app)
 
     def compose(self) -> ComposeResult:
         """One line a setting."""
@@ -65,7 +71,7 @@ class SitePane(VerticalScroll, can_focus=False):
         yield self._site
         yield from self._lines.values()
         yield Line(RULE, MUTED, classes="rule")
-        yield Line("Left, Right or a first letter change a choice. Changes count at once and are remembered.", MUTED)
+        yield Line("Left, Right or a first letter change a choice. It counts at once.", MUTED)
         yield Line(f"Settings: {self.house.places.settings_file}", MUTED)
         yield Line(f"Logbook:  {self.house.places.logbook_file}", MUTED)
 
@@ -73,9 +79,9 @@ class SitePane(VerticalScroll, can_focus=False):
         """Say what each setting means."""
         self._explain()
 
-    def focus_first(self) -> None:
-        """Put the cursor on the atmosphere."""
-        self._site.field.focus()
+    def first_field(self) -> Widget:
+        """The field the cursor starts in."""
+        return self._site.field
 
     @on(Input.Changed)
     def _typed(self, event: Input.Changed) -> None:
@@ -121,18 +127,21 @@ class SitePane(VerticalScroll, can_focus=False):
 
     def _explain(self) -> None:
         house = self.house
-        self._site.understood.say(site_line(house.site if house.settings.site_pressure_text else SEA_LEVEL))
+        where = _FROM[house.settings.site_pressure_from]
+        self._site.understood.say(f"{house.site.atmosphere / 1000:.2f} kPa abs, {where}")
         words = {
             "dress": {"si": "SI: bar, °C, kg/s, kW", "ip": "inch-pound: psi, °F, lb/h, Btu/h"}[house.settings.dress],
             "bare_pressure": f"12 {house.dress.unit(CHOOSABLE[0]).label} is read as {house.settings.bare_pressure}",
-            "datum": Datum(house.settings.datum).description,
+            "datum": _ZERO[Datum(house.settings.datum)],
         }
         for name, text in words.items():
             self._lines[name].understood.say(text)
 
     def on_descendant_focus(self, event: events.DescendantFocus) -> None:
         """Say what the setting means."""
-        self.house.say(_HELP.get(str(event.widget.id), "Which unit readings of this kind are shown in."), MUTED)
+        name = str(event.widget.id)
+        words = _HELP.get(name, "Which unit readings of this kind are shown in.")
+        self.house.say(f"{Datum(self.house.settings.datum).description}. {words}" if name == "datum" else words)
 
     @on(Input.Submitted)
     @on(ChoiceField.Submitted)

@@ -35,6 +35,10 @@ class Dialog(ModalScreen[Any]):
     """
     BINDINGS = [Binding("escape", "leave", priority=True)]
 
+    def first_field(self) -> Widget | None:
+        """What the keys go to first; None for the dialog itself."""
+        return None
+
     def action_leave(self) -> None:
         """Close without an answer."""
         self.dismiss(None)
@@ -77,8 +81,11 @@ class RefrigerantPicker(Dialog):
 
     def on_mount(self) -> None:
         """Show all of them."""
-        self._field.field.focus()
         self._search()
+
+    def first_field(self) -> Widget:
+        """The typed part of a name."""
+        return self._field.field
 
     @on(Input.Changed)
     def _typed(self, event: Input.Changed) -> None:
@@ -102,7 +109,8 @@ class RefrigerantPicker(Dialog):
             marked = place == self._selected
             lines.append((f"{'>' if marked else ' '} {refrigerant_words(found)}", "reverse" if marked else ""))
         self.query_one("#matches", Lines).show(lines)
-        self._field.understood.say(f"{len(self._found)} match" if self._found else "none; see the line below")
+        count = len(self._found)
+        self._field.understood.say(f"{count} match{'es' if count > 1 else ''}" if count else "none; see the line below")
         word = "" if self._found else "No refrigerant of the catalogue has this in its name, names or components."
         self.query_one("#pick-word", Line).say(word, CAUTION)
 
@@ -187,9 +195,9 @@ class MachineAndNote(Dialog):
             yield self._note
             yield Line("Enter takes both   Tab or Down to the note   F9 back without a change", MUTED)
 
-    def on_mount(self) -> None:
-        """Start in the machine's field."""
-        self._tag.field.focus()
+    def first_field(self) -> Widget:
+        """The machine."""
+        return self._tag.field
 
     @on(Input.Submitted)
     def _take(self, event: Input.Submitted) -> None:

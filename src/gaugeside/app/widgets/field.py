@@ -11,7 +11,8 @@ from textual.containers import Horizontal
 from textual.message import Message
 from textual.widgets import Input, Static
 
-from gaugeside.app.widgets.lines import Line, shown_text
+from gaugeside.app.charset import shown_text
+from gaugeside.app.widgets.lines import Line
 
 LONGEST_TYPED = 200
 

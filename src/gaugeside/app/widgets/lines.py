@@ -11,26 +11,13 @@ from textual.screen import Screen
 from textual.widget import Widget
 from textual.widgets import Static
 
-from gaugeside.checks.view import ascii_only
+from gaugeside.app.charset import is_ascii, shown_text
 
 # Text and its style, a style such as "bold $accent".
 Styled = tuple[str, str]
 MAIN, MUTED, CAUTION, REFUSED = "bold $accent", "$text-muted", "bold $warning", "bold $error"
 
 RULE = "-" * 300
-
-_ascii = False
-
-
-def use_ascii() -> None:
-    """From now on show only the characters every terminal has."""
-    global _ascii
-    _ascii = True
-
-
-def shown_text(text: str) -> str:
-    """Return `text` as this terminal can show it."""
-    return ascii_only(text) if _ascii else text
 
 
 class QuietScreen(Screen[None]):
@@ -46,6 +33,9 @@ class Line(Static):
 
     def __init__(self, text: str = "", style: str = "", *, id: str | None = None, classes: str | None = None) -> None:
         super().__init__("", markup=False, id=id, classes=classes)
+        if is_ascii():
+            # The ellipsis is no ASCII character.
+            self.styles.text_overflow = "clip"
         self.text = ""
         self._style = ""
         if text:

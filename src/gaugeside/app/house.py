@@ -1,0 +1,230 @@
+"""What all panes share: settings and site, the refrigerant, the words under the sheet, the helper, the logbook."""
+
+from __future__ import annotations
+
+import asyncio
+from collections.abc import Mapping
+from contextlib import suppress
+from dataclasses import replace
+from functools import partial
+from typing import Any
+
+from textual.screen import Screen
+from textual.theme import Theme
+
+from gaugeside.app.book import Book
+from gaugeside.app.driver import TerminalDriver
+from gaugeside.app.frame import word_lines
+from gaugeside.app.keys import KeysInTurn
+from gaugeside.app.panes.logbook import LogbookPane
+from gaugeside.app.panes.sheet import SheetPane
+from gaugeside.app.saver import Saver
+from gaugeside.app.themes import pick_theme, without_colour
+from gaugeside.app.widgets.lines import CAUTION, MUTED, Line
+from gaugeside.checks import CHECKS
+from gaugeside.checks.view import FOOTNOTE
+from gaugeside.engine import Engine, Reply
+from gaugeside.errors import Refusal
+from gaugeside.keeping import entry_of
+from gaugeside.logbook import Entry, Kept, Logbook
+from gaugeside.preferences import dress_of, site_of
+from gaugeside.quantities.site import SEA_LEVEL
+from gaugeside.refrigerants import Refrigerant, find
+from gaugeside.settings import Places, Settings
+
+_MOST_MESSAGES = 20
+
+
+class House(KeysInTurn):
+    """The app as its panes know it."""
+
+    def head(self) -> None:
+        """Show refrigerant, site, machine and keys as they are now."""
+        raise NotImplementedError
+
+    async def action_pane(self, name: str) -> None:
+        """Show a pane."""
+        raise NotImplementedError
+
+    def __init__(
+        self,
+        places: Places,
+        settings: Settings,
+        draft: dict[str, Any],
+        themes: dict[str, Theme],
+        messages: list[str],
+        environ: Mapping[str, str],
+        engine_command: list[str] | None = None,
+    ) -> None:
+        super().__init__(driver_class=TerminalDriver, ansi_color=True if without_colour(environ) else None)
+        self.places, self.settings, self.saved = places, settings, draft
+        self.themes, self.environ = themes, environ
+        self._messages, self.told = messages, list(messages)
+        self.refrigerant: Refrigerant | None = None
+        self.note = str(draft.get("note", ""))[:2000]
+        self.engine_word = ""
+        self._word: tuple[str, str] = ("", "")
+        self.now = ""
+        self.under_way = False
+        self.event_loop: asyncio.AbstractEventLoop | None = None
+        self.engine = Engine(
+            lambda reply: self._from_thread(self._reply, reply),
+            lambda word: self._from_thread(self._engine_says, word),
+            log=places.log_file,
+            own_folder=places.settings_folder,
+            command=engine_command,
+        )
+        self.saver = Saver(places, lambda text: self._from_thread(self.trouble, text))
+        self.book = Book(Logbook(places.logbook_file), self._from_thread, self.trouble)
+        self._take_settings(settings)
+
+    def _take_settings(self, settings: Settings) -> None:
+        self.settings = settings
+        self.dress = dress_of(settings)
+        try:
+            self.site = site_of(settings)
+        except Refusal as refusal:
+            self.site = SEA_LEVEL
+            self.trouble(f"{refusal.sentence()} Sea level is used.")
+
+    def apply(self, settings: Settings) -> None:
+        """Use and remember other settings; every form is read again."""
+        if settings == self.settings:
+            return
+        redressed = (settings.dress, settings.units, settings.bare_pressure) != (
+            self.settings.dress,
+            self.settings.units,
+            self.settings.bare_pressure,
+        )
+        if settings.theme != self.settings.theme:
+            self.theme = pick_theme(settings.theme, self.environ, self.themes)
+        self._take_settings(settings)
+        self.saver.settings(settings)
+        for pane in self.base.query(SheetPane):
+            if redressed:
+                pane.units.clear()
+            pane.read_all()
+        self.head()
+
+    def say(self, text: str, style: str = MUTED) -> None:
+        """Show a sentence in the two lines under the sheet."""
+        self._word = (text, style)
+        self.show_word()
+
+    def show_word(self) -> None:
+        """Show what is most urgent: a message not read yet, the helper's state, the word said last."""
+        if not self.under_way:
+            return
+        text, style = (self.engine_word, CAUTION) if self.engine_word else self._word
+        if self._messages:
+            more = len(self._messages) - 1
+            text, style = self._messages[0] + (f" ({more} more: F1)" if more else ""), CAUTION
+        shown = word_lines(text or (FOOTNOTE if self.now in CHECKS else ""), self.size.width)
+        for line, part in zip(self.base.query("#word > Line").results(Line), shown, strict=True):
+            line.say(part, style)
+
+    @property
+    def base(self) -> Screen[Any]:
+        """The screen with the panes, whatever lies over it."""
+        return self.screen_stack[0]
+
+    def form_changed(self) -> None:
+        """Something was typed: save the forms soon, drop messages that have been read."""
+        self._messages.clear()
+        if self.under_way:
+            self.saver.draft(self.draft())
+
+    def draft(self) -> dict[str, Any]:
+        """Return what is on the forms."""
+        forms = dict(self.saved.get("forms", {})) if isinstance(self.saved.get("forms"), dict) else {}
+        for pane in self.base.query(SheetPane):
+            forms[pane.check.name] = {"texts": pane.texts(), "units": pane.units}
+        return {"pane": self.now, "note": self.note, "forms": forms}
+
+    def keep(self, pane: SheetPane) -> None:
+        """Keep what a sheet shows in the logbook."""
+        if pane.answer is None or pane.refusal is not None:
+            word = pane.refusal.sentence() if pane.refusal else "There is no answer on this sheet yet."
+            self.say(f"Not kept: {word}", CAUTION)
+            return
+        entry = entry_of(pane.check, pane.answer, pane.typed, self.settings, self.dress, self.site, self.note)
+        self.book.do(lambda logbook: logbook.keep(entry), self._kept, self._not_kept)
+
+    def _kept(self, kept: Kept) -> None:
+        at = kept.entry.kept_at.astimezone().strftime("%H:%M:%S")
+        if kept.already:
+            self.say(f"Already kept at {at} as entry {kept.entry.number}: the same within ten minutes is one entry.")
+            return
+        if self.note == kept.entry.note:
+            self.note = ""
+        self.head()
+        machine = f" for {kept.entry.tag}" if kept.entry.tag else ""
+        self.say(f"Kept at {at} as entry {kept.entry.number}{machine}. F6 shows the logbook.")
+        for pane in self.base.query(LogbookPane):
+            pane.reload()
+        self.form_changed()
+
+    def _not_kept(self, refusal: Refusal) -> None:
+        self.say(f"NOT KEPT: {refusal.sentence()}", CAUTION)
+
+    async def open_entry(self, entry: Entry) -> None:
+        """Bring an entry's readings back into their pane."""
+        if entry.check not in CHECKS:
+            self.say(f"Entry {entry.number} is of a kind this version does not have: {entry.check}.", CAUTION)
+            return
+        try:
+            self.use(find(entry.refrigerant))
+        except Refusal as refusal:
+            self.say(refusal.sentence(), CAUTION)
+            return
+        self.apply(replace(self.settings, tag=entry.tag))
+        await self.action_pane(entry.check)
+        self.base.query_one(f"#pane-{entry.check}", SheetPane).put(entry.readings)
+        self.head()
+        self._say_opened(entry)
+        self.form_changed()
+
+    def _say_opened(self, entry: Entry) -> None:
+        then = entry.options.get("site", "")
+        datum = entry.options.get("datum", self.settings.datum)
+        words = [f"Entry {entry.number} as it was typed."]
+        if then and then != self.site.source:
+            words.append(f"The site was then: {then}; now: {self.site.source}.")
+        if datum != self.settings.datum:
+            words.append(f"Enthalpy datum then {datum}, now {self.settings.datum}.")
+        self.say(" ".join(words), CAUTION if len(words) > 1 else MUTED)
+
+    def use(self, found: Refrigerant) -> None:
+        """Take this refrigerant for every sheet."""
+        self.refrigerant = found
+        self.apply(replace(self.settings, refrigerant=found.designation))
+        for pane in self.base.query(SheetPane):
+            pane.read_all()
+        self.head()
+
+    # From other threads
+
+    def _from_thread(self, callback: Any, *arguments: Any) -> None:
+        # After the app has ended there is no loop, and nobody to tell.
+        with suppress(RuntimeError):
+            if self.event_loop is not None:
+                self.event_loop.call_soon_threadsafe(partial(self.call_later, callback, *arguments))
+
+    def _reply(self, reply: Reply) -> None:
+        self.engine_word = ""
+        for pane in self.base.query(SheetPane):
+            if pane.check.name == reply.slot:
+                pane.receive(reply)
+        self.show_word()
+
+    def _engine_says(self, word: str) -> None:
+        if self.engine_word and not word:
+            self.say("The property helper was started again; nothing typed is lost.", CAUTION)
+        self.engine_word = word
+        self.show_word()
+
+    def trouble(self, text: str) -> None:
+        """Tell something that must be read; the help keeps it after that."""
+        self.told = [*self.told, text][-_MOST_MESSAGES:]
+        self._messages.append(text)
+        self.show_word()

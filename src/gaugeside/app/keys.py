@@ -1,0 +1,77 @@
+"""Keys in turn: over a slow link many arrive at once, and each must find the screen as the one before left it."""
+
+from __future__ import annotations
+
+from collections import deque
+from dataclasses import dataclass
+from functools import partial
+from typing import Any
+
+from textual import events, on
+from textual.app import App
+from textual.message import Message
+from textual.message_pump import MessagePump
+
+# Seconds after which a key whose end was never reported no longer holds back the next.
+_LONGEST = 0.5
+
+
+class KeysInTurn(App[None]):
+    """An app that hands a key on only when the one before has done its work.
+
+    The screen library sends every key that has arrived to the field that has the focus at that moment, so that of
+    keys in one burst those after a Tab, an Enter or a function key went to the field before.
+    """
+
+    @dataclass
+    class Done(Message):
+        """Follows a key on its way up through the widgets, behind all that the key has caused there."""
+
+        turn: int
+
+    def __init__(self, **options: Any) -> None:
+        self._held: deque[events.Key | events.Paste] = deque()
+        self._turn = 0
+        self._in_turn = False
+        super().__init__(**options)
+
+    async def on_event(self, event: events.Event) -> None:
+        """Hold a key back while another is at work; everything else goes its way at once."""
+        if not isinstance(event, events.Key | events.Paste) or event.is_forwarded:
+            await super().on_event(event)
+            return
+        self._held.append(event)
+        if not self._in_turn:
+            await self._hand_on()
+        elif len(self._held) == 1:
+            self._wait_no_longer(self._turn)
+
+    async def _hand_on(self) -> None:
+        if not self._held:
+            return
+        self._in_turn = True
+        self._turn += 1
+        if len(self._held) > 1:
+            self._wait_no_longer(self._turn)
+        target: MessagePump = self.focused or self.screen
+        await super().on_event(self._held.popleft())
+        # Behind the key in its queue, so that what it posts there stands before the message.
+        if not target.call_later(self._follow, target, self._turn):
+            await self._free(self._turn)
+
+    def _wait_no_longer(self, turn: int) -> None:
+        self.set_timer(_LONGEST, partial(self._free, turn))
+
+    def _follow(self, target: MessagePump, turn: int) -> None:
+        if not target.post_message(self.Done(turn)):
+            self.post_message(self.Done(turn))
+
+    @on(Done)
+    async def _done(self, event: Done) -> None:
+        event.stop()
+        await self._free(event.turn)
+
+    async def _free(self, turn: int) -> None:
+        if turn == self._turn and self._in_turn:
+            self._in_turn = False
+            await self._hand_on()
