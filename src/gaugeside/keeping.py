@@ -4,12 +4,14 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from datetime import UTC, datetime
+from typing import Any
 
 from gaugeside import __version__
 from gaugeside.checks.sheet import Answer, Check, si_unit
 from gaugeside.checks.typed import TypedLine
 from gaugeside.checks.view import sentence, two_forms
-from gaugeside.logbook import Entry
+from gaugeside.errors import Refusal
+from gaugeside.logbook import Entry, Logbook
 from gaugeside.quantities import Dress, Site
 from gaugeside.settings import Settings
 
@@ -73,5 +75,32 @@ def headline(check: Check, answer: Answer, dress: Dress, site: Site) -> str:
     texts = []
     for line in chosen[:3]:
         value = answer.findings[line.name]
-        texts.append(f"{line.label} {value if isinstance(value, str) else two_forms(value, line.kind, dress, site)[0]}")
+        texts.append(f"{line.label} {value if isinstance(value, str) else two_forms(value, line, dress, site)[0]}")
     return ", ".join(texts)
+
+
+def with_linked_entries(values: Mapping[str, Any], logbook: Logbook) -> dict[str, Any]:
+    """Return a check's SI values with every logbook entry that is named replaced by what was found there.
+
+    Raises Refusal, naming the field, when there is no such entry or it lacks a finding.
+    """
+    linked = dict(values)
+    for name, value in values.items():
+        if isinstance(value, Mapping) and set(value) == {"entry"}:
+            try:
+                linked[name] = _stage(logbook.entry(int(value["entry"])))
+            except Refusal as refusal:
+                raise refusal.about(name) from None
+    return linked
+
+
+def _stage(entry: Entry) -> dict[str, float]:
+    """Return heat absorbed, heat rejected and power of a kept machine; electrical power where it is known."""
+    found = {name: item["value"] for name, item in entry.findings.items() if isinstance(item.get("value"), float | int)}
+    power = found.get("electrical_power", found.get("power_to_refrigerant"))
+    if entry.check != "machine" or power is None or not {"heat_absorbed", "heat_rejected"} <= set(found):
+        raise Refusal(
+            f"Entry {entry.number} is no machine sheet with heat absorbed, heat rejected and power.",
+            "Keep the lower stage's machine sheet once it shows all three, and give its number.",
+        )
+    return {"heat_absorbed": found["heat_absorbed"], "heat_rejected": found["heat_rejected"], "power": float(power)}

@@ -24,7 +24,7 @@ from gaugeside.checks.view import (
     table,
 )
 from gaugeside.errors import Refusal
-from gaugeside.keeping import entry_of, json_findings
+from gaugeside.keeping import entry_of, json_findings, with_linked_entries
 from gaugeside.logbook import Entry as LogbookEntry
 from gaugeside.logbook import Logbook
 from gaugeside.preferences import dress_of, overridden, site_of
@@ -72,7 +72,9 @@ def run_check(arguments: Namespace, say: Printer) -> int:
     asked = request(
         check.name,
         refrigerant,
-        {name: line.value for name, line in typed.items() if line.value is not None},
+        with_linked_entries(
+            {name: line.value for name, line in typed.items() if line.value is not None}, Logbook(home.logbook_file)
+        ),
         site=site,
         datum=settings.datum,
         dress=dress,
@@ -174,6 +176,8 @@ def _reading_json(entry: Entry, kind: Kind, line: TypedLine) -> dict[str, Any]:
     if entry is Entry.STATE:
         values = {name: {"value": value, "unit": SI_UNIT[PROPERTIES[name]]} for name, value in line.value.items()}
         return {"values": values, "typed": line.text.strip()}
+    if entry is Entry.LOGBOOK_ENTRY:
+        return {"value": int(line.value["entry"]), "unit": "", "typed": line.text.strip()}
     if entry is Entry.WORDS:
         return {"value": line.value, "unit": "", "typed": line.text.strip()}
     ((name, value),) = line.value.items()

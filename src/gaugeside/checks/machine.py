@@ -1,4 +1,6 @@
-"""The whole single-stage machine: all readings of one running machine on one sheet, every one optional.
+"""The whole machine: all readings of one running machine on one sheet, every one optional.
+
+A second stage or the upper side of a cascade is a sheet of its own that takes up what a kept sheet rejects.
 
 Q_H = Q_L + W between the heat exchangers; COPs and the reversible limit after Carnot between the cooled space and
 the heat sink. What can be computed is; what is missing for the rest is named.
@@ -6,12 +8,13 @@ the heat sink. What can be computed is; what is missing for the rest is named.
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import dataclass
 
 from gaugeside.checks.caution import discharge_cautions, model_note, refrigerant_caution, suction_caution
 from gaugeside.checks.machine_circuit import Circuit, trace
 from gaugeside.checks.machine_flows import Flows, balance
-from gaugeside.checks.sheet import Check, Conditions, Outcome, Table, choice, finding, reading
+from gaugeside.checks.sheet import Check, Conditions, Outcome, Table, choice, entry, finding, reading
 from gaugeside.errors import Refusal
 from gaugeside.quantities import Kind
 
@@ -61,6 +64,9 @@ class Readings:
     sink_temperature: float | None = reading(
         "heat sink", Kind.TEMPERATURE, "Of the outside air or water that takes the heat, not of the refrigerant."
     )
+    stage_below: Mapping[str, float] | None = entry(
+        "stage below", "Number of the logbook entry of the lower stage or cascade whose heat this machine takes up."
+    )
 
 
 @dataclass
@@ -82,6 +88,8 @@ class Findings:
     volumetric_efficiency: float | None = finding("volumetric effic.", Kind.FRACTION)
     volumetric_capacity: float | None = finding("volumetric capacity", Kind.VOLUMETRIC_CAPACITY)
     flash_fraction: float | None = finding("flash gas after valve", Kind.FRACTION)
+    overall_power: float | None = finding("power of both stages", Kind.POWER)
+    overall_cop_refrigerator: float | None = finding("COP of both, refrig.", Kind.RATIO)
     reversible_cop_refrigerator: float | None = finding("reversible COP, ref.", Kind.RATIO)
     minimum_power: float | None = finding("minimum power", Kind.POWER)
     second_law_efficiency: float | None = finding("second-law effic.", Kind.FRACTION)
@@ -89,7 +97,11 @@ class Findings:
 
 def run(conditions: Conditions, readings: Readings) -> Outcome:
     """Return all that the readings of one machine give; Refusal when none is typed or one cannot be."""
-    typed = {name: value for name, value in vars(readings).items() if value is not None and name != "drive"}
+    typed = {
+        name: value
+        for name, value in vars(readings).items()
+        if value is not None and name not in ("drive", "stage_below")
+    }
     if not typed:
         raise Refusal("No reading is typed.", "Type any; each adds to what can be said.", "suction_pressure")
     for line in CHECK.reading_lines():
@@ -97,10 +109,17 @@ def run(conditions: Conditions, readings: Readings) -> Outcome:
         if value is not None and value <= 0 and line.kind not in (Kind.PRESSURE, Kind.TEMPERATURE):
             raise Refusal(f"The {line.label} is not above zero.", "Type an amount, or leave it blank.", line.name)
     outcome = Outcome(Findings())
+    below = readings.stage_below
+    if below is not None:
+        _take_up(below, typed, outcome)
     circuit = trace(conditions, typed, outcome)
     flows = balance(conditions, circuit, typed, readings.drive, outcome)
+    if below is not None and readings.heat_absorbed is None:
+        flows.sources["heat_absorbed"] = "what the stage below rejects"
     _report_circuit(conditions, circuit, outcome)
     _report_flows(flows, circuit, outcome)
+    if below is not None:
+        _report_both(below, flows, outcome)
     _report_limit(flows, circuit, typed, outcome)
     _name_missing(circuit, flows, outcome)
     outcome.note(f"Enthalpies: {conditions.fluid.datum_note}. Steady flow; kinetic and potential energy neglected.")
@@ -108,6 +127,29 @@ def run(conditions: Conditions, readings: Readings) -> Outcome:
     refrigerant_caution(conditions, outcome)
     outcome.no_finding = Refusal("The readings typed give no finding alone.", "Add a pressure to each temperature.")
     return outcome
+
+
+def _take_up(below: Mapping[str, float], typed: dict[str, float], outcome: Outcome) -> None:
+    """Take the heat rejected by the stage below as what this machine absorbs."""
+    if "heat_absorbed" in typed:
+        outcome.note("The heat absorbed is typed; it may hold loads beside the stage below.")
+    else:
+        typed["heat_absorbed"] = below["heat_rejected"]
+        outcome.note(
+            "Heat absorbed is what the stage below rejects, {heat}: no other load and no loss between the two.",
+            heat=(below["heat_rejected"], Kind.POWER),
+        )
+
+
+def _report_both(below: Mapping[str, float], flows: Flows, outcome: Outcome) -> None:
+    """Add what both stages do together: heat absorbed below over the power of both."""
+    work = flows.electrical if flows.electrical is not None else flows.power
+    found: Findings = outcome.findings
+    if work is None:
+        return
+    found.overall_power = work + below["power"]
+    found.overall_cop_refrigerator = below["heat_absorbed"] / found.overall_power
+    outcome.remark("overall_cop_refrigerator", "heat absorbed below over the power of both")
 
 
 def _report_circuit(conditions: Conditions, circuit: Circuit, outcome: Outcome) -> None:
@@ -216,7 +258,7 @@ def _name_missing(circuit: Circuit, flows: Flows, outcome: Outcome) -> None:
 CHECK = Check(
     "machine",
     "machine",
-    "All readings of one single-stage machine; whatever is typed counts.",
+    "All readings of one machine; whatever is typed counts.",
     Readings,
     Findings,
     run,

@@ -27,6 +27,7 @@ class Entry(StrEnum):
     STATE = "state"
     CHOICE = "choice"
     WORDS = "words"
+    LOGBOOK_ENTRY = "number of a logbook entry"
 
 
 @dataclass(frozen=True)
@@ -191,6 +192,11 @@ def either(label: str, kinds: tuple[Kind, ...], help: str, *, positional: bool =
 def words(label: str, help: str, *, positional: bool = False) -> Any:
     """Declare a reading that is text."""
     return field(default=None, metadata={"reading": ReadingLine("", label, Entry.WORDS, help, positional=positional)})
+
+
+def entry(label: str, help: str) -> Any:
+    """Declare a reading that is the number of a logbook entry; its value maps names of that entry's findings to SI."""
+    return field(default=None, metadata={"reading": ReadingLine("", label, Entry.LOGBOOK_ENTRY, help)})
 
 
 def choice(label: str, choices: tuple[str, ...], help: str, *, positional: bool = False) -> Any:

@@ -171,10 +171,20 @@ def _choice(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site:
     return TypedLine(text, found[0], (found[0], ""), found[0], units)
 
 
+def _logbook_entry(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site: Site) -> TypedLine:
+    number = guard(text).removeprefix("#").strip()
+    if not (number.isascii() and number.isdigit()) or len(number) > 9:
+        raise Refusal(
+            f"{quoted(text)} is not the number of a logbook entry.", "Write its number alone, for example 12."
+        )
+    return TypedLine(text, {"entry": float(number)}, (f"logbook entry {int(number)}", ""), number, units)
+
+
 _READERS = {
     Entry.QUANTITY: _quantity,
     Entry.STATE: _state,
     Entry.EITHER: _either,
     Entry.WORDS: _words,
+    Entry.LOGBOOK_ENTRY: _logbook_entry,
     Entry.CHOICE: _choice,
 }

@@ -52,7 +52,7 @@ def findings(check: Check, answer: Answer, dress: Dress, site: Site) -> list[Fin
     rows: set[str] = set()
     for line in declared:
         if not line.column:
-            first, second = _forms(answer.findings[line.name], line.kind, dress, site)
+            first, second = _forms(answer.findings[line.name], line, dress, site)
             remark = _beside(answer, line.name, dress, site)
             lines.append(FindingText(line.name, line.label, first, second, remark, line.main))
             continue
@@ -69,7 +69,7 @@ def _paired(row: list[FindingLine], columns: list[str], answer: Answer, dress: D
     cells: dict[str, tuple[str, str]] = {}
     beside = ""
     for line in row:
-        first, second = _forms(answer.findings[line.name], line.kind, dress, site)
+        first, second = _forms(answer.findings[line.name], line, dress, site)
         if line.column == "beside":
             words = _beside(answer, line.name, dress, site)
             both = f"{first} = {second}" if second and line.kind is Kind.TEMPERATURE_DIFFERENCE else first
@@ -84,8 +84,8 @@ def _paired(row: list[FindingLine], columns: list[str], answer: Answer, dress: D
     return lines
 
 
-def _forms(value: float | str, kind: Kind, dress: Dress, site: Site) -> tuple[str, str]:
-    return (value, "") if isinstance(value, str) else two_forms(value, kind, dress, site)
+def _forms(value: float | str, line: FindingLine, dress: Dress, site: Site) -> tuple[str, str]:
+    return (value, "") if isinstance(value, str) else two_forms(value, line, dress, site)
 
 
 def _beside(answer: Answer, name: str, dress: Dress, site: Site) -> str:
@@ -93,17 +93,27 @@ def _beside(answer: Answer, name: str, dress: Dress, site: Site) -> str:
     return "" if remark is None else sentence(remark, dress, site)
 
 
-def two_forms(value: float, kind: Kind, dress: Dress, site: Site) -> tuple[str, str]:
-    """Return a number in the reader's unit, and in the second form the trade wants beside it."""
+# The unit beside the reader's own, and the one to fall back on where that is the reader's own.
+_SECOND = {Kind.MASS_FLOW: ("kg/h", "kg/s"), Kind.TEMPERATURE: ("°F", "°C")}
+_HEAT, _WORK = ("TR", "kW"), ("hp", "kW")
+
+
+def two_forms(value: float, line: FindingLine, dress: Dress, site: Site) -> tuple[str, str]:
+    """Return a finding in the reader's unit, and in the second form the trade wants beside it."""
+    kind = line.kind
     if kind is Kind.PRESSURE:
         return gauge_and_absolute(value, dress, site)
     if kind is Kind.TEMPERATURE_DIFFERENCE:
         return both_differences(value, dress, site)
     first = shown(value, kind, dress, site)
-    beside = {Kind.POWER: ("TR", "kW"), Kind.MASS_FLOW: ("kg/h", "kg/s"), Kind.TEMPERATURE: ("°F", "°C")}.get(kind)
+    beside = _SECOND.get(kind)
+    if kind is Kind.POWER:
+        # Motors are rated in kW and hp, heat in kW and tons.
+        beside = _WORK if "power" in line.name else _HEAT
     if beside is None:
         return first, ""
-    label = beside[0] if not first.endswith(beside[0]) else beside[1]
+    own = dress.unit(kind).label
+    label = beside[1] if own == beside[0] or (beside is _WORK and own not in ("kW", "W")) else beside[0]
     return first, write(value, unit(kind, label), kind, site)
 
 
