@@ -85,7 +85,7 @@ def trace(conditions: Conditions, typed: Mapping[str, float], outcome: Outcome) 
     ):
         pressure, temperature = circuit.pressures.get(place), typed.get(temperature_name)
         if pressure is not None and temperature is not None:
-            circuit.states[place] = _state(fluid, pressure, temperature, temperature_name)
+            circuit.states[place] = _state(fluid, pressure, temperature, temperature_name, outcome)
         elif place != "evaporator outlet":
             lacks = [word for word, value in (("pressure", pressure), ("pipe", temperature)) if value is None]
             circuit.missing[place] = " and ".join(lacks)
@@ -122,7 +122,21 @@ def _pressures(circuit: Circuit, typed: Mapping[str, float], outcome: Outcome) -
         )
 
 
-def _state(fluid: Fluid, pressure: float, temperature: float, name: str) -> State:
+# A pipe this near [K] to saturation is taken as saturated: no thermometer tells the two apart.
+_ON_THE_LINE = 0.01
+
+
+def _state(fluid: Fluid, pressure: float, temperature: float, name: str, outcome: Outcome) -> State:
+    liquid = name == "liquid_temperature"
+    try:
+        if pressure < fluid.critical_pressure:
+            line = fluid.bubble_at_pressure(pressure) if liquid else fluid.dew_at_pressure(pressure)
+            if abs(line.temperature - temperature) < _ON_THE_LINE:
+                phase = "liquid" if liquid else "vapour"
+                outcome.note(f"The {name.replace('_', ' ')} is at saturation: taken as saturated {phase}.")
+                return line
+    except OutOfRange:
+        pass  # Without saturation pressure and temperature fix the state, or are refused below.
     try:
         return fluid.state_pt(pressure, temperature)
     except Refusal as refusal:

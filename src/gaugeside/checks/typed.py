@@ -94,18 +94,19 @@ def read_form(
     chosen = first_choice(check, typed)
     for line in check.reading_lines():
         if not line.meant(chosen) and typed[line.name].text.strip():
-            refusal = Refusal(f"A {chosen} takes no {line.label} here.", f"Leave the {line.label} out.", line.name)
+            who = f"A {chosen}" if chosen in check.reading_lines()[0].choices else str(chosen).capitalize()
+            refusal = Refusal(f"{who} takes no {line.label} here.", f"Leave the {line.label} out.", line.name)
             typed[line.name] = TypedLine(typed[line.name].text, refusal=refusal)
     return typed
 
 
 def first_choice(check: Check, typed: Mapping[str, TypedLine]) -> str | None:
-    """Return what is chosen in the form's first line, None where that is no choice or not understood."""
+    """Return what is chosen, or named in words, in the form's first line; None where it is neither or not understood."""
     first = check.reading_lines()[0]
-    if first.entry is not Entry.CHOICE or first.name not in typed:
+    if first.entry not in (Entry.CHOICE, Entry.WORDS) or first.name not in typed:
         return None
     value = typed[first.name].value
-    return None if value is None else str(value)
+    return None if value is None else " ".join(str(value).casefold().split())
 
 
 def _quantity(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site: Site) -> TypedLine:
