@@ -90,16 +90,21 @@ def guard(text: str) -> str:
             f"{len(text)} characters is longer than a reading can be ({LONGEST}).",
             "Type a number and its unit.",
         )
+    refuse_control_characters(text)
+    stripped = unicodedata.normalize("NFC", text).strip()
+    if not stripped:
+        raise Refusal("The field is empty.", "Type a number and its unit.")
+    return stripped
+
+
+def refuse_control_characters(text: str) -> None:
+    """Raise Refusal when `text` has a character that is not seen, or that moves what is."""
     for place, character in enumerate(text, 1):
         if unicodedata.category(character) in {"Cc", "Cf", "Cs", "Co", "Cn", "Zl", "Zp"} and character != "\t":
             raise Refusal(
                 f"There is a control character (U+{ord(character):04X}) at place {place}.",
                 "Type only the number and its unit.",
             )
-    stripped = unicodedata.normalize("NFC", text).strip()
-    if not stripped:
-        raise Refusal("The field is empty.", "Type a number and its unit.")
-    return stripped
 
 
 def split_number(text: str) -> tuple[float, str]:

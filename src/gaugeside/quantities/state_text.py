@@ -11,7 +11,15 @@ from dataclasses import dataclass
 
 from gaugeside.errors import Refusal
 from gaugeside.quantities.dress import Dress
-from gaugeside.quantities.reading import Reading, guard, quoted, read, split_number, understood
+from gaugeside.quantities.reading import (
+    Reading,
+    guard,
+    quoted,
+    read,
+    refuse_control_characters,
+    split_number,
+    understood,
+)
 from gaugeside.quantities.site import Site
 from gaugeside.quantities.units import Kind, Unit, fold, spellings
 
@@ -50,7 +58,7 @@ _WORDS = {
 _WORD_PROPERTY = {word: name for name, words in _WORDS.items() for word in words}
 _ALTERNATIVES = "|".join(sorted(map(re.escape, _WORD_PROPERTY), key=len, reverse=True))
 _LEADING = re.compile(rf"(?P<word>{_ALTERNATIVES})(?:\s*=\s*|\s+of\s+|\s+|(?=[-−+.\d]))(?P<rest>.+)\Z", re.IGNORECASE)
-_TRAILING = re.compile(rf"(?P<rest>.*\S)\s+(?:of\s+)?(?P<word>{_ALTERNATIVES})\Z", re.IGNORECASE)
+_TRAILING = re.compile(rf"(?P<rest>.*?\S)\s+(?:of\s+)?(?P<word>{_ALTERNATIVES})\Z", re.IGNORECASE)
 # A comma separates unless digits stand on both sides of it: those are a decimal comma.
 _SEPARATOR = re.compile(r"\s*;\s*|(?<![0-9])\s*,\s*|\s*,\s+|\s*,(?![0-9\s])\s*|\s*,\Z")
 EXAMPLE = "9.1 bar g, 68 C or 9.0 bar g, SC 4 K or -10 C, sat vapour"
@@ -94,10 +102,7 @@ def read_state(text: str, units: Mapping[str, Unit], dress: Dress, site: Site) -
     """
     if len(text) > LONGEST_STATE:
         raise Refusal(f"{len(text)} characters is longer than a state can be.", f"Write for example {EXAMPLE}.")
-    # Each part is guarded again; here only emptiness and control characters matter.
-    for start in range(0, len(text), 60):
-        if text[start : start + 60].strip():
-            guard(text[start : start + 60])
+    refuse_control_characters(text)
     parts = split_state(text.strip())
     if not parts:
         raise Refusal("The state is empty.", f"Write for example {EXAMPLE}.")
@@ -124,6 +129,11 @@ def _read_part(
     folded = fold(part)
     if folded in _SATURATED:
         return "vapour_fraction", _SATURATED[folded], None
+    if not any(character.isdigit() for character in part):
+        raise Refusal(
+            f"{quoted(part.strip())} is not a word for a state known here.",
+            "Write sat liquid or sat vapour, or a number: 68 C, SH 5 K, SC 4 K, x 0.3, h 256 kJ/kg.",
+        )
     found = _LEADING.match(part) or _TRAILING.match(part)
     if found is not None:
         name = _WORD_PROPERTY[found["word"].lower()]
