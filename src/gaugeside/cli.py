@@ -97,6 +97,9 @@ def _parser() -> argparse.ArgumentParser:
     parser.add_argument("--version", action="version", version=f"gaugeside {__version__}")
     parser.add_argument("--logbook", type=Path, metavar="PATH", help="use this logbook file")
     parser.add_argument("--ascii", action="store_true", help="write ASCII characters alone, on the screen too")
+    parser.add_argument(
+        "--demo", action="store_true", help="open the app on an invented cold store, in a throw-away folder"
+    )
     parser.set_defaults(run=None)
     commands = parser.add_subparsers(title="commands", metavar="COMMAND")
     for check in CHECKS.values():
