@@ -101,7 +101,7 @@ def read_form(
 
 
 def first_choice(check: Check, typed: Mapping[str, TypedLine]) -> str | None:
-    """Return what is chosen, or named in words, in the form's first line; None where it is neither or not understood."""
+    """Return what is chosen or named in the form's first line, None where it is neither or not understood."""
     first = check.reading_lines()[0]
     if first.entry not in (Entry.CHOICE, Entry.WORDS) or first.name not in typed:
         return None
