@@ -173,6 +173,12 @@ def _open_app(arguments: argparse.Namespace) -> int:
         )
     from gaugeside.app.start import start
 
+    if arguments.demo:
+        from gaugeside.demo import demo_folder
+
+        with demo_folder() as folder:
+            os.environ["GAUGESIDE_HOME"] = str(folder)
+            return start(None, ascii_alone=arguments.ascii)
     return start(arguments.logbook, ascii_alone=arguments.ascii)
 
 

@@ -46,8 +46,8 @@ _WEEK = (
     (4.8, 31.0, 1.90, 14.6, 84.0, 12.8),
 )
 _NOTES = (
-    "invented: all well", "invented", "invented", "invented: door seal changed", "invented: sight glass bubbles now and then",
-    "invented", "invented: leak search ordered",
+    "invented: all well", "invented", "invented", "invented: door seal changed",
+    "invented: sight glass bubbles now and then", "invented", "invented: leak search ordered",
 )  # fmt: skip
 
 
