@@ -216,6 +216,11 @@ class Liquid:
             freezing = float(self._state.keyed_output(CoolProp.iT_freeze))
             self.freezing = freezing if freezing > self.lowest else None
             self.lowest = max(self.lowest, freezing)
+            try:
+                self.enthalpy(self.highest)
+            except OutOfRange:
+                # Data with a vapour pressure: below it there is no liquid; pure water boils a little earlier.
+                self.highest = min(self.highest, self.boiling)
 
     def check(self, temperature: float, what: str) -> None:
         """Refuse a temperature [K] at which the medium is no liquid or has no data; `what` names it."""
@@ -228,7 +233,7 @@ class Liquid:
                 "Check the reading and its sign, and the concentration: ice in the circuit stops the flow.",
             )
         if temperature > self.highest + 1e-9:
-            if self.medium.fraction is not None:
+            if self.highest != self.boiling:
                 self._no_data(temperature, what)
             raise OutOfRange(
                 f"The {what}, {celsius(temperature)}, is above {celsius(self.boiling)}, where water boils at "
@@ -374,8 +379,8 @@ class MoistAir:
             ratio = -1.0
         if ratio < 0:
             raise Refusal(
-                f"A {place} wet bulb of {celsius(wet_bulb)} at a dry bulb of {celsius(temperature)} is lower than even "
-                "dry air gives.",
+                f"At the {place} a wet bulb of {celsius(wet_bulb)} at a dry bulb of {celsius(temperature)} is lower "
+                "than even dry air gives.",
                 "Check the two readings, and that the wick is wet.",
                 f"{place}_wet_bulb",
             )
