@@ -11,7 +11,7 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any
 
-from gaugeside.errors import Refusal
+from gaugeside.errors import OutOfRange, Refusal
 
 if TYPE_CHECKING:
     from gaugeside.refrigerants import Fluid, State
@@ -211,7 +211,15 @@ def isentropic(fluid: Fluid, inlet: Place, outlet: Place) -> Relation:
             return float(first.enthalpy + ideal(first, second.pressure) / v["isentropic_efficiency"] - second.enthalpy)
 
         low = fluid.state_px(pressure, 0.0).enthalpy if pressure < fluid.critical_pressure else second.enthalpy / 2
-        return fluid.state_ph(pressure, _root_at(inlet, apart, low, second.enthalpy))
+        high = second.enthalpy
+        for _ in range(60):
+            try:
+                apart(high)
+                break
+            except OutOfRange:
+                # Compressed from there it would leave the model's range, so the inlet lies lower.
+                high = low + 0.9 * (high - low)
+        return fluid.state_ph(pressure, _root_at(inlet, apart, low, high))
 
     return Relation(
         "isentropic efficiency",
