@@ -87,8 +87,7 @@ def _suction(conditions: Conditions, readings: Readings, outcome: Outcome) -> No
         return
     found: Findings = outcome.findings
     found.saturated_suction_temperature = dew.temperature
-    mean = (dew.temperature + conditions.fluid.bubble_at_pressure(pressure).temperature) / 2
-    _say_which(conditions, outcome, "saturated_suction_temperature", "dew", mean)
+    _say_which(conditions, outcome, "saturated_suction_temperature", "dew", dew)
     if readings.suction_temperature is not None:
         found.superheat = readings.suction_temperature - dew.temperature
         outcome.remark("superheat", "above the dew point {dew}", dew=(dew.temperature, Kind.TEMPERATURE))
@@ -106,8 +105,7 @@ def _liquid(conditions: Conditions, readings: Readings, outcome: Outcome) -> Non
         return
     found: Findings = outcome.findings
     found.saturated_liquid_temperature = bubble.temperature
-    mean = (bubble.temperature + conditions.fluid.dew_at_pressure(pressure).temperature) / 2
-    _say_which(conditions, outcome, "saturated_liquid_temperature", "bubble", mean)
+    _say_which(conditions, outcome, "saturated_liquid_temperature", "bubble", bubble)
     if readings.liquid_temperature is not None:
         found.subcooling = bubble.temperature - readings.liquid_temperature
         outcome.remark("subcooling", "below the bubble point {bubble}", bubble=(bubble.temperature, Kind.TEMPERATURE))
@@ -127,12 +125,12 @@ def _discharge(conditions: Conditions, readings: Readings, outcome: Outcome) -> 
         return
     found: Findings = outcome.findings
     found.saturated_discharge_temperature = dew.temperature
-    mean = (dew.temperature + conditions.fluid.bubble_at_pressure(pressure).temperature) / 2
-    _say_which(conditions, outcome, "saturated_discharge_temperature", "dew", mean)
+    _say_which(conditions, outcome, "saturated_discharge_temperature", "dew", dew)
     if readings.discharge_temperature is not None:
         found.discharge_superheat = readings.discharge_temperature - dew.temperature
         outcome.remark("discharge_superheat", "above the dew point {dew}", dew=(dew.temperature, Kind.TEMPERATURE))
         if found.discharge_superheat < 0:
+            outcome.remark("discharge_superheat", "BELOW the dew point {dew}", dew=(dew.temperature, Kind.TEMPERATURE))
             _impossible(outcome, "Discharge superheat below zero", "vapour")
 
 
@@ -188,12 +186,20 @@ def _saturated(
         return None
 
 
-def _say_which(conditions: Conditions, outcome: Outcome, name: str, point: str, mean: float) -> None:
-    if conditions.refrigerant.nature == "zeotrope":
-        other = "bubble" if point == "dew" else "dew"
-        outcome.remark(name, f"{point}; mean with {other} {{mean}}", mean=(mean, Kind.TEMPERATURE))
-    else:
+def _say_which(conditions: Conditions, outcome: Outcome, name: str, point: str, saturated: State) -> None:
+    """Say which saturation point a temperature is, and for a zeotrope the mean with the other one."""
+    if conditions.refrigerant.nature != "zeotrope":
         outcome.remark(name, "at the pressure typed")
+        return
+    other = "bubble" if point == "dew" else "dew"
+    find_other = conditions.fluid.bubble_at_pressure if point == "dew" else conditions.fluid.dew_at_pressure
+    try:
+        mean = (saturated.temperature + find_other(saturated.pressure).temperature) / 2
+    except OutOfRange:
+        # Beside the critical point one of the two may end before the other.
+        outcome.remark(name, point)
+        return
+    outcome.remark(name, f"{point}; mean with {other} {{mean}}", mean=(mean, Kind.TEMPERATURE))
 
 
 def _impossible(outcome: Outcome, what: str, phase: str) -> None:
