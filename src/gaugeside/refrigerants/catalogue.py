@@ -6,7 +6,6 @@ import re
 import tomllib
 from collections.abc import Iterable
 from dataclasses import dataclass, replace
-from difflib import get_close_matches
 from functools import cache
 from pathlib import Path
 from typing import Any
@@ -221,6 +220,8 @@ def _hint(text: str) -> str:
 
 def nearest(text: str, most: int = 3) -> list[str]:
     """Return up to `most` designations whose spelling comes nearest to a text."""
+    from difflib import get_close_matches  # only a refusal needs it
+
     whole = catalogue()
     wanted = min(spellings(text), key=len)
     starting = [d for d in (r.designation for r in search(text)) if wanted]

@@ -18,6 +18,8 @@ from .states import Region
 
 # Pressure and temperature this close to saturation do not tell liquid from vapour [K].
 SAME_TEMPERATURE = 1e-3
+# A blend with less glide than this [K] behaves as an azeotrope: no thermometer resolves its vapour fraction.
+LEAST_GLIDE = 0.02
 FINEST = 1e-9
 
 
@@ -77,8 +79,10 @@ class OnePhase:
         """Decide near saturation, where only exact points of the curves will do."""
         bubble = self._bubble.at_temperature(temperature).pressure
         dew = self._dew.at_temperature(temperature).pressure if self._blend else bubble
-        fixed = self._model.refrigerant.nature == "zeotrope"
-        blur = 0.0 if fixed else max(1e-6, SAME_TEMPERATURE * self._slope(temperature))
+        slope = self._slope(temperature)
+        glide = (bubble / dew - 1.0) / slope
+        fixed = self._model.refrigerant.nature == "zeotrope" and glide > LEAST_GLIDE
+        blur = 0.0 if fixed else max(1e-6, SAME_TEMPERATURE * slope)
         if pressure > bubble * (1.0 + blur):
             return self._liquid(pressure)
         if pressure < dew * (1.0 - blur):
