@@ -81,9 +81,19 @@ def _print(text: str, stream: Any = None) -> None:
     stream = sys.stdout if stream is None else stream
     if stream is None:
         return
-    if (stream.encoding or "ascii").lower().replace("-", "") not in ("utf8", "utf16", "utf32"):
-        text = ascii_only(text)
-    print(text, file=stream)
+    print(text if _has_unicode(stream) else ascii_only(text), file=stream)
+
+
+def _print_ascii(text: str) -> None:
+    from gaugeside.checks.view import ascii_only
+
+    _print(ascii_only(text))
+
+
+def _has_unicode(stream: Any) -> bool:
+    """Whether every character can be written to an output stream."""
+    encoding = getattr(stream, "encoding", None) or "ascii"
+    return encoding.lower().replace("-", "") in ("utf8", "utf16", "utf32")
 
 
 def _parser() -> argparse.ArgumentParser:
@@ -117,6 +127,8 @@ def _parser() -> argparse.ArgumentParser:
 
 
 def _add_check(commands: Any, check: Any) -> None:
+    from gaugeside.checks.picture import DRAWN
+
     command = commands.add_parser(check.name, help=_plain(check.summary))
     before = [line for line in check.reading_lines() if line.positional and line.choices]
     after = [line for line in check.reading_lines() if line.positional and not line.choices]
@@ -130,6 +142,9 @@ def _add_check(commands: Any, check: Any) -> None:
         if not line.positional:
             command.add_argument(f"--{line.name.replace('_', '-')}", metavar="READING", help=_plain(line.help))
     _add_common(command)
+    if check.name in DRAWN:
+        command.add_argument("--picture", action="store_true", help="draw the readings among the refrigerant's curves")
+    command.add_argument("--ascii", action="store_true", default=argparse.SUPPRESS, help=argparse.SUPPRESS)
     command.add_argument("--datum", choices=("iir", "ashrae", "nbp"), help="zero of the enthalpies")
     command.add_argument("--keep", action="store_true", help="keep the calculation in the logbook")
     command.add_argument("--tag", default=None, help="which machine, for the logbook")
@@ -185,7 +200,8 @@ def _open_app(arguments: argparse.Namespace) -> int:
 def _run_check(arguments: argparse.Namespace) -> int:
     from gaugeside.oneshot import run_check
 
-    return run_check(arguments, _print)
+    arguments.ascii = arguments.ascii or not _has_unicode(sys.stdout)
+    return run_check(arguments, _print_ascii if arguments.ascii else _print)
 
 
 def _convert(arguments: argparse.Namespace) -> int:

@@ -11,6 +11,7 @@ from typing import Any
 
 from gaugeside.checks.compressor_map import CompressorMap, load_maps
 from gaugeside.checks.perform import perform, request
+from gaugeside.checks.picture import Picture
 from gaugeside.checks.sheet import Answer, Check, Entry, Remark
 from gaugeside.checks.typed import TypedLine, read_form
 from gaugeside.checks.view import (
@@ -23,6 +24,7 @@ from gaugeside.checks.view import (
     site_line,
     table,
 )
+from gaugeside.drawing import draw
 from gaugeside.errors import Refusal
 from gaugeside.keeping import entry_of, json_findings, with_linked_entries
 from gaugeside.logbook import Entry as LogbookEntry
@@ -51,6 +53,7 @@ from gaugeside.settings import Places, Settings, load_settings, places
 
 Printer = Callable[[str], None]
 _WIDTH = 100
+_PICTURE = (80, 18)
 
 
 def run_check(arguments: Namespace, say: Printer) -> int:
@@ -79,6 +82,7 @@ def run_check(arguments: Namespace, say: Printer) -> int:
         datum=settings.datum,
         dress=dress,
         compressor=_compressor(home, settings, refrigerant, troubles) if check.name == "machine" else None,
+        drawn=getattr(arguments, "picture", False),
     )
     reply = perform(asked)
     _raise_refused(reply.get("error"))
@@ -91,12 +95,22 @@ def run_check(arguments: Namespace, say: Printer) -> int:
         kept = f"{'already kept' if result.already else 'kept'} as entry {result.entry.number}"
     answer = replace(answer, notes=(*answer.notes, *map(Remark, troubles)))
     if arguments.json:
-        say(json.dumps(_as_json(check, answer, typed, settings, dress, site, kept)))
+        document = _as_json(check, answer, typed, settings, dress, site, kept)
+        say(json.dumps(document | {name: reply[name] for name in ("picture",) if name in reply}))
     else:
         say("\n".join(_as_text(check, answer, typed, dress, site)))
+        if "picture" in reply:
+            say("\n".join(_drawn(reply["picture"], dress, site, arguments.ascii)))
         if kept:
             say(f"Logbook: {kept}.")
     return 0
+
+
+def _drawn(plain: Mapping[str, Any] | None, dress: Dress, site: Site, ascii_alone: bool) -> list[str]:
+    """Return the lines of a picture below its sheet."""
+    if plain is None:
+        return ["", "No picture: no point has both its coordinates."]
+    return ["", *draw(Picture.from_plain(plain), *_PICTURE, dress, site, ascii_alone=ascii_alone).lines()]
 
 
 def _compressor(home: Places, settings: Settings, refrigerant: str, troubles: list[str]) -> CompressorMap | None:

@@ -7,6 +7,7 @@ from typing import Any
 
 from gaugeside.checks import CHECKS
 from gaugeside.checks.compressor_map import CompressorMap
+from gaugeside.checks.picture import picture
 from gaugeside.checks.sheet import Conditions, Surroundings, answer
 from gaugeside.errors import Refusal
 from gaugeside.quantities import Dress, Kind, Site
@@ -22,8 +23,12 @@ def request(
     datum: str,
     dress: Dress,
     compressor: CompressorMap | None = None,
+    drawn: bool = False,
 ) -> dict[str, Any]:
-    """Return the request that asks for `check` on SI `values`; `compressor` is the machine's polynomials."""
+    """Return the request that asks for `check` on SI `values`, and for its picture when it is to be `drawn`.
+
+    compressor: the machine's polynomials.
+    """
     fahrenheit = dress.unit(Kind.TEMPERATURE).label == "°F"
     return {
         "check": check,
@@ -33,13 +38,17 @@ def request(
         "site": site.source,
         "datum": datum,
         "compressor": None if compressor is None else compressor.plain(),
+        "picture": drawn,
         # Origin and step of the whole degrees in which the reader counts.
         "grid": [459.67 * 5 / 9, 10 / 9] if fahrenheit else [273.15, 1.0],
     }
 
 
 def perform(asked: Mapping[str, Any]) -> dict[str, Any]:
-    """Return {"answer": ...} or, refused, {"error": {"field", "message", "hint"}}; other exceptions are faults."""
+    """Return {"answer": ...} or, refused, {"error": {"field", "message", "hint"}}; other exceptions are faults.
+
+    Asked for a picture, the reply has {"picture": ...} beside the answer, None where there is nothing to draw.
+    """
     # Imported here: they bring the property library, which the screen's process never loads.
     from gaugeside.refrigerants import open_fluid
     from gaugeside.refrigerants.library import VERSION
@@ -60,6 +69,11 @@ def perform(asked: Mapping[str, Any]) -> dict[str, Any]:
                 refrigerant=found,
                 compressor=None if plain is None else CompressorMap.from_plain(plain),
             )
-        return {"answer": answer(check, where, asked["values"], VERSION).plain()}
+        found_out = answer(check, where, asked["values"], VERSION)
+        reply: dict[str, Any] = {"answer": found_out.plain()}
+        if asked.get("picture"):
+            drawn = picture(where.fluid, found_out, asked["values"]) if isinstance(where, Conditions) else None
+            reply["picture"] = None if drawn is None else drawn.plain()
+        return reply
     except Refusal as refusal:
         return {"error": {"field": refusal.field, "message": refusal.message, "hint": refusal.hint}}
