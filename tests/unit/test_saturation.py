@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from itertools import pairwise
+
 import pytest
 
 from gaugeside.checks.view import every_pressure
@@ -118,7 +120,7 @@ def test_neighbouring_rows_stand_at_whole_degrees(
     (table,) = ask("saturation", "R-454C", reading=reading, dress=dress).tables
     temperatures = [row[0] for row in table.rows]
     assert len(temperatures) == 5
-    assert [b - a for a, b in zip(temperatures, temperatures[1:], strict=False)] == pytest.approx([step] * 4)
+    assert [b - a for a, b in pairwise(temperatures)] == pytest.approx([step] * 4)
     if first is not None:
         assert temperatures[0] == pytest.approx(first, abs=1e-9)
     assert table.marked == marked

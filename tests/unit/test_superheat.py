@@ -158,7 +158,10 @@ def test_pressures_alone_give_saturated_temperatures() -> None:
             "liquid_pressure_drop", "larger than the pressure itself",
         ),
         ({"suction_pressure": "2 bar g", "suction_temperature": "2 bar"}, "suction_temperature", "takes a temperature"),
-        ({"suction_pressure": "2 bar g", "suction_pressure_drop": "2 K"}, "suction_pressure_drop", "pressure difference"),
+        (
+            {"suction_pressure": "2 bar g", "suction_pressure_drop": "2 K"}, "suction_pressure_drop",
+            "pressure difference",
+        ),
     ],
 )  # fmt: skip
 def test_missing_partner_and_misfits_are_refused_by_field(texts: dict[str, str], field: str, words: str) -> None:
@@ -209,7 +212,10 @@ def test_beside_the_critical_point_subcooling_needs_no_dew_point(refrigerant: st
         ({"suction_pressure": "-0.2 bar g"}, ["below the atmosphere (1.01 bar abs): a leak draws in air"]),
         ({"discharge_pressure": "12 bar g", "discharge_temperature": "106 C"}, ["usual caution of 105.0 °C"]),
         ({"discharge_pressure": "12 bar g", "discharge_temperature": "121 C"}, ["usual alarm of 120.0 °C"]),
-        ({"suction_pressure": "1 bar abs", "discharge_pressure": "9 bar abs"}, ["Pressure ratio above 8", "leak draws"]),
+        (
+            {"suction_pressure": "1 bar abs", "discharge_pressure": "9 bar abs"},
+            ["Pressure ratio above 8", "leak draws"],
+        ),
         ({"suction_pressure": "2 bar g", "discharge_pressure": "9 bar g", "discharge_temperature": "80 C"}, []),
     ],
 )  # fmt: skip

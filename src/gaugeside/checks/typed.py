@@ -94,7 +94,7 @@ def read_form(
     chosen = first_choice(check, typed)
     for line in check.reading_lines():
         if not line.meant(chosen) and typed[line.name].text.strip():
-            who = f"A {chosen}" if chosen in check.reading_lines()[0].choices else str(chosen).capitalize()
+            who = f"The {chosen}" if chosen in check.reading_lines()[0].choices else str(chosen).capitalize()
             refusal = Refusal(f"{who} takes no {line.label} here.", f"Leave the {line.label} out.", line.name)
             typed[line.name] = TypedLine(typed[line.name].text, refusal=refusal)
     return typed
