@@ -11,6 +11,7 @@ from textual.app import ComposeResult
 from textual.binding import Binding
 from textual.containers import Container
 
+from gaugeside.app.driver import TerminalDriver
 from gaugeside.app.frame import HIGH, MENU, PANES, WIDE, head_line, keys_line, rule_line, tabs_line
 from gaugeside.app.help_text import help_lines
 from gaugeside.app.house import House
@@ -263,6 +264,8 @@ class GaugesideApp(House):
 
     def action_repaint(self) -> None:
         """Paint the whole screen again."""
+        if isinstance(self._driver, TerminalDriver):
+            self._driver.repaint()
         self.refresh(repaint=True, layout=True)
 
     def action_leave(self) -> None:

@@ -3,26 +3,56 @@
 from __future__ import annotations
 
 import codecs
+import curses
 import os
 import select
+from contextlib import suppress
+from typing import Any
 
 from textual._xterm_parser import XTermParser
 from textual.drivers.linux_driver import LinuxDriver
 
+from gaugeside.app.cells import Cells
 from gaugeside.app.charset import ascii_cells, keyboard_encoding
 
-# Reports of the window losing and gaining the focus would cost a whole screen each time.
-_NOT_SENT = frozenset({"\x1b[?1004h", "\x1b[?1004l"})
+# Reports of the window's focus would cost a paint each, and the two questions come back as keys in a terminal that
+# does not know them.
+_NOT_SENT = frozenset({"\x1b[?1004h", "\x1b[?1004l", "\x1b[?2026$p", "\x1b[?2048$p"})
+_OTHER_SCREEN, _CLEAR = "\x1b[?1049h", "\x1b[H\x1b[2J"
 _WAIT = 0.1
 
 
+def erases_in_colour() -> bool:
+    """Whether this terminal erases with the ground set last; no where that is not known."""
+    with suppress(curses.error):
+        curses.setupterm()
+        return bool(curses.tigetflag("bce") > 0)
+    return False
+
+
 class TerminalDriver(LinuxDriver):
-    """Reads any bytes without a fault, ends at the end of the input, writes ASCII alone where asked to."""
+    """Reads any bytes without a fault, ends at the end of the input, sends only what changes, in ASCII if need be."""
+
+    def __init__(self, *arguments: Any, **options: Any) -> None:
+        self._cells = Cells(erases_in_colour())
+        super().__init__(*arguments, **options)
+
+    def repaint(self) -> None:
+        """Send everything with the next paint, whatever stands on the screen."""
+        self._cells.forget()
 
     def write(self, data: str) -> None:
-        """Write `data`, character by character replaced where the terminal shows only ASCII."""
-        if data not in _NOT_SENT:
-            super().write(ascii_cells(data))
+        """Write what `data` changes on the screen."""
+        if data in _NOT_SENT:
+            return
+        if data == _OTHER_SCREEN:
+            # The Linux console has no other screen; there the shell's lines would shine through.
+            super().write(data + _CLEAR)
+            self._cells.clear(*self._app.size)
+            return
+        changes = self._cells.changes(ascii_cells(data), *self._app.size)
+        if changes:
+            super().write(changes)
 
     def run_input_thread(self) -> None:
         """Hand on what is typed until the program ends or the terminal does."""

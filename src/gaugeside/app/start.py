@@ -31,6 +31,8 @@ def start(logbook: Path | None, ascii_alone: bool = False) -> int:
     # Read by the screen library when it is imported, therefore here.
     os.environ.setdefault("ESCDELAY", "400")
     os.environ.setdefault("TEXTUAL_ANIMATIONS", "none")
+    # Every key as a sequence of several bytes, which no key here needs.
+    os.environ.setdefault("TEXTUAL_DISABLE_KITTY_KEY", "1")
     for number in _SIGNALS:
         # An inherited "ignore" (nohup) would keep the program alive behind a closed terminal.
         signal.signal(number, signal.SIG_DFL)
