@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import textwrap
-from collections.abc import Mapping, Sequence
+from collections.abc import Mapping
 from typing import TYPE_CHECKING, Any, cast
 
 from textual import events, on
@@ -13,12 +13,12 @@ from textual.timer import Timer
 from textual.widget import Widget
 from textual.widgets import Input
 
+from gaugeside.app.panes.answer_lines import answer_lines
 from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
-from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, RULE, Line, Lines, Styled
+from gaugeside.app.widgets.lines import CAUTION, MUTED, RULE, Line, Lines, Styled
 from gaugeside.checks.perform import request
-from gaugeside.checks.sheet import Answer, Check, Entry, ReadingLine, Remark
+from gaugeside.checks.sheet import Answer, Check, Entry, ReadingLine
 from gaugeside.checks.typed import TypedLine, first_choice, read_line, takes
-from gaugeside.checks.view import FindingText, TableText, every_pressure, findings, sentence, table
 from gaugeside.engine import Reply
 from gaugeside.errors import Refusal
 
@@ -27,8 +27,9 @@ if TYPE_CHECKING:
 
 # Seconds after which a unit that was typed becomes the field's own although the field is not left.
 _SETTLE = 0.7
-# Seconds after which findings of older readings are taken off the screen while an answer is awaited.
-_PATIENCE = 0.25
+# Seconds after which findings of older readings are taken off the screen while an answer is awaited or a unit is
+# half typed; at once would paint the sheet twice for every unit.
+_PATIENCE = 0.3
 
 
 class SheetPane(VerticalScroll, can_focus=False):
@@ -52,6 +53,7 @@ class SheetPane(VerticalScroll, can_focus=False):
         self.answer: Answer | None = None
         self.refusal: Refusal | None = None
         self._left = ""
+        self._without_answer = ("", "")
         self._asked = 0
         self._keep_then = False
         self._patience: Timer | None = None
@@ -193,11 +195,14 @@ class SheetPane(VerticalScroll, can_focus=False):
         if self.refusal is not None or not typed_in or not self._has_refrigerant:
             self._asked = 0
             house.engine.forget(self.check.name)
-            self._show_nothing(
+            self._without_answer = (
                 "" if typed_in or refused else self.check.summary,
                 "" if self._has_refrigerant else "Press F8 and type part of the refrigerant's name.",
             )
-            self.say_word()
+            if self.refusal is None or not self._is_being_typed(self.refusal.field):
+                self._show_without_answer()
+            elif self._patience is None:
+                self._patience = self.set_timer(_PATIENCE, self._out_of_patience)
             return
         asked = request(
             self.check.name,
@@ -215,10 +220,20 @@ class SheetPane(VerticalScroll, can_focus=False):
     def _has_refrigerant(self) -> bool:
         return self.house.refrigerant is not None or not self.check.needs_refrigerant
 
+    def _is_being_typed(self, name: str | None) -> bool:
+        focused = self.screen.focused
+        return focused is not None and focused.id == name
+
+    def _show_without_answer(self) -> None:
+        self._show_nothing(*self._without_answer)
+        self.say_word()
+
     def _out_of_patience(self) -> None:
         self._patience = None
         if self._asked:
             self._show_nothing(self.house.engine_word or "Working.", "")
+        elif self.answer is None:
+            self._show_without_answer()
 
     def _show_nothing(self, *words: str) -> None:
         width = self._width
@@ -244,35 +259,10 @@ class SheetPane(VerticalScroll, can_focus=False):
             self.house.keep(self)
 
     def _show_answer(self) -> None:
-        house = self.house
-        width = self._width
-        lines: list[Styled] = []
+        house, lines = self.house, list[Styled]()
         if self.answer is not None:
-            for found in findings(self.check, self.answer, house.dress, house.site):
-                style = MAIN if found.main else MUTED if found.heading else ""
-                lines += [(text, style) for text in finding_lines(found, width)]
-            # Cautions stand before the tables: what can hurt somebody is not left below the window's end.
-            lines += self._remarks(self.answer.cautions, width, CAUTION)
-            lines += self._tables(self.answer)
-            lines += self._remarks(self.answer.notes, width, MUTED)
+            lines = answer_lines(self.check, self.answer, house.dress, house.site, self._width)
         self.query_one("#findings", Lines).show(lines)
-
-    def _remarks(self, remarks: Sequence[Remark], width: int, style: str) -> list[Styled]:
-        return [
-            (text, style)
-            for remark in remarks
-            for text in textwrap.wrap(
-                sentence(remark, self.house.dress, self.house.site), width, subsequent_indent="  "
-            )
-        ]
-
-    def _tables(self, answer: Answer) -> list[Styled]:
-        house = self.house
-        tables = [table(raw, house.dress, house.site) for raw in answer.tables]
-        pressures = every_pressure(answer, house.dress, house.site) if self.check.name == "saturation" else None
-        if pressures is not None:
-            tables.insert(0, pressures)
-        return [(text, "") for text in side_by_side(tables)]
 
     def say_word(self) -> None:
         """Show under the sheet what stands in the way, or what belongs in the field."""
@@ -323,35 +313,3 @@ def answer_of(reply: Reply) -> tuple[Answer | None, Refusal | None]:
         return answer, Refusal(str(unresolved["message"]), str(unresolved["hint"] or ""), unresolved["field"])
     except (KeyError, TypeError, ValueError, AttributeError):
         return None, Refusal("The property helper's answer makes no sense.", "Change a reading to try again.")
-
-
-def finding_lines(found: FindingText, width: int) -> list[str]:
-    """Return one finding as lines; what does not fit beside the numbers goes on under itself."""
-    if width < 60:
-        words = f"{found.label}  {found.first}  {found.second}  {found.remark}".strip()
-        return textwrap.wrap(words, width, subsequent_indent="    ")
-    label, first, second = (16, 17, 17) if found.paired else (21, 13, 12)
-    head = f"{found.label:<{label}} {found.first:<{first}} {found.second:<{second}} "
-    beside = textwrap.wrap(found.remark, max(12, width - len(head))) or [""]
-    return [(head + beside[0]).rstrip(), *(" " * len(head) + more for more in beside[1:])]
-
-
-def side_by_side(tables: list[TableText]) -> list[str]:
-    """Return tables as lines, beside each other."""
-    blocks = [_block(one) for one in tables]
-    height = max((len(block) for block in blocks), default=0)
-    lines = []
-    for row in range(height):
-        cells = [block[row] if row < len(block) else " " * len(block[0]) for block in blocks]
-        lines.append("   ".join(cells).rstrip())
-    return lines
-
-
-def _block(one: TableText) -> list[str]:
-    rows = (one.headings, *one.rows)
-    widths = [max(len(row[place]) for row in rows) for place in range(len(one.headings))]
-    lines = []
-    for number, row in enumerate(rows, -1):
-        cells = [f"{row[0]:<{widths[0]}}", *(f"{c:>{w}}" for c, w in zip(row[1:], widths[1:], strict=True))]
-        lines.append(("> " if number == one.marked else "  ") + "  ".join(cells))
-    return lines

@@ -1,0 +1,64 @@
+"""An answer as lines of text for a window of some width."""
+
+from __future__ import annotations
+
+import textwrap
+from collections.abc import Sequence
+
+from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, Styled
+from gaugeside.checks.sheet import Answer, Check, Remark
+from gaugeside.checks.view import FindingText, TableText, every_pressure, findings, sentence, table
+from gaugeside.quantities import Dress, Site
+
+
+def answer_lines(check: Check, answer: Answer, dress: Dress, site: Site, width: int) -> list[Styled]:
+    """Return findings, cautions, tables and notes, each line with its style."""
+    lines: list[Styled] = []
+    for found in findings(check, answer, dress, site):
+        style = MAIN if found.main else MUTED if found.heading else ""
+        lines += [(text, style) for text in finding_lines(found, width)]
+    # Cautions stand before the tables: what can hurt somebody is not left below the window's end.
+    lines += _remarks(answer.cautions, dress, site, width, CAUTION)
+    tables = [table(raw, dress, site) for raw in answer.tables]
+    pressures = every_pressure(answer, dress, site) if check.name == "saturation" else None
+    if pressures is not None:
+        tables.insert(0, pressures)
+    lines += [(text, "") for text in side_by_side(tables)]
+    return lines + _remarks(answer.notes, dress, site, width, MUTED)
+
+
+def _remarks(remarks: Sequence[Remark], dress: Dress, site: Site, width: int, style: str) -> list[Styled]:
+    texts = [sentence(remark, dress, site) for remark in remarks]
+    return [(line, style) for text in texts for line in textwrap.wrap(text, width, subsequent_indent="  ")]
+
+
+def finding_lines(found: FindingText, width: int) -> list[str]:
+    """Return one finding as lines; what does not fit beside the numbers goes on under itself."""
+    if width < 60:
+        words = f"{found.label}  {found.first}  {found.second}  {found.remark}".strip()
+        return textwrap.wrap(words, width, subsequent_indent="    ")
+    label, first, second = (16, 17, 17) if found.paired else (21, 13, 12)
+    head = f"{found.label:<{label}} {found.first:<{first}} {found.second:<{second}} "
+    beside = textwrap.wrap(found.remark, max(12, width - len(head))) or [""]
+    return [(head + beside[0]).rstrip(), *(" " * len(head) + more for more in beside[1:])]
+
+
+def side_by_side(tables: list[TableText]) -> list[str]:
+    """Return tables as lines, beside each other."""
+    blocks = [_block(one) for one in tables]
+    height = max((len(block) for block in blocks), default=0)
+    lines = []
+    for row in range(height):
+        cells = [block[row] if row < len(block) else " " * len(block[0]) for block in blocks]
+        lines.append("   ".join(cells).rstrip())
+    return lines
+
+
+def _block(one: TableText) -> list[str]:
+    rows = (one.headings, *one.rows)
+    widths = [max(len(row[place]) for row in rows) for place in range(len(one.headings))]
+    lines = []
+    for number, row in enumerate(rows, -1):
+        cells = [f"{row[0]:<{widths[0]}}", *(f"{c:>{w}}" for c, w in zip(row[1:], widths[1:], strict=True))]
+        lines.append(("> " if number == one.marked else "  ") + "  ".join(cells))
+    return lines
