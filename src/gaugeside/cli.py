@@ -7,7 +7,7 @@ import json
 import os
 import re
 import sys
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from pathlib import Path
 from typing import Any, NoReturn
 
@@ -91,9 +91,14 @@ def _print_ascii(text: str) -> None:
 
 
 def _has_unicode(stream: Any) -> bool:
-    """Whether every character can be written to an output stream."""
-    encoding = getattr(stream, "encoding", None) or "ascii"
-    return encoding.lower().replace("-", "") in ("utf8", "utf16", "utf32")
+    """Whether every character can be written to an output stream, by its encoding and by the locale."""
+    from gaugeside.app.charset import speaks_utf8
+
+    return speaks_utf8(os.environ, getattr(stream, "encoding", None))
+
+
+def _printer(arguments: argparse.Namespace) -> Callable[[str], None]:
+    return _print_ascii if arguments.ascii else _print
 
 
 def _parser() -> argparse.ArgumentParser:
@@ -201,28 +206,28 @@ def _run_check(arguments: argparse.Namespace) -> int:
     from gaugeside.oneshot import run_check
 
     arguments.ascii = arguments.ascii or not _has_unicode(sys.stdout)
-    return run_check(arguments, _print_ascii if arguments.ascii else _print)
+    return run_check(arguments, _printer(arguments))
 
 
 def _convert(arguments: argparse.Namespace) -> int:
     from gaugeside.oneshot import convert
 
-    return convert(arguments, _print)
+    return convert(arguments, _printer(arguments))
 
 
 def _refrigerants(arguments: argparse.Namespace) -> int:
     from gaugeside.oneshot import list_refrigerants
 
-    return list_refrigerants(arguments, _print)
+    return list_refrigerants(arguments, _printer(arguments))
 
 
 def _logbook_list(arguments: argparse.Namespace) -> int:
     from gaugeside.oneshot import list_logbook
 
-    return list_logbook(arguments, _print)
+    return list_logbook(arguments, _printer(arguments))
 
 
 def _logbook_show(arguments: argparse.Namespace) -> int:
     from gaugeside.oneshot import show_entry
 
-    return show_entry(arguments, _print)
+    return show_entry(arguments, _printer(arguments))

@@ -9,7 +9,7 @@ from gaugeside.checks import CHECKS
 from gaugeside.checks.compressor_map import CompressorMap
 from gaugeside.checks.picture import picture
 from gaugeside.checks.sheet import Conditions, Surroundings, answer
-from gaugeside.errors import Refusal
+from gaugeside.errors import NotModelled, Refusal
 from gaugeside.quantities import Dress, Kind, Site
 from gaugeside.refrigerants import Datum, find
 
@@ -75,5 +75,11 @@ def perform(asked: Mapping[str, Any]) -> dict[str, Any]:
             drawn = picture(where.fluid, found_out, asked["values"]) if isinstance(where, Conditions) else None
             reply["picture"] = None if drawn is None else drawn.plain()
         return reply
+    except NotModelled as refusal:
+        return _refused(refusal.about("refrigerant"))
     except Refusal as refusal:
-        return {"error": {"field": refusal.field, "message": refusal.message, "hint": refusal.hint}}
+        return _refused(refusal)
+
+
+def _refused(refusal: Refusal) -> dict[str, Any]:
+    return {"error": {"field": refusal.field, "message": refusal.message, "hint": refusal.hint}}
