@@ -20,9 +20,28 @@ from gaugeside.refrigerants.solvers import BUBBLE, DEW
 ZERO = 273.15
 TEQP = Path(teqp.get_datapath())
 PURES = (
-    ("R-22", "R-23", "R-32", "R-41", "R-123", "R-124", "R-125", "R-134a", "R-143a", "R-152a", "R-227ea", "R-236fa")
-    + ("R-245fa", "R-1234ze(E)", "R-290", "R-600", "R-600a", "R-717", "R-744", "R-1270", "R-170")
-)  # fmt: skip
+    "R-22",
+    "R-23",
+    "R-32",
+    "R-41",
+    "R-123",
+    "R-124",
+    "R-125",
+    "R-134a",
+    "R-143a",
+    "R-152a",
+    "R-227ea",
+    "R-236fa",
+    "R-245fa",
+    "R-1234ze(E)",
+    "R-290",
+    "R-600",
+    "R-600a",
+    "R-717",
+    "R-744",
+    "R-1270",
+    "R-170",
+)
 HFC_BLENDS = ("R-404A", "R-407A", "R-407C", "R-407F", "R-410A", "R-507A")
 
 

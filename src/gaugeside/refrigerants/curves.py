@@ -90,6 +90,11 @@ class Curve:
         self._reach(temperature, self._temperatures)
         return point_from(self._interpolate(temperature, self._temperatures))
 
+    def guess_log_pressure(self, temperature: float) -> float:
+        """Return the interpolated logarithm of the pressure at a temperature [K] on the curve, good to 1e-5."""
+        first, weights = self._weights(temperature, self._temperatures)
+        return sum(weight * self._log_pressures[first + i] for i, weight in enumerate(weights))
+
     def at_temperature(self, temperature: float) -> Point:
         """Return the point at a temperature [K]; raises NoRoot outside the curve."""
         self._reach(temperature, self._temperatures)

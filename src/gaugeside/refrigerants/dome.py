@@ -155,8 +155,8 @@ class Dome:
     def split(self, bubble: Point, dew: Point, given: Given, value: float, share: float, pressure_given: bool) -> Split:
         """Return the equilibrium between two points of the curves at one pressure or one temperature.
 
-        value: vapour fraction by mass [kg/kg], enthalpy [J/kg], entropy [J/(kg K)] in the library's datum,
-        or ignored when both pressure and temperature are given (then taken from `bubble`).
+        value: vapour fraction by mass [kg/kg], enthalpy [J/kg] or entropy [J/(kg K)] in the library's datum, or
+        the pressure [Pa] when both are given, the points then being those of the temperature.
         share: first guess of the vapour fraction. Raises NoRoot.
         """
         flash = _Flash(self._liquid, self._vapour, given, value, pressure_given)
@@ -226,6 +226,13 @@ class _Flash:
             self.pressure = between(bubble.pressure, dew.pressure)
         self.dense = between(bubble.liquid_density, dew.liquid_density)
         self.thin = between(bubble.vapour_density, dew.vapour_density)
+        if self.given is Given.BOTH:
+            # The ends are at other pressures; at one temperature K-values and gas density go with the pressure.
+            self.pressure = self.value
+            change = between(bubble.pressure, dew.pressure) / self.pressure
+            ratios = [ratio * change for ratio in ratios]
+            self.thin /= change
+            share = rachford_rice(self.whole, ratios, share)
         free = self.temperature if self.pressure_given else self.pressure
         return [*map(math.log, ratios), self.WEIGHT * math.log(free), share]
 

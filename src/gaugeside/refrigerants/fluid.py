@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
 from functools import cache
 from typing import NoReturn
 
@@ -18,6 +17,9 @@ from .phases import NoRoot, Phase
 from .single import FINEST, Found, OnePhase, Outside
 from .solvers import BUBBLE, DEW, Point
 from .states import Datum, Region, State
+
+# Between interpolated curves this far from either [pressure ratio] a flash needs no exact point of them.
+NEAR_END = 1.0003
 
 
 class Fluid:
@@ -315,16 +317,16 @@ class Fluid:
 
     def _inside_glide(self, pressure: float, temperature: float) -> State:
         """Return the state that pressure and temperature fix between bubble and dew; raises NoRoot."""
-        bubble = self._bubble.at_temperature(temperature)
-        dew = self._dew.at_temperature(temperature)
-        share = (bubble.pressure - pressure) / max(bubble.pressure - dew.pressure, 1e-12)
+        bubble, dew = self._bubble.guess_at_temperature(temperature), self._dew.guess_at_temperature(temperature)
+        if not dew.pressure * NEAR_END < pressure < bubble.pressure / NEAR_END:
+            bubble, dew = self._bubble.at_temperature(temperature), self._dew.at_temperature(temperature)
+        share = (bubble.pressure - pressure) / (bubble.pressure - dew.pressure)
         if share < FINEST:
             return self._saturated(bubble, BUBBLE)
         if share > 1.0 - FINEST:
             return self._saturated(dew, DEW)
-        ends = [replace(point, pressure=pressure) for point in (bubble, dew)]
         try:
-            split = self._dome.split(ends[0], ends[1], Given.BOTH, 0.0, share, True)
+            split = self._dome.split(bubble, dew, Given.BOTH, pressure, share, True)
         except NoRoot:
             bubble, dew = self._bubble.at_pressure(pressure), self._dew.at_pressure(pressure)
             split = self._dome.split_slowly(bubble, dew, Given.BOTH, temperature)

@@ -20,6 +20,8 @@ from .states import Region
 SAME_TEMPERATURE = 1e-3
 # A blend with less glide than this [K] behaves as an azeotrope: no thermometer resolves its vapour fraction.
 LEAST_GLIDE = 0.02
+# Interpolated curves are better than this in the logarithm of pressure; nearer than this the exact point decides.
+INTERPOLATION_ERROR = 3e-4
 FINEST = 1e-9
 
 
@@ -76,16 +78,18 @@ class OnePhase:
         return Region.SUBCOOLED
 
     def _region_beside(self, pressure: float, temperature: float) -> Region:
-        """Decide near saturation, where only exact points of the curves will do."""
-        bubble = self._bubble.at_temperature(temperature).pressure
-        dew = self._dew.at_temperature(temperature).pressure if self._blend else bubble
-        slope = self._slope(temperature)
-        glide = (bubble / dew - 1.0) / slope
-        fixed = self._model.refrigerant.nature == "zeotrope" and glide > LEAST_GLIDE
+        """Decide near saturation: from interpolated curves, and beside one of them from its exact point."""
+        log, slope = math.log(pressure), self._slope(temperature)
+        bubble = self._bubble.guess_log_pressure(temperature)
+        dew = self._dew.guess_log_pressure(temperature) if self._blend else bubble
+        if min(abs(log - bubble), abs(log - dew)) < INTERPOLATION_ERROR:
+            bubble = math.log(self._bubble.at_temperature(temperature).pressure)
+            dew = math.log(self._dew.at_temperature(temperature).pressure) if self._blend else bubble
+        fixed = self._model.refrigerant.nature == "zeotrope" and (bubble - dew) / slope > LEAST_GLIDE
         blur = 0.0 if fixed else max(1e-6, SAME_TEMPERATURE * slope)
-        if pressure > bubble * (1.0 + blur):
+        if log > bubble + blur:
             return self._liquid(pressure)
-        if pressure < dew * (1.0 - blur):
+        if log < dew - blur:
             return Region.SUPERHEATED
         if fixed:
             return Region.TWO_PHASE
