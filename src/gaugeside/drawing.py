@@ -166,12 +166,16 @@ class _Units:
     def __init__(self, kind: PictureKind, dress: Dress, site: Site) -> None:
         self.across = dress.unit(kind.across)
         self.pressure = with_sense(dress.unit(Kind.PRESSURE), Sense.ABSOLUTE)
-        self._kind, self._site = kind, site
+        # Every unit here is a factor and an offset: taken once, as the unit library is slow for hundreds of spots.
+        self._lines = [
+            (in_unit(0.0, unit, of, site), (in_unit(1e3, unit, of, site) - in_unit(0.0, unit, of, site)) / 1e3)
+            for unit, of in ((self.across, kind.across), (self.pressure, Kind.PRESSURE))
+        ]
 
     def spot(self, spot: Spot) -> Spot:
         """Return a place in the reader's units."""
-        across = in_unit(spot[0], self.across, self._kind.across, self._site)
-        return across, in_unit(spot[1], self.pressure, Kind.PRESSURE, self._site)
+        (zero_across, across), (zero_pressure, pressure) = self._lines
+        return zero_across + across * spot[0], zero_pressure + pressure * spot[1]
 
 
 def draw(picture: Picture, width: int, height: int, dress: Dress, site: Site, *, ascii_alone: bool = False) -> Drawing:
