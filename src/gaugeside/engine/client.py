@@ -75,6 +75,8 @@ class Engine:
         self._newest: dict[str, int] = {}
         self._number = 0
         self._closed = False
+        self._ending = threading.Event()
+        self._ailing = True
         self._wake_out, self._wake_in = os.pipe()
         os.set_blocking(self._wake_in, False)
         self._process: subprocess.Popen[bytes] | None = None
@@ -110,12 +112,18 @@ class Engine:
     def close(self) -> None:
         """End the helper process; harmless twice."""
         self._closed = True
+        self._ending.set()
         self._wake()
         process = self._process
         if process is not None:
             process.kill()
         if self._thread.is_alive() and threading.current_thread() is not self._thread:
             self._thread.join(timeout=2)
+        if not self._thread.is_alive():
+            for end in (self._wake_in, self._wake_out):
+                if end >= 0:
+                    os.close(end)
+            self._wake_in = self._wake_out = -1
 
     def _wake(self) -> None:
         # Where the pipe is full the thread is about to wake anyway.
@@ -142,9 +150,10 @@ class Engine:
 
     def _after_break(self, current: _Asked | None, why: str) -> _Asked | None:
         """Say what happened and decide whether the request is tried once more."""
+        self._ailing = True
         self._on_state(f"{why}; it is started again.")
         if self._starts > 3:
-            time.sleep(min(self._starts, 20) * 0.1)
+            self._ending.wait(min(self._starts, 20) * 0.1)
         if current is None:
             return None
         current.tries += 1
@@ -181,12 +190,13 @@ class Engine:
                 env=environment,
             )
         except OSError as error:
-            time.sleep(0.5)
+            self._ending.wait(0.5)
             raise _Broken(f"The property helper cannot be started ({error.strerror})") from None
         deadline = time.monotonic() + START_LIMIT
         while "ready" not in self._receive(deadline):
             pass
-        if self._starts == 1:
+        if self._ailing:
+            self._ailing = False
             self._on_state("")
 
     def _stop(self) -> None:
@@ -204,6 +214,8 @@ class Engine:
     def _exchange(self, asked: _Asked) -> dict[str, Any]:
         assert self._process is not None
         assert self._process.stdin is not None
+        if self._buffer:
+            raise _Broken("The property helper spoke unasked")
         line = json.dumps({"number": asked.number, "request": dict(asked.request)}).encode() + b"\n"
         try:
             self._process.stdin.write(line)
