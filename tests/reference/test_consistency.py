@@ -7,7 +7,7 @@ import math
 import pytest
 
 from gaugeside.errors import OutOfRange
-from gaugeside.refrigerants import Fluid, Refrigerant, all_refrigerants, open_fluid
+from gaugeside.refrigerants import Fluid, Refrigerant, all_refrigerants, find, library, open_fluid
 from gaugeside.refrigerants.solvers import BUBBLE, DEW
 
 MODELLED = [one for one in all_refrigerants() if one.modelled]
@@ -141,6 +141,17 @@ def test_the_critical_point_carried_as_data_is_where_the_curves_meet(one: Refrig
     # ... and bubble and dew to one pressure.
     assert dew.pressure <= near.pressure * (1 + 1e-7)
     assert fluid.critical_pressure > dew.pressure
+
+
+@pytest.mark.parametrize("designation", ["R-404A", "R-407C", "R-410A", "R-454B", "R-455A", "R-507A", "R-513B"])
+def test_the_library_finds_the_same_critical_point(designation: str) -> None:
+    """Its own search, for blends of few components, where it takes tenths of a second and not half a minute."""
+    one = find(designation)
+    fractions = None if one.library_fluid.endswith(".mix") else [share for _, share in one.composition]
+    points = library.open_state(one.library_fluid, fractions).all_critical_points()
+    found = max((p.T, p.p) for p in points if p.stable)
+    # The catalogue carries three decimals of a kelvin and whole pascals.
+    assert found == pytest.approx((one.critical_temperature, one.critical_pressure), rel=5e-6)
 
 
 @pytest.mark.parametrize("one", TRADE, ids=lambda one: one.designation)

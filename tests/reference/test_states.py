@@ -7,6 +7,8 @@ import random
 from itertools import pairwise
 
 import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
 
 from gaugeside.errors import OutOfRange, Refusal
 from gaugeside.refrigerants import Datum, Fluid, Refrigerant, Region, State, all_refrigerants, find, library, open_fluid
@@ -300,6 +302,45 @@ def test_out_of_range_is_a_sentence(designation: str, what: object, word: str) -
         what(fluid)  # type: ignore[operator]
     assert refusal.value.message.endswith(".")
     assert refusal.value.hint.endswith(".")
+
+
+CALLS = [
+    "state_pt",
+    "state_ph",
+    "state_ps",
+    "state_px",
+    "state_tx",
+    "state_superheat",
+    "state_subcooling",
+]
+NUMBERS = st.one_of(
+    st.floats(allow_nan=True, allow_infinity=True),
+    st.floats(0.0, 1.0),
+    st.floats(100.0, 700.0),
+    st.floats(-1e5, 1e6),
+    st.floats(1e3, 2e7),
+)
+
+
+@settings(max_examples=600, deadline=None)
+@given(
+    designation=st.sampled_from(["R-134a", "R-744", "R-448A", "R-472A", "R-718", "R-507A", "R-113"]),
+    call=st.sampled_from(CALLS),
+    first=NUMBERS,
+    second=NUMBERS,
+)
+def test_any_two_numbers_give_a_state_or_a_sentence(designation: str, call: str, first: float, second: float) -> None:
+    fluid = open_fluid(find(designation))
+    try:
+        state = getattr(fluid, call)(first, second)
+    except Refusal as refusal:
+        answer = refusal.sentence()
+    else:
+        answer = str(state.region) + "."
+        assert all(map(math.isfinite, (state.pressure, state.temperature, state.enthalpy, state.entropy)))
+        assert state.density > 0.0
+        assert fluid.minimum_temperature - 1e-6 <= state.temperature <= fluid.maximum_temperature + 1e-6
+    assert "." in answer
 
 
 def test_superheat_counts_from_dew_and_subcooling_from_bubble() -> None:

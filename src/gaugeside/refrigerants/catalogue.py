@@ -6,7 +6,7 @@ import re
 import tomllib
 from collections.abc import Iterable
 from dataclasses import dataclass, replace
-from functools import cache
+from functools import cache, lru_cache
 from pathlib import Path
 from typing import Any
 
@@ -67,7 +67,8 @@ def folded(text: str) -> str:
     return re.sub(r"[\s\-‐‑–_.,'()/]+", "", text).casefold()
 
 
-def spellings(name: str) -> set[str]:
+@lru_cache(maxsize=2048)
+def spellings(name: str) -> frozenset[str]:
     """Return the folded forms under which a name is found, with and without its leading R."""
     plain = folded(name)
     forms = {plain}
@@ -76,7 +77,7 @@ def spellings(name: str) -> set[str]:
             rest = plain[len(prefix) :]
             if rest[0].isdigit() or (prefix == "r" and re.match(r"[ce]\d", rest)):
                 forms.add(rest)
-    return forms
+    return frozenset(forms)
 
 
 def natural_order(designation: str) -> tuple[int, int, str]:

@@ -27,10 +27,10 @@ def shifts(fluid: Fluid, datum: Datum) -> tuple[str, float, float]:
     """
     note = datum.description
     if datum is Datum.NBP:
-        why = "it has no liquid at 101.325 kPa"
+        why = "its model has no liquid at 101.325 kPa"
         state = _agreed(fluid, datum, lambda: fluid.bubble_at_pressure(NORMAL_PRESSURE), why)
     elif datum is Datum.ASHRAE:
-        why = "it has no liquid at -40 °C"
+        why = "its model has no liquid at -40 °C"
         state = _agreed(fluid, datum, lambda: fluid.bubble_at_temperature(ICE_POINT - 40.0), why)
     else:
         note, state = _iir(fluid)

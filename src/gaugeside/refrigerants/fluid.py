@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from functools import cache
+from math import isfinite
 from typing import NoReturn
 
 from ..errors import NotModelled, OutOfRange, Refusal
@@ -242,6 +243,8 @@ class Fluid:
 
     def _on_isobar(self, pressure: float, value: float, given: Given) -> State:
         self._limits.check_pressure(pressure)
+        if not isfinite(value):
+            raise Refusal("An enthalpy or entropy must be a number.", "Check the reading.")
         wanted = value - (self._enthalpy_shift if given is Given.ENTHALPY else self._entropy_shift)
         try:
             return self._across(pressure, wanted, given)

@@ -8,6 +8,7 @@ from typing import NoReturn
 from ..errors import OutOfRange, Refusal
 
 DRY_ICE = "R-744"
+DEEPEST_VACUUM = 1e-3  # [Pa]; a good pump leaves a hundred times as much
 
 
 def celsius(temperature: float) -> str:
@@ -88,6 +89,8 @@ class Limits:
         """Refuse an absolute pressure [Pa] of zero or less."""
         if not pressure > 0.0:
             raise OutOfRange("An absolute pressure must be above zero.", "Check the reading and its reference.")
+        if pressure < DEEPEST_VACUUM:
+            raise OutOfRange("No vacuum pump reaches so low a pressure.", "Check the unit of the reading.")
 
     def check_pressure(self, pressure: float) -> None:
         """Refuse a pressure [Pa] outside the equation."""

@@ -36,8 +36,11 @@ class Phase:
         self.state.set_mole_fractions(fractions)
 
     def at(self, density: float, temperature: float) -> None:
-        """Evaluate the equation of state at a molar density [mol/m3] and temperature [K]."""
-        self.state.update(DENSITY_TEMPERATURE, density, temperature)
+        """Evaluate the equation of state at a molar density [mol/m3] and temperature [K]; raises NoRoot."""
+        try:
+            self.state.update(DENSITY_TEMPERATURE, density, temperature)
+        except ValueError as error:
+            raise NoRoot(str(error)) from error
 
     def stiffness(self) -> float:
         """Slope of pressure over density at constant temperature [Pa m3/mol]; positive where stable."""
@@ -64,7 +67,7 @@ class Phase:
         """
         state = self.state
         for _ in range(25):
-            state.update(DENSITY_TEMPERATURE, density, temperature)
+            self.at(density, temperature)
             slope = state.first_partial_deriv(P, D, T)
             if not slope > 0.0:
                 raise NoRoot("unstable density")
@@ -73,7 +76,7 @@ class Phase:
                 raise NoRoot("guess too far off")
             density += step
             if abs(step) < 1e-7 * density:
-                state.update(DENSITY_TEMPERATURE, density, temperature)
+                self.at(density, temperature)
                 return float(density)
         raise NoRoot("density does not settle")
 
@@ -86,7 +89,7 @@ class Phase:
         state = self.state
         density = guess if guess is not None and low < guess < high else 0.5 * (low + high)
         for _ in range(MOST_STEPS):
-            state.update(DENSITY_TEMPERATURE, density, temperature)
+            self.at(density, temperature)
             excess = state.p() - pressure
             slope = state.first_partial_deriv(P, D, T)
             if excess > 0.0:
@@ -99,7 +102,7 @@ class Phase:
                     return float(density)
                 following = 0.5 * (low + high)
             if abs(following - density) < 1e-8 * density and slope > 0.0:
-                state.update(DENSITY_TEMPERATURE, following, temperature)
+                self.at(following, temperature)
                 if abs(state.p() - pressure) > 1e-6 * pressure + 1e-9 * following * slope:
                     raise NoRoot("the bounds hold no density of that pressure")
                 return float(following)

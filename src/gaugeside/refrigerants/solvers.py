@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from typing import Protocol
 
 from . import library
-from .library import DENSITY_TEMPERATURE, Guesses
+from .library import Guesses
 from .phases import NoRoot, Phase
 
 BUBBLE = 0
@@ -95,8 +95,8 @@ class PureSolver:
         for _ in range(30):
             if not dense > thin > 0.0:
                 raise NoRoot("the phases have merged")
-            liquid.update(DENSITY_TEMPERATURE, dense, temperature)
-            vapour.update(DENSITY_TEMPERATURE, thin, temperature)
+            self._liquid.at(dense, temperature)
+            self._vapour.at(thin, temperature)
             stiff, soft = self._liquid.stiffness(), self._vapour.stiffness()
             if not (stiff > 0.0 and soft > 0.0):
                 raise NoRoot("unstable phase")
