@@ -41,6 +41,8 @@ class GaugesideApp(House):
     TextField, TextField:focus, ChoiceField { background: $background; color: $foreground; border: none; }
     TextField:focus { text-style: underline; background: $surface; }
     ChoiceField:focus { text-style: reverse; }
+    .pane.-picture FieldLine, .pane.-picture > Line { height: 0; }
+    .pane.-picture FieldLine:focus-within { height: 1; }
     .rule { text-overflow: clip; }
     #word { height: 2; }
     #word > Line { height: 1; }
@@ -59,6 +61,7 @@ class GaugesideApp(House):
         Binding("f9", "words", priority=True),
         Binding("f10,ctrl+q", "leave", priority=True),
         Binding("ctrl+o", "menu", priority=True),
+        Binding("ctrl+g", "picture", priority=True),
         Binding("ctrl+l", "repaint", priority=True),
         Binding("ctrl+z", "undo_delete", priority=True),
         Binding("pageup", "scroll_pane(-1)", priority=True),
@@ -232,6 +235,12 @@ class GaugesideApp(House):
         """Ctrl+C, where it copies nothing."""
         self.say("F10 or Ctrl+Q leaves.")
 
+    def action_picture(self) -> None:
+        """Show the picture of this sheet in place of its numbers, or the numbers again."""
+        pane = self._pane()
+        if isinstance(pane, SheetPane):
+            pane.turn_picture()
+
     def action_keep_here(self) -> None:
         """Keep what this pane shows."""
         pane = self._pane()
@@ -282,6 +291,6 @@ class GaugesideApp(House):
         """Let Delete and PageUp through to the fields where the pane has no use for them."""
         if action == "delete_entry":
             return len(self.screen_stack) == 1 and self.now == "logbook"
-        if action in ("scroll_pane", "undo_delete"):
+        if action in ("scroll_pane", "undo_delete", "picture"):
             return len(self.screen_stack) == 1
         return True

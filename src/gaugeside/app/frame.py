@@ -8,10 +8,18 @@ from gaugeside.quantities import Site
 from gaugeside.refrigerants import Refrigerant
 
 # Pane -> its function key, in the order of the tabs.
-PANES = {"saturation": "F2", "superheat": "F3", "component": "F4", "logbook": "F6", "site": "F7"}
+PANES = {
+    "saturation": "F2",
+    "superheat": "F3",
+    "component": "F4",
+    "machine": "F5",
+    "logbook": "F6",
+    "site": "F7",
+    "stream": "F12",
+}
 WIDE, HIGH = 80, 24
 
-_KEYS = "Enter keep  F1 help  F8 refrigerant  F9 machine, note  Ctrl+O menu  F10 leave"
+_KEYS = "Enter keep F1 help F8 refrigerant F9 machine, note ^G picture ^O menu F10 leave"
 _OTHER_KEYS = {
     "logbook": "Enter open  F1 help  F9 machine, note  Del delete  Ctrl+Z undo  Ctrl+O menu",
     "site": "Left Right choose  F1 help  Ctrl+O menu  F10 leave",
@@ -21,10 +29,13 @@ MENU = (
     ("2", "saturation", "pane('saturation')"),
     ("3", "superheat and subcooling", "pane('superheat')"),
     ("4", "component", "pane('component')"),
+    ("5", "whole machine", "pane('machine')"),
     ("6", "logbook", "pane('logbook')"),
     ("7", "site, units, theme", "pane('site')"),
+    ("0", "water, brine or air side", "pane('stream')"),
     ("8", "pick the refrigerant", "pick"),
     ("9", "machine and note", "words"),
+    ("g", "picture on or off", "picture"),
     ("k", "keep in the logbook", "keep_here"),
     ("c", "clear this sheet", "clear_sheet"),
     ("d", "delete the logbook entry selected", "delete_entry"),
@@ -51,15 +62,16 @@ def head_line(refrigerant: Refrigerant | None, site: Site, machine: str, width: 
         left = f"{refrigerant.designation}  {refrigerant.safety_class}  {refrigerant.nature}"
     if width < WIDE:
         return f" {left}  {machine}".rstrip()
-    place = f"{site.atmosphere / 1000:.2f} kPa abs  {site.source.split(',')[0]}"
-    return f" {left:<26}{place:<38}{machine[:14]}".rstrip()
+    source = site.source.split(",")[0].removeprefix("standard atmosphere at ")
+    place = f"{site.atmosphere / 1000:.2f} kPa abs  {source}"
+    return f" {left:<26}{place[:37]:<38}{machine[:14]}".rstrip()
 
 
 def tabs_line(pane: str, width: int) -> str:
     """Return the panes with their keys, the one shown in capitals."""
     if width < WIDE:
         return f" {pane.upper()}   F2 to F7 or Ctrl+O"
-    return " " + "  ".join(f"{key} {name.upper() if name == pane else name}" for name, key in PANES.items())
+    return " ".join(f"{key} {name.upper() if name == pane else name}" for name, key in PANES.items())
 
 
 def rule_line(width: int, above: bool, below: bool) -> str:

@@ -22,6 +22,7 @@ from gaugeside.app.saver import Saver
 from gaugeside.app.themes import pick_theme, without_colour
 from gaugeside.app.widgets.lines import CAUTION, MUTED, Line
 from gaugeside.checks import CHECKS
+from gaugeside.checks.compressor_map import CompressorMap, load_maps
 from gaugeside.checks.view import FOOTNOTE
 from gaugeside.engine import Engine, Reply
 from gaugeside.errors import Refusal
@@ -64,6 +65,7 @@ class House(KeysInTurn):
         self.note = str(draft.get("note", ""))[:2000]
         self.engine_word = ""
         self._word: tuple[str, str] = ("", "")
+        self.word_stays = False
         self.now = ""
         self.under_way = False
         self.event_loop: asyncio.AbstractEventLoop | None = None
@@ -76,6 +78,9 @@ class House(KeysInTurn):
         )
         self.saver = Saver(places, lambda text: self._from_thread(self.trouble, text))
         self.book = Book(Logbook(places.logbook_file), self._from_thread, self.trouble)
+        self._maps, bad_maps = load_maps(places.settings_folder)
+        for trouble in bad_maps:
+            self.trouble(trouble)
         self._take_settings(settings)
 
     def _take_settings(self, settings: Settings) -> None:
@@ -106,8 +111,22 @@ class House(KeysInTurn):
             pane.read_all()
         self.head()
 
-    def say(self, text: str, style: str = MUTED) -> None:
-        """Show a sentence in the two lines under the sheet."""
+    def compressor(self) -> CompressorMap | None:
+        """Return the polynomials kept for the machine that is named, where they are for this refrigerant."""
+        found = self._maps.get(self.settings.tag.casefold())
+        if found is None or self.refrigerant is None:
+            return None
+        with suppress(Refusal):
+            if find(found.refrigerant).designation == self.refrigerant.designation:
+                return found
+        return None
+
+    def say(self, text: str, style: str = MUTED, *, stays: bool = False) -> None:
+        """Show a sentence in the two lines under the sheet.
+
+        stays: until the next key that changes something; an answer that comes does not replace it.
+        """
+        self.word_stays = stays
         self._word = (text, style)
         self.show_word()
 
@@ -131,6 +150,7 @@ class House(KeysInTurn):
     def form_changed(self) -> None:
         """Something was typed: save the forms soon, drop messages that have been read."""
         self._messages.clear()
+        self.word_stays = False
         if self.under_way:
             self.saver.draft(self.draft())
 
@@ -147,7 +167,7 @@ class House(KeysInTurn):
             word = pane.refusal.sentence() if pane.refusal else "There is no answer on this sheet yet."
             self.say(f"Not kept: {word}", CAUTION)
             return
-        entry = entry_of(pane.check, pane.answer, pane.typed, self.settings, self.dress, self.site, self.note)
+        entry = entry_of(pane.check, pane.answer, pane.meant(), self.settings, self.dress, self.site, self.note)
         self.book.do(lambda logbook: logbook.keep(entry), self._kept, self._not_kept)
 
     def _kept(self, kept: Kept) -> None:
@@ -172,17 +192,18 @@ class House(KeysInTurn):
         if entry.check not in CHECKS:
             self.say(f"Entry {entry.number} is of a kind this version does not have: {entry.check}.", CAUTION)
             return
-        try:
-            self.use(find(entry.refrigerant))
-        except Refusal as refusal:
-            self.say(refusal.sentence(), CAUTION)
-            return
+        if entry.refrigerant:
+            try:
+                self.use(find(entry.refrigerant))
+            except Refusal as refusal:
+                self.say(refusal.sentence(), CAUTION)
+                return
         self.apply(replace(self.settings, tag=entry.tag))
         await self.action_pane(entry.check)
         self.base.query_one(f"#pane-{entry.check}", SheetPane).put(entry.readings)
         self.head()
-        self._say_opened(entry)
         self.form_changed()
+        self._say_opened(entry)
 
     def _say_opened(self, entry: Entry) -> None:
         then = entry.options.get("site", "")
@@ -192,7 +213,7 @@ class House(KeysInTurn):
             words.append(f"The site was then: {then}; now: {self.site.source}.")
         if datum != self.settings.datum:
             words.append(f"Enthalpy datum then {datum}, now {self.settings.datum}.")
-        self.say(" ".join(words), CAUTION if len(words) > 1 else MUTED)
+        self.say(" ".join(words), CAUTION if len(words) > 1 else MUTED, stays=True)
 
     def use(self, found: Refrigerant) -> None:
         """Take this refrigerant for every sheet."""

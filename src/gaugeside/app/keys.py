@@ -14,6 +14,8 @@ from textual.message_pump import MessagePump
 
 # Seconds after which a key whose end was never reported no longer holds back the next.
 _LONGEST = 0.5
+# A binding is looked up when the key has come all the way up; what its action posts to the field goes up once more.
+_TRIPS = 2
 
 
 class KeysInTurn(App[None]):
@@ -27,13 +29,20 @@ class KeysInTurn(App[None]):
     class Done(Message):
         """Follows a key on its way up through the widgets, behind all that the key has caused there."""
 
+        target: MessagePump
         turn: int
+        trip: int
 
     def __init__(self, **options: Any) -> None:
         self._held: deque[events.Key | events.Paste] = deque()
         self._turn = 0
         self._in_turn = False
         super().__init__(**options)
+
+    @property
+    def is_idle(self) -> bool:
+        """Whether every key that has arrived has done its work."""
+        return not self._in_turn and not self._held
 
     async def on_event(self, event: events.Event) -> None:
         """Hold a key back while another is at work; everything else goes its way at once."""
@@ -55,21 +64,29 @@ class KeysInTurn(App[None]):
             self._wait_no_longer(self._turn)
         target: MessagePump = self.focused or self.screen
         await super().on_event(self._held.popleft())
-        # Behind the key in its queue, so that what it posts there stands before the message.
-        if not target.call_later(self._follow, target, self._turn):
-            await self._free(self._turn)
+        await self._follow(target, self._turn, 1)
 
     def _wait_no_longer(self, turn: int) -> None:
         self.set_timer(_LONGEST, partial(self._free, turn))
 
-    def _follow(self, target: MessagePump, turn: int) -> None:
-        if not target.post_message(self.Done(turn)):
-            self.post_message(self.Done(turn))
+    async def _follow(self, target: MessagePump, turn: int, trip: int) -> None:
+        """Send a message up behind all that is on its way."""
+
+        def post() -> None:
+            if not target.post_message(self.Done(target, turn, trip)):
+                self.post_message(self.Done(target, turn, trip))
+
+        # Behind what stands in the queue, so that what that posts there stands before the message.
+        if not target.call_later(post):
+            await self._free(turn)
 
     @on(Done)
     async def _done(self, event: Done) -> None:
         event.stop()
-        await self._free(event.turn)
+        if event.turn == self._turn and event.trip < _TRIPS:
+            await self._follow(event.target, event.turn, event.trip + 1)
+        else:
+            await self._free(event.turn)
 
     async def _free(self, turn: int) -> None:
         if turn == self._turn and self._in_turn:

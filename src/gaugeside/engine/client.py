@@ -26,11 +26,15 @@ _LARGEST_LINE = 4_000_000
 
 @dataclass(frozen=True)
 class Reply:
-    """What came back for the request `number` of a slot: exactly one of answer, error and fault is set."""
+    """What came back for the request `number` of a slot: exactly one of answer, error and fault is set.
+
+    picture: beside an answer, where one was asked for and there is something to draw.
+    """
 
     slot: str
     number: int
     answer: dict[str, Any] | None = None
+    picture: dict[str, Any] | None = None
     error: dict[str, Any] | None = None
     fault: str = ""
 
@@ -274,6 +278,7 @@ class Engine:
                 asked.slot,
                 asked.number,
                 answer=message.get("answer"),
+                picture=message.get("picture"),
                 error=message.get("error"),
                 fault=str(message.get("fault", "")),
             )

@@ -13,14 +13,18 @@ from textual.timer import Timer
 from textual.widget import Widget
 from textual.widgets import Input
 
+from gaugeside.app.charset import is_ascii
 from gaugeside.app.panes.answer_lines import answer_lines
 from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
 from gaugeside.app.widgets.lines import CAUTION, MUTED, RULE, Line, Lines, Styled
 from gaugeside.checks.perform import request
+from gaugeside.checks.picture import DRAWN, Picture
 from gaugeside.checks.sheet import Answer, Check, Entry, ReadingLine
 from gaugeside.checks.typed import TypedLine, first_choice, read_line, takes
+from gaugeside.drawing import draw
 from gaugeside.engine import Reply
 from gaugeside.errors import Refusal
+from gaugeside.keeping import with_linked_entries
 
 if TYPE_CHECKING:
     from gaugeside.app.house import House
@@ -55,7 +59,9 @@ class SheetPane(VerticalScroll, can_focus=False):
         self._left = ""
         self._without_answer = ("", "")
         self._asked = 0
+        self._linking = 0
         self._keep_then = False
+        self._picture: dict[str, Any] | None = None
         self._patience: Timer | None = None
         self._settle: Timer | None = None
 
@@ -159,7 +165,7 @@ class SheetPane(VerticalScroll, can_focus=False):
     def _changed(self, name: str) -> None:
         line = self.check.reading_line(name)
         self._read(line)
-        if line.entry is Entry.CHOICE:
+        if line == self.check.reading_lines()[0]:
             self._show_meant()
         self._ask()
         self.house.form_changed()
@@ -189,6 +195,7 @@ class SheetPane(VerticalScroll, can_focus=False):
         refused = [typed.refusal for typed in meant.values() if typed.refusal is not None]
         self.answer, self.refusal = None, refused[0] if refused else None
         self._keep_then = False
+        self._linking += 1
         house = self.house
         values = {name: typed.value for name, typed in meant.items() if typed.value is not None}
         typed_in = [name for name in values if self.check.reading_line(name).entry is not Entry.CHOICE]
@@ -204,6 +211,30 @@ class SheetPane(VerticalScroll, can_focus=False):
             elif self._patience is None:
                 self._patience = self.set_timer(_PATIENCE, self._out_of_patience)
             return
+        if any(isinstance(value, Mapping) and "entry" in value for value in values.values()):
+            self._link(values)
+        else:
+            self._put_question(values)
+
+    def _link(self, values: dict[str, Any]) -> None:
+        """Look up the logbook entries that are named before the question is put."""
+        self._asked = 0
+        self._linking += 1
+        turn = self._linking
+
+        def found(linked: dict[str, Any]) -> None:
+            if turn == self._linking:
+                self._put_question(linked)
+
+        def missing(refusal: Refusal) -> None:
+            if turn == self._linking:
+                self.refusal, self._without_answer = refusal, ("", "")
+                self._show_without_answer()
+
+        self.house.book.do(lambda logbook: with_linked_entries(values, logbook), found, missing)
+
+    def _put_question(self, values: Mapping[str, Any]) -> None:
+        house = self.house
         asked = request(
             self.check.name,
             house.refrigerant.designation if house.refrigerant is not None else "",
@@ -211,6 +242,8 @@ class SheetPane(VerticalScroll, can_focus=False):
             site=house.site,
             datum=house.settings.datum,
             dress=house.dress,
+            compressor=house.compressor() if self.check.name == "machine" else None,
+            drawn=self.has_class("-picture"),
         )
         self._asked = house.engine.ask(self.check.name, asked)
         if self._patience is None:
@@ -253,16 +286,41 @@ class SheetPane(VerticalScroll, can_focus=False):
             self._patience.stop()
             self._patience = None
         self.answer, self.refusal = answer_of(reply)
+        self._picture = reply.picture
         self._show_answer()
-        self.say_word()
+        if not self.house.word_stays:
+            self.say_word()
         if self._keep_then:
             self.house.keep(self)
 
     def _show_answer(self) -> None:
         house, lines = self.house, list[Styled]()
         if self.answer is not None:
-            lines = answer_lines(self.check, self.answer, house.dress, house.site, self._width)
+            if self.has_class("-picture"):
+                lines = self._picture_lines()
+            else:
+                lines = answer_lines(self.check, self.answer, house.dress, house.site, self._width)
         self.query_one("#findings", Lines).show(lines)
+
+    def _picture_lines(self) -> list[Styled]:
+        """Draw what the helper sent; the field being typed in and three lines of the legend stay in sight."""
+        if self._picture is None:
+            return [("There is nothing to draw for these readings. Ctrl+G shows the numbers.", MUTED)]
+        house = self.house
+        height = max(8, self.size.height - 4)
+        drawing = draw(
+            Picture.from_plain(self._picture), self._width + 1, height, house.dress, house.site, ascii_alone=is_ascii()
+        )
+        return [(line, "") for line in drawing.lines()]
+
+    def turn_picture(self) -> None:
+        """Show the picture in place of form and numbers, or the other way round."""
+        if self.check.name not in DRAWN:
+            self.house.say("This sheet has no picture.")
+            return
+        self.toggle_class("-picture")
+        self.scroll_home(animate=False)
+        self._ask()
 
     def say_word(self) -> None:
         """Show under the sheet what stands in the way, or what belongs in the field."""
