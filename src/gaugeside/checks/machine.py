@@ -115,7 +115,7 @@ def run(conditions: Conditions, readings: Readings) -> Outcome:
     circuit = trace(conditions, typed, outcome)
     flows = balance(conditions, circuit, typed, readings.drive, outcome)
     if below is not None and readings.heat_absorbed is None:
-        flows.sources["heat_absorbed"] = "what the stage below rejects"
+        flows.sources["heat_absorbed"] = "rejected by the stage below"
     _report_circuit(conditions, circuit, outcome)
     _report_flows(flows, circuit, outcome)
     if below is not None:
@@ -149,7 +149,7 @@ def _report_both(below: Mapping[str, float], flows: Flows, outcome: Outcome) -> 
         return
     found.overall_power = work + below["power"]
     found.overall_cop_refrigerator = below["heat_absorbed"] / found.overall_power
-    outcome.remark("overall_cop_refrigerator", "heat absorbed below over the power of both")
+    outcome.remark("overall_cop_refrigerator", "of the lower heat absorbed")
 
 
 def _report_circuit(conditions: Conditions, circuit: Circuit, outcome: Outcome) -> None:
@@ -157,7 +157,7 @@ def _report_circuit(conditions: Conditions, circuit: Circuit, outcome: Outcome) 
     found.superheat, found.subcooling = circuit.superheat, circuit.subcooling
     found.isentropic_efficiency = circuit.isentropic_efficiency(conditions.fluid)
     if circuit.superheat is not None:
-        outcome.remark("superheat", "at the compressor, above the dew point")
+        outcome.remark("superheat", "at the compressor")
     if found.isentropic_efficiency is not None and not 0.2 <= found.isentropic_efficiency <= 1:
         outcome.remark("isentropic_efficiency", "not plausible: a pressure or a temperature is off")
     suction, discharge = circuit.pressures.get("suction"), circuit.pressures.get("discharge")
@@ -194,14 +194,14 @@ def _report_flows(flows: Flows, circuit: Circuit, outcome: Outcome) -> None:
     for name, words in flows.sources.items():
         outcome.remark(name, words)
     work = flows.electrical if flows.electrical is not None else flows.power
-    which = "electrical power" if flows.electrical is not None else "power to the refrigerant"
+    which = "electrical power" if flows.electrical is not None else "power to refrigerant"
     if work:
         if flows.absorbed is not None:
             found.cop_refrigerator = flows.absorbed / work
-            outcome.remark("cop_refrigerator", f"heat absorbed over {which}")
+            outcome.remark("cop_refrigerator", f"over {which}")
         if flows.rejected is not None:
             found.cop_heat_pump = flows.rejected / work
-            outcome.remark("cop_heat_pump", f"heat rejected over {which}")
+            outcome.remark("cop_heat_pump", f"over {which}")
     if flows.closure is not None:
         found.heat_balance_closure = flows.closure
         outcome.remark("heat_balance_closure", flows.closure_words)
@@ -221,7 +221,7 @@ def _report_limit(flows: Flows, circuit: Circuit, typed: dict[str, float], outco
         outcome.note("The heat sink is not warmer than the cooled space: heat flows by itself, no limit applies.")
         return
     found.reversible_cop_refrigerator = space / (sink - space)
-    outcome.remark("reversible_cop_refrigerator", "between cooled space and heat sink")
+    outcome.remark("reversible_cop_refrigerator", "cooled space to heat sink")
     if flows.absorbed is not None:
         found.minimum_power = flows.absorbed / found.reversible_cop_refrigerator
     if found.cop_refrigerator is not None:

@@ -80,11 +80,11 @@ def _power(flows: Flows, typed: Mapping[str, float], drive: str | None, outcome:
         )
     if drive == "hermetic":
         flows.power = electrical
-        flows.sources["power_to_refrigerant"] = "electrical power whole, hermetic motor"
+        flows.sources["power_to_refrigerant"] = "all of the electrical power"
         outcome.note("Hermetic: the motor's electrical power enters the refrigerant whole.")
     elif efficiency is not None:
         flows.power = electrical * efficiency
-        flows.sources["power_to_refrigerant"] = "electrical power times motor efficiency"
+        flows.sources["power_to_refrigerant"] = "electrical x motor efficiency"
     else:
         outcome.note("Open drive without a motor efficiency: how much power reaches the refrigerant is not known.")
     if flows.power is not None and flows.shell_loss >= flows.power:
@@ -147,11 +147,11 @@ def _by_polynomial(
 
 _WORDS = {
     "flow meter": "as typed",
-    "heat absorbed": "from the heat absorbed that is typed",
-    "heat rejected": "from the heat rejected that is typed",
-    "power": "from the power and the enthalpy rise of the compressor",
-    "displacement": "from displacement and volumetric efficiency",
-    "polynomial": "from the machine's polynomial",
+    "heat absorbed": "from the heat absorbed",
+    "heat rejected": "from the heat rejected",
+    "power": "from power and enthalpy rise",
+    "displacement": "from the displacement",
+    "polynomial": "from the polynomial",
 }
 
 
@@ -171,17 +171,17 @@ def _from_flow(flows: Flows, circuit: Circuit, typed: Mapping[str, float]) -> No
         difference = circuit.refrigerating_effect if name == "absorbed" else circuit.heating_effect
         if getattr(flows, name) is None and flows.mass_flow is not None and difference is not None:
             setattr(flows, name, flows.mass_flow * difference)
-            flows.sources[finding] = "mass flow times enthalpy difference"
+            flows.sources[finding] = "flow times enthalpy change"
     if flows.power is None and flows.mass_flow is not None and circuit.work is not None:
         flows.power = flows.mass_flow * circuit.work + flows.shell_loss
-        flows.sources["power_to_refrigerant"] = "mass flow times enthalpy difference"
+        flows.sources["power_to_refrigerant"] = "flow times enthalpy change"
 
 
 def _from_pairs(flows: Flows, typed: Mapping[str, float], circuit: Circuit, outcome: Outcome) -> None:
     """Fill the last of Q_H = Q_L + W from the other two, less what the shell loses, plus what the line gains."""
     gain = (flows.mass_flow or 0.0) * circuit.line_gain
     extra = gain - flows.shell_loss
-    words = "balance of the whole machine, Q_H = Q_L + W"
+    words = "balance, Q_H = Q_L + W"
     before = (flows.absorbed, flows.rejected, flows.power)
     if flows.absorbed is None and flows.rejected is not None and flows.power is not None:
         flows.absorbed = flows.rejected - flows.power - extra
@@ -202,10 +202,10 @@ def _electrical(flows: Flows, typed: Mapping[str, float], drive: str | None) -> 
     if flows.electrical is None and flows.power is not None:
         if drive == "hermetic":
             flows.electrical = flows.power
-            flows.sources["electrical_power"] = "hermetic: the power to the refrigerant"
+            flows.sources["electrical_power"] = "as hermetic, the same power"
         elif drive == "open" and "motor_efficiency" in typed:
             flows.electrical = flows.power / typed["motor_efficiency"]
-            flows.sources["electrical_power"] = "power to the refrigerant over motor efficiency"
+            flows.sources["electrical_power"] = "power over motor efficiency"
     elif flows.electrical is not None:
         flows.sources["electrical_power"] = "as typed"
 
@@ -221,12 +221,12 @@ def _closure(flows: Flows, circuit: Circuit, typed: Mapping[str, float], outcome
     independent = {name for name in ("heat_absorbed", "heat_rejected", "electrical_power") if name in typed}
     if flows.power is None or flows.absorbed is None or flows.rejected is None or not flows.rejected:
         return
-    from_balance = [name for name, words in flows.sources.items() if words.startswith("balance of the whole")]
+    from_balance = [name for name, words in flows.sources.items() if words.startswith("balance")]
     if from_balance or not independent or (len(flows.estimates) < 2 and len(independent) < 3):
         return
     gain = (flows.mass_flow or 0.0) * circuit.line_gain
     flows.closure = (flows.absorbed + gain + flows.power - flows.shell_loss - flows.rejected) / flows.rejected
-    flows.closure_words = "heat absorbed and power against heat rejected"
+    flows.closure_words = "Q_L and W against Q_H"
     if abs(flows.closure) > 0.1:
         outcome.note("The heat balance does not close within 10 %: a reading is wrong (limit: common practice).")
 

@@ -64,6 +64,8 @@ def takes(line: ReadingLine, units: FieldUnits, dress: Dress) -> str:
     """Return, for an empty field, the units a bare number is taken in."""
     if line.entry is Entry.CHOICE:
         return " / ".join(line.choices)
+    if line.entry is Entry.QUANTITY and line.kind is Kind.FRACTION:
+        return "0 to 1, or %"
     if line.entry is Entry.QUANTITY:
         return default_unit(line.kind, units, dress).label
     if line.entry is Entry.EITHER:

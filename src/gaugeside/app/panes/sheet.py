@@ -16,7 +16,7 @@ from textual.widgets import Input
 from gaugeside.app.charset import is_ascii
 from gaugeside.app.panes.answer_lines import answer_lines
 from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
-from gaugeside.app.widgets.lines import CAUTION, MUTED, RULE, Line, Lines, Styled
+from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, RULE, Line, Lines, Styled
 from gaugeside.checks.perform import request
 from gaugeside.checks.picture import DRAWN, Picture
 from gaugeside.checks.sheet import Answer, Check, Entry, ReadingLine
@@ -24,7 +24,7 @@ from gaugeside.checks.typed import TypedLine, first_choice, read_line, takes
 from gaugeside.drawing import draw
 from gaugeside.engine import Reply
 from gaugeside.errors import Refusal
-from gaugeside.keeping import with_linked_entries
+from gaugeside.keeping import headline, with_linked_entries
 
 if TYPE_CHECKING:
     from gaugeside.app.house import House
@@ -338,7 +338,16 @@ class SheetPane(VerticalScroll, can_focus=False):
         )
         # Where the field is filled and answered its help gives way to the word that stands under every answer.
         done = line is None or (self.answer is not None and self._lines[line.name].field.value.strip())
-        self.house.say("" if line is None or done else f"{line.label}: {line.help}", MUTED)
+        if line is not None and not done:
+            self.house.say(f"{line.label}: {line.help}", MUTED)
+        elif self.answer is not None and self._findings_out_of_sight():
+            self.house.say(headline(self.check, self.answer, self.house.dress, self.house.site), MAIN)
+        else:
+            self.house.say("", MUTED)
+
+    def _findings_out_of_sight(self) -> bool:
+        """Whether the form is so long that what it tells stands below the window."""
+        return self.query_one("#findings", Lines).virtual_region.y >= self.scroll_y + self.size.height > 0
 
     # Keeping
 
