@@ -56,7 +56,7 @@ class KeysInTurn(App[None]):
             self._wait_no_longer(self._turn)
 
     async def _hand_on(self) -> None:
-        if not self._held:
+        if not self._held or not self.screen_stack:
             return
         self._in_turn = True
         self._turn += 1
