@@ -245,6 +245,8 @@ def search(part: str) -> list[Refrigerant]:
     wanted = folded(part)
     if not wanted:
         return everything
+    if len(wanted) > LONGEST_NAME:
+        return []
     ranked = [(_rank(one, wanted), place, one) for place, one in enumerate(everything)]
     return [one for rank, _, one in sorted(ranked, key=lambda r: r[:2]) if rank < 9]
 
