@@ -405,7 +405,8 @@ def test_a_blend_no_model_exists_for_is_refused_when_opened(tmp_path: Path) -> N
 
 
 def fresh(code: str, **options: object) -> subprocess.CompletedProcess[str]:
-    environment = {k: v for k, v in os.environ.items() if not k.startswith("COOLPROP")}
+    # Without PYTHONUNBUFFERED, which would also switch off the buffers of C that this is about.
+    environment = {k: v for k, v in os.environ.items() if not k.startswith(("COOLPROP", "PYTHON"))}
     return subprocess.run(
         [sys.executable, "-c", code],
         capture_output=True,

@@ -3,9 +3,16 @@
 from __future__ import annotations
 
 import contextlib
+import ctypes
 import os
 from collections.abc import Iterator, Sequence
 from typing import Any
+
+
+def _flush_c_output() -> None:
+    """Empty the buffers of C, which hold a line back until the process ends when output goes to a pipe."""
+    with contextlib.suppress(OSError, AttributeError, TypeError):
+        ctypes.CDLL(None).fflush(None)
 
 
 @contextlib.contextmanager
@@ -21,10 +28,12 @@ def _standard_output_shut() -> Iterator[None]:
         yield
         return
     nowhere = os.open(os.devnull, os.O_WRONLY)
+    _flush_c_output()
     try:
         os.dup2(nowhere, 1)
         yield
     finally:
+        _flush_c_output()
         os.dup2(kept, 1)
         os.close(kept)
         os.close(nowhere)
