@@ -44,6 +44,8 @@ CHECKS = [
     ),
 ]  # fmt: skip
 
+SITE = {"site_pressure_from": "barometer", "site_pressure_text": "83 kPa", "bare_pressure": "absolute"}
+
 
 class Run:
     """One run of the command line: its status and what it wrote."""
@@ -323,13 +325,13 @@ def test_a_logbook_may_stand_elsewhere(run: Any, tmp_path: Path, isolated: Path)
 
 def test_remembered_settings_count_and_the_command_line_overrides_them(run: Any, isolated: Path) -> None:
     isolated.mkdir()
-    (isolated / "settings.json").write_text(
-        json.dumps({"site_pressure_from": "barometer", "site_pressure_text": "83 kPa", "bare_pressure": "absolute"})
-    )
+    (isolated / "settings.json").write_text(json.dumps({**SITE, "units": {"temperature": "°F"}}), encoding="utf-8")
     bare = run("convert", "2 bar", "--json").json
     assert bare["findings"]["absolute_pressure"]["value"] == 2e5
     assert bare["site"] == {"atmosphere": {"value": 83000.0, "unit": "Pa"}, "source": "barometer 83 kPa"}
     assert run("convert", "2 bar g", "--altitude", "0 m", "--json").json["site"]["atmosphere"]["value"] == 101325.0
+    assert run("convert", "300 K").out.startswith("300 K   temperature: 80.3 °F")
+    assert run("convert", "300 K", "--units", "si").out.startswith("300 K   temperature: 26.9 °C")
 
 
 def test_damaged_settings_are_said(run: Any, isolated: Path) -> None:

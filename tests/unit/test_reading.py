@@ -17,6 +17,7 @@ from gaugeside.quantities import (
     spellings,
     understood,
     unit,
+    units,
 )
 from reference.tables import unit_factors
 from unit.reading_tools import ABSOLUTE, ATMOSPHERE, IP, READ_KINDS, SI, refused, understand
@@ -285,13 +286,19 @@ def test_a_difference_is_read_in_every_spelling_of_a_temperature() -> None:
 
 
 @pytest.mark.parametrize("kind", READ_KINDS)
-def test_no_spelling_means_two_units(kind: Kind) -> None:
-    """Every spelling that a label, or a label with its sense, folds to leads to that unit and no other."""
+def test_every_spelling_can_be_typed_and_every_label_leads_to_its_unit(kind: Kind) -> None:
     for label in labels(kind):
         assert unit(kind, label).label == label
     for spelling in spellings(kind):
         # A key that `fold` would change could never be typed.
         assert fold(spelling) == spelling
+
+
+def test_a_spelling_of_two_units_cannot_enter_the_list(monkeypatch: pytest.MonkeyPatch) -> None:
+    lengths = (*units._OTHERS[Kind.LENGTH], ("fathom", "fathom", 2, "m"))
+    monkeypatch.setitem(units._OTHERS, Kind.LENGTH, lengths)
+    with pytest.raises(ValueError, match="'m' would name both m and fathom"):
+        spellings.__wrapped__(Kind.LENGTH)
 
 
 @pytest.mark.parametrize("kind", [Kind.PRESSURE, Kind.ABSOLUTE_PRESSURE])

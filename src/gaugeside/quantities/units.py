@@ -248,17 +248,26 @@ def fold(text: str) -> str:
     return "".join(c for c in text if c not in dropped).casefold()
 
 
-def _with_senses(rows: tuple[tuple[str, str, int, str], ...]) -> dict[str, Unit]:
+def _enter(found: dict[str, Unit], spelling: str, unit: Unit) -> None:
+    """Enter a spelling; ValueError when it would name a second unit, so that the list cannot become ambiguous."""
+    if found.setdefault(spelling, unit) != unit:
+        raise ValueError(f"{spelling!r} would name both {found[spelling].label} and {unit.label}")
+
+
+def _pressures() -> dict[str, Unit]:
     found: dict[str, Unit] = {}
-    for label, definition, decimals, more in rows:
+    for label, definition, decimals, more in _PRESSURES:
         spellings = {fold(label), *more.split()}
         for spelling in spellings:
-            found[spelling] = Unit(label, definition, decimals)
+            _enter(found, spelling, Unit(label, definition, decimals))
         for sense, suffixes in _SUFFIXES.items():
             unit = Unit(f"{label} {_SENSE_LABEL[sense]}", definition, decimals, sense)
             for spelling in spellings:
                 for suffix in suffixes:
-                    found[spelling + suffix] = unit
+                    _enter(found, spelling + suffix, unit)
+    label, definition, decimals, more = _MICRON
+    for spelling in (label, *more.split(), "micronabs", "micronsabs"):
+        _enter(found, spelling, Unit(label, definition, decimals, Sense.ABSOLUTE))
     return found
 
 
@@ -266,17 +275,12 @@ def _with_senses(rows: tuple[tuple[str, str, int, str], ...]) -> dict[str, Unit]
 def spellings(kind: Kind) -> dict[str, Unit]:
     """Return every accepted spelling (as `fold` leaves it) of the units of `kind`, with its unit."""
     if kind in (Kind.PRESSURE, Kind.ABSOLUTE_PRESSURE):
-        found = _with_senses(_PRESSURES)
-        label, definition, decimals, more = _MICRON
-        micron = Unit(label, definition, decimals, Sense.ABSOLUTE)
-        found.update(dict.fromkeys((label, *more.split(), "micronabs", "micronsabs"), micron))
-        return found
-    return {
-        spelling: Unit(label, definition, decimals)
-        for label, definition, decimals, more in _OTHERS[kind]
-        for spelling in {fold(label), *more.split()}
-        if spelling
-    }
+        return _pressures()
+    found: dict[str, Unit] = {}
+    for label, definition, decimals, more in _OTHERS[kind]:
+        for spelling in filter(None, {fold(label), *more.split()}):
+            _enter(found, spelling, Unit(label, definition, decimals))
+    return found
 
 
 @cache
