@@ -15,6 +15,7 @@ import time
 
 from gaugeside.errors import Refusal
 from gaugeside.refrigerants import Fluid, all_refrigerants, open_fluid
+from gaugeside.refrigerants.limits import MARGIN
 
 STEP = 0.5
 COLDEST = 213.15
@@ -24,7 +25,7 @@ LEAST_PRESSURE = 1000.0
 def temperatures(fluid: Fluid) -> list[float]:
     """The temperatures of the sweep [K]."""
     start = max(COLDEST, fluid.minimum_temperature + (0.0 if fluid.refrigerant.is_blend else 1.0))
-    end = fluid.critical_temperature - fluid.refrigerant.margin
+    end = fluid.critical_temperature - MARGIN
     return [start + STEP * i for i in range(int((end - start) / STEP) + 1)] if end > start else []
 
 

@@ -8,6 +8,7 @@ import pytest
 
 from gaugeside.errors import OutOfRange
 from gaugeside.refrigerants import Fluid, Refrigerant, all_refrigerants, find, library, open_fluid
+from gaugeside.refrigerants.limits import MARGIN
 from gaugeside.refrigerants.solvers import BUBBLE, DEW
 
 MODELLED = [one for one in all_refrigerants() if one.modelled]
@@ -25,7 +26,7 @@ def lowest(fluid: Fluid) -> float:
 
 def highest(fluid: Fluid) -> float:
     """The last temperature at which saturation is offered [K]."""
-    return fluid.critical_temperature - fluid.refrigerant.margin
+    return fluid.critical_temperature - MARGIN
 
 
 def spread(fluid: Fluid, count: int) -> list[float]:

@@ -12,6 +12,7 @@ from hypothesis import strategies as st
 
 from gaugeside.errors import OutOfRange, Refusal
 from gaugeside.refrigerants import Datum, Fluid, Refrigerant, Region, State, all_refrigerants, find, library, open_fluid
+from gaugeside.refrigerants.limits import MARGIN
 
 ZERO = 273.15
 MODELLED = [one for one in all_refrigerants() if one.modelled and one.critical_temperature > 223.15]
@@ -34,7 +35,7 @@ COMMON = [
 def random_states(fluid: Fluid, dice: random.Random, count: int) -> list[State]:
     """States of every kind, by pressure and temperature, superheat, subcooling and vapour fraction."""
     low = max(218.15, fluid.minimum_temperature + 16.0)
-    high = min(fluid.critical_temperature - fluid.refrigerant.margin - 3.0, fluid.maximum_temperature - 10.0)
+    high = min(fluid.critical_temperature - MARGIN - 3.0, fluid.maximum_temperature - 10.0)
     states = []
     for i in range(count):
         temperature = dice.uniform(low, high) if high > low else 0.5 * (low + fluid.critical_temperature)

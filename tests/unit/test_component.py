@@ -91,7 +91,7 @@ def test_datum_moves_enthalpies_and_not_the_energy(kind: str) -> None:
 def test_expansion_keeps_the_enthalpy(refrigerant: str) -> None:
     found = component("expansion", refrigerant, inlet="20 bar g, SC 4 K", outlet="6 bar g")
     assert number(found, "outlet_enthalpy") == pytest.approx(number(found, "inlet_enthalpy"), rel=1e-9)
-    assert found.findings["outlet_region"] == "saturated, liquid and vapour"
+    assert found.findings["outlet_region"] == "saturated, two-phase"
     # By the lever rule between the saturation pane's own enthalpies, for what has one temperature at a pressure.
     fraction = number(found, "outlet_vapour_fraction")
     assert 0 < fraction < 1
@@ -158,11 +158,11 @@ def test_shell_loss_is_added_to_the_power_and_hides_the_efficiency() -> None:
     ("refrigerant", "state", "region"),
     [
         ("R-134a", "9 bar g, SC 4 K", "subcooled liquid"), ("R-134a", "9 bar g, sat liquid", "saturated liquid"),
-        ("R-134a", "9 bar g, x 0.5", "saturated, liquid and vapour"),
+        ("R-134a", "9 bar g, x 0.5", "saturated, two-phase"),
         ("R-134a", "9 bar g, sat vapour", "saturated vapour"),
         ("R-134a", "9 bar g, 68 C", "superheated vapour"), ("R-744", "90 bar g, 40 C", "supercritical fluid"),
-        ("R-744", "90 bar g, 20 C", "liquid above the critical pressure"),
-        ("R-454C", "9 bar g, 26 C", "saturated, liquid and vapour"),
+        ("R-744", "90 bar g, 20 C", "liquid above critical"),
+        ("R-454C", "9 bar g, 26 C", "saturated, two-phase"),
     ],
 )  # fmt: skip
 def test_region_of_a_state_is_said(refrigerant: str, state: str, region: str) -> None:

@@ -24,8 +24,7 @@ class Refrigerant:
     nature: "pure", "azeotrope" or "zeotrope"; composition: component designations and mass
     fractions [kg/kg]; safety_class: ASHRAE 34 / ISO 817, empty where unknown; gwp: over 100 years, None
     where unknown; critical_temperature [K], critical_pressure [Pa] and minimum_temperature [K] of the
-    model, 0 where it has none; model_uncertainty: of a saturation temperature [K]; own: from the user's file;
-    margin: how near the critical temperature saturation is offered [K].
+    model, 0 where it has none; model_uncertainty: of a saturation temperature [K]; own: from the user's file.
     """
 
     designation: str
@@ -44,7 +43,6 @@ class Refrigerant:
     model_uncertainty: float
     model_uncertainty_reason: str
     own: bool = False
-    margin: float = 1.0
 
     @property
     def flammable(self) -> bool | None:
@@ -169,7 +167,6 @@ def _entry(designation: str, table: dict[str, Any], data: dict[str, Any], pure: 
         reason=table.get("reason", ""),
         model_uncertainty=float(model["uncertainty"]),
         model_uncertainty_reason=model["reason"],
-        margin=float(table.get("margin", 1.0)),
     )
 
 

@@ -6,7 +6,7 @@ from collections.abc import Callable
 from typing import TYPE_CHECKING
 
 from ..errors import OutOfRange
-from .limits import celsius
+from .limits import MARGIN, celsius
 from .states import Datum, State
 
 if TYPE_CHECKING:
@@ -41,7 +41,7 @@ def shifts(fluid: Fluid, datum: Datum) -> tuple[str, float, float]:
 def _iir(fluid: Fluid) -> tuple[str, State]:
     """The IIR datum, moved to where there is liquid for the few fluids that have none at 0 °C."""
     name = fluid.refrigerant.designation
-    if fluid.critical_temperature - fluid.refrigerant.margin < ICE_POINT:
+    if fluid.critical_temperature - MARGIN < ICE_POINT:
         note = f"{IIR_VALUES}, saturated liquid at 101.325 kPa: {name} has none at 0 °C"
         return note, fluid.bubble_at_pressure(NORMAL_PRESSURE)
     lowest = fluid.minimum_temperature

@@ -12,7 +12,7 @@ from .catalogue import Refrigerant
 from .curves import Curve
 from .datum import shifts
 from .dome import Dome, Given, Split
-from .limits import Limits, bar, celsius, check_fraction
+from .limits import MARGIN, Limits, bar, celsius, check_fraction
 from .model import Model
 from .phases import NoRoot, Phase
 from .single import FINEST, Found, OnePhase, Outside
@@ -110,7 +110,7 @@ class Fluid:
             point = curve.at_pressure(pressure)
         except NoRoot:
             self._no_number(bar(pressure))
-        if point.temperature > self.critical_temperature - self._limits.margin + 1e-7:
+        if point.temperature > self.critical_temperature - MARGIN + 1e-7:
             self._limits.too_near(bar(pressure))
         return point
 

@@ -22,12 +22,13 @@ def bar(pressure: float) -> str:
     return f"{value:.2f} bar abs" if value >= 1.0 else f"{value:.3g} bar abs"
 
 
+# Nearer the critical temperature than this [K] the curves bend so sharply that a reading fixes nothing.
+MARGIN = 1.0
+
+
 @dataclass(frozen=True, slots=True)
 class Limits:
-    """The range of one refrigerant; temperatures [K], pressures absolute [Pa].
-
-    margin: nearer the critical temperature than this [K] the curves bend so sharply that a reading fixes nothing.
-    """
+    """The range of one refrigerant; temperatures [K], pressures absolute [Pa]."""
 
     designation: str
     critical_temperature: float
@@ -35,7 +36,6 @@ class Limits:
     minimum_temperature: float
     maximum_temperature: float
     maximum_pressure: float
-    margin: float
     pure: bool
 
     @property
@@ -55,7 +55,7 @@ class Limits:
         raise OutOfRange(
             f"{what} is too near the critical point of {self.designation}, {self.critical_point}: "
             f"there liquid and vapour become alike and no reliable number can be given.",
-            f"Stay at least {self.margin:g} K away from it.",
+            f"Stay at least {MARGIN:g} K away from it.",
         )
 
     def too_cold(self, what: str) -> NoReturn:
@@ -110,7 +110,7 @@ class Limits:
             self.too_cold(celsius(temperature))
         if temperature > self.critical_temperature:
             self.above_critical(f"{celsius(temperature)} is above it")
-        if temperature > self.critical_temperature - self.margin + 1e-9:
+        if temperature > self.critical_temperature - MARGIN + 1e-9:
             self.too_near(celsius(temperature))
 
     def check_saturation_pressure(self, pressure: float) -> None:

@@ -99,7 +99,6 @@ class Model:
             minimum_temperature=floor,
             maximum_temperature=min(hottest, HOTTEST_BLEND) if self.blend else hottest,
             maximum_pressure=highest,
-            margin=refrigerant.margin,
             pure=not self.blend,
         )
         top = critical_temperature - (BLEND_END if self.blend else PURE_END)

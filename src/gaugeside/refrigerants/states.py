@@ -11,11 +11,11 @@ class Region(StrEnum):
 
     SUBCOOLED = "subcooled liquid"
     SATURATED_LIQUID = "saturated liquid"
-    TWO_PHASE = "saturated, liquid and vapour"
+    TWO_PHASE = "saturated, two-phase"
     SATURATED_VAPOUR = "saturated vapour"
     SUPERHEATED = "superheated vapour"
     SUPERCRITICAL = "supercritical fluid"
-    LIQUID_ABOVE_CRITICAL_PRESSURE = "liquid above the critical pressure"
+    LIQUID_ABOVE_CRITICAL_PRESSURE = "liquid above critical"
 
 
 class Datum(StrEnum):
