@@ -127,6 +127,7 @@ def _parser() -> argparse.ArgumentParser:
     refrigerants.add_argument("part", nargs="?", default="", help="part of a designation, name or component")
     refrigerants.add_argument("--json", action="store_true")
     refrigerants.set_defaults(run=_refrigerants)
+    _add_table(commands)
     _add_logbook(commands)
     return parser
 
@@ -171,6 +172,19 @@ def _add_common(command: argparse.ArgumentParser) -> None:
     command.add_argument("--logbook", type=Path, metavar="PATH", default=argparse.SUPPRESS, help=argparse.SUPPRESS)
 
 
+def _add_table(commands: Any) -> None:
+    command = commands.add_parser("table", help="the pocket table over a range of temperatures or pressures")
+    command.add_argument("refrigerant", help="designation or common name: R-134a, 134a, CO2")
+    command.add_argument("--from", dest="from_", required=True, metavar="READING", help="-50 C or 0 bar g")
+    command.add_argument("--to", dest="to_", required=True, metavar="READING", help="65 C or 20 bar g")
+    command.add_argument("--step", metavar="READING", help="0.5 K or 0.5 bar; 1 of the reader's unit when left out")
+    command.add_argument("--pressure-unit", metavar="UNIT", help="bar, psi, kPa ..., with g or abs where wanted")
+    command.add_argument("--sense", choices=("gauge", "absolute"), help="how pressures are written")
+    command.add_argument("--csv", action="store_true", help="comma-separated values")
+    _add_common(command)
+    command.set_defaults(run=_table)
+
+
 def _add_logbook(commands: Any) -> None:
     command = commands.add_parser("logbook", help="what was kept")
     actions = command.add_subparsers(title="actions", metavar="ACTION", required=True)
@@ -213,6 +227,12 @@ def _convert(arguments: argparse.Namespace) -> int:
     from gaugeside.oneshot import convert
 
     return convert(arguments, _printer(arguments))
+
+
+def _table(arguments: argparse.Namespace) -> int:
+    from gaugeside.pocket import print_table
+
+    return print_table(arguments, _print)
 
 
 def _refrigerants(arguments: argparse.Namespace) -> int:

@@ -9,7 +9,7 @@ from dataclasses import dataclass, field
 from gaugeside.errors import Refusal
 from gaugeside.quantities.convert import from_si
 from gaugeside.quantities.site import Site
-from gaugeside.quantities.units import Kind, Sense, Unit, labels, unit
+from gaugeside.quantities.units import Kind, Sense, Unit, fold, labels, spellings, unit
 
 _SI: dict[Kind, str] = {
     Kind.PRESSURE: "bar",
@@ -89,12 +89,10 @@ class Dress:
 
 def checked_single(kind: Kind, label: str) -> str:
     """Return the label of the single unit a person asks for; Refusal when `kind` does not have it."""
-    choices = bare_labels(kind)
-    wanted = label.casefold().replace(" ", "")
-    for choice in choices:
-        if choice.casefold() == wanted or choice.casefold().lstrip("°") == wanted:
-            return choice
-    raise Refusal(f"{label!r} is not a unit of {kind.value} here.", f"Choose one of {', '.join(choices)}.")
+    found = spellings(kind).get(fold(label))
+    if found is not None and found.sense is None:
+        return found.label
+    raise Refusal(f"{label!r} is not a unit of {kind.value} here.", f"Choose one of {', '.join(bare_labels(kind))}.")
 
 
 def bare_labels(kind: Kind) -> tuple[str, ...]:
@@ -117,12 +115,15 @@ def in_unit(value: float, to: Unit, kind: Kind, site: Site) -> float:
     return from_si(value, to, kind)
 
 
-def number(value: float, decimals: int, *, significant: int = 3) -> str:
-    """Return `value` with fixed decimals, or with three significant digits where those would hide it."""
+def number(value: float, decimals: int, *, fixed: bool = False) -> str:
+    """Return `value` with fixed decimals, or with three significant digits where those would hide it.
+
+    fixed: keep to the decimals, as in the columns of a table.
+    """
     if not math.isfinite(value):
         return "-"
-    if value != 0 and abs(value) < 10.0 ** (1 - decimals) and decimals > 1:
-        text = f"{value:.{min(significant - 1 - math.floor(math.log10(abs(value))), decimals + 4)}f}"
+    if not fixed and value != 0 and abs(value) < 10.0 ** (1 - decimals) and decimals > 1:
+        text = f"{value:.{min(2 - math.floor(math.log10(abs(value))), decimals + 4)}f}"
     else:
         text = f"{value:.{decimals}f}"
     # Nothing is left of it: zero, and without a sign.
@@ -131,7 +132,9 @@ def number(value: float, decimals: int, *, significant: int = 3) -> str:
 
 def write(value: float, to: Unit, kind: Kind, site: Site) -> str:
     """Return the SI `value` as text in `to`, unit included."""
-    return f"{number(in_unit(value, to, kind, site), to.decimals)} {to.label}".strip()
+    # A gauge pressure near zero is the small difference of two larger ones: more digits would be invented.
+    fixed = to.sense in (Sense.GAUGE, Sense.VACUUM)
+    return f"{number(in_unit(value, to, kind, site), to.decimals, fixed=fixed)} {to.label}".strip()
 
 
 def shown(value: float, kind: Kind, dress: Dress, site: Site) -> str:
