@@ -164,7 +164,7 @@ def _state(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site: 
 
 
 def _choice(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site: Site) -> TypedLine:
-    wanted = guard(text).casefold()
+    wanted = "-".join(guard(text).casefold().split())
     found = [choice for choice in line.choices if choice.startswith(wanted)]
     if len(found) != 1:
         raise Refusal(

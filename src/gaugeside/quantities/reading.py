@@ -196,7 +196,7 @@ def _look_up(unit_text: str, kind: Kind, text: str) -> Unit:
     others = [other for other in Kind if other not in (kind, Kind.WORDS, Kind.RATIO) and folded in spellings(other)]
     if others:
         raise Refusal(
-            f"{quoted(text)} is a {others[0].value}; this field takes a {kind.value}.",
+            f"{quoted(text)} is a {others[0].value}; this field takes {_article(kind)} {kind.value}.",
             f"Write for example {example(kind)}.",
         )
     near = difflib.get_close_matches(folded, spellings(kind), n=1, cutoff=0.5)
@@ -205,6 +205,10 @@ def _look_up(unit_text: str, kind: Kind, text: str) -> Unit:
         f"{quoted(unit_text)} is not a unit of {kind.value} known here.",
         f"{offer}Write for example {example(kind)}.",
     )
+
+
+def _article(kind: Kind) -> str:
+    return "an" if kind.value[0] in "aeiou" else "a"
 
 
 def nearest_kind(unit_text: str, kinds: Sequence[Kind]) -> Kind:
