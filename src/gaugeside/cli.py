@@ -44,10 +44,24 @@ def main(argv: Sequence[str] | None = None) -> int:
         return code
     except BrokenPipeError:
         # The reader went away, as `| head` does; nothing is left to say to it.
-        os.dup2(os.open(os.devnull, os.O_WRONLY), 1)
+        _shut_output()
         return 0
+    except OSError as fault:
+        from gaugeside.settings import reason
+
+        if fault.filename is not None:
+            raise
+        # Without a file's name it is the output itself that takes no more.
+        _shut_output()
+        _print(f"The answer cannot be written: {reason(fault)}.", sys.stderr)
+        return 1
     except KeyboardInterrupt:
         return 130
+
+
+def _shut_output() -> None:
+    """Let what is still buffered for standard output go nowhere, so that the interpreter's end stays quiet."""
+    os.dup2(os.open(os.devnull, os.O_WRONLY), 1)
 
 
 def _run(words: Sequence[str]) -> int:

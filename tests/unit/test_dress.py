@@ -63,6 +63,8 @@ def test_a_single_unit_that_is_unknown_is_left_to_the_system() -> None:
 def test_both_forms_of_a_number() -> None:
     assert gauge_and_absolute(361325.0, Dress(), SEA_LEVEL) == ("2.60 bar g", "3.61 bar abs")
     assert gauge_and_absolute(361325.0, Dress(), Site(83_000.0, "")) == ("2.78 bar g", "3.61 bar abs")
+    # 500 micron in inch-pound dress, a deep vacuum in a large unit.
+    assert gauge_and_absolute(66.66, Dress("ip"), SEA_LEVEL) == ("-14.7 psi g", "0.00967 psi abs")
     assert both_differences(5.0, Dress(), SEA_LEVEL) == ("5.0 K", "9.0 °F")
     assert both_differences(5.0, Dress("ip"), SEA_LEVEL) == ("9.0 °F", "5.0 K")
     assert shown(83_000.0, Kind.ABSOLUTE_PRESSURE, Dress(), SEA_LEVEL) == "83.0 kPa abs"

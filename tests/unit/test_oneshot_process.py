@@ -86,6 +86,17 @@ def test_a_reader_that_went_away_is_no_fault(tmp_path: Path, words: list[str]) -
     assert (done.returncode, done.stderr) == (0, b"")
 
 
+@pytest.mark.skipif(not Path("/dev/full").exists(), reason="only some systems have a device that is always full")
+def test_an_output_that_takes_no_more_is_said_in_a_sentence(tmp_path: Path) -> None:
+    for words in (["convert", "12 bar"], ["refrigerants"], ["--help"]):
+        with open("/dev/full", "wb") as full:
+            done = subprocess.run(
+                [*COMMAND, *words], env=environment(tmp_path), stdout=full, stderr=subprocess.PIPE, check=False
+            )
+        assert done.returncode == 1
+        assert done.stderr == b"The answer cannot be written: no space left on device.\n"
+
+
 def test_bytes_that_are_no_text_are_refused(tmp_path: Path) -> None:
     for words in (["convert", b"5 \xff bar"], ["saturation", b"R-\xff", "5 C"], [b"--\xff"], ["refrigerants", b"\xff"]):
         done = subprocess.run(

@@ -132,9 +132,13 @@ def number(value: float, decimals: int, *, fixed: bool = False) -> str:
 
 def write(value: float, to: Unit, kind: Kind, site: Site) -> str:
     """Return the SI `value` as text in `to`, unit included."""
+    count, decimals = in_unit(value, to, kind, site), to.decimals
+    if to.sense is Sense.ABSOLUTE and count < 1:
+        # A deep vacuum in a large unit is still a pressure, not zero.
+        decimals = max(decimals, 2)
     # A gauge pressure near zero is the small difference of two larger ones: more digits would be invented.
     fixed = to.sense in (Sense.GAUGE, Sense.VACUUM)
-    return f"{number(in_unit(value, to, kind, site), to.decimals, fixed=fixed)} {to.label}".strip()
+    return f"{number(count, decimals, fixed=fixed)} {to.label}".strip()
 
 
 def shown(value: float, kind: Kind, dress: Dress, site: Site) -> str:
