@@ -164,3 +164,42 @@ discharge_range = [90, 150]
     )
     # lb/h to kg/s: 1 lb = 0.45359237 kg (NIST SP 811).
     assert found["mass_flow"] == pytest.approx(459.4479 * 0.45359237 / 3600, rel=2e-6)
+
+
+def test_polynomial_outside_its_range_and_with_warm_suction_gas():
+    machine = CompressorMap(
+        tag="rack 2",
+        refrigerant="R-134a",
+        source="",
+        temperature="°F",
+        mass_flow_unit="lb/h",
+        power_unit="W",
+        mass_flow=_MASS_FLOW,
+        suction_range=(0.0, 40.0),
+        rated_superheat=11.0,
+    )
+    dew = {}
+    for name, fahrenheit in (("suction", 45), ("discharge", 130)):
+        kelvin = (fahrenheit + 459.67) * 5 / 9
+        dew[name] = findings("saturation", "R-134a", reading={"temperature": kelvin})
+    asked = request(
+        "machine",
+        "R-134a",
+        {
+            "suction_pressure": dew["suction"]["dew_pressure"],
+            "suction_temperature": dew["suction"]["dew_temperature"] + 22.0,
+            "discharge_pressure": dew["discharge"]["dew_pressure"],
+        },
+        site=SEA_LEVEL,
+        datum="iir",
+        dress=Dress(),
+        compressor=machine,
+    )
+    answered = perform(asked)["answer"]
+    # 45 °F lies above the 40 °F at which the data end.
+    assert any("outside the range of the polynomial" in text for text, _ in answered["cautions"])
+    # Dabiri and Rice (1981): m = m_rated (1 + 0.75 (v_rated / v - 1)); 22 K of superheat against 11 K makes the gas
+    # about 4.6 % lighter as a perfect gas at 280 K would (291.4/302.4 - 1 = -3.6 %, more for a real one).
+    rated = 459.4479 * 0.45359237 / 3600
+    lighter = answered["findings"]["mass_flow"] / rated - 1
+    assert -0.75 * 0.06 < lighter < -0.75 * 0.036
