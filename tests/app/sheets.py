@@ -21,7 +21,7 @@ from gaugeside.app.widgets.lines import Line, Lines
 from gaugeside.settings import Settings, load_draft, load_settings, places
 
 # Waits for a slow machine; nothing is measured with it.
-PATIENCE = 20.0
+PATIENCE = 5.0
 
 # Every superheat is 5 K, and the note tells what was asked; only the screen is under test.
 CANNED = r"""
@@ -61,7 +61,7 @@ class Sheet:
         arrived = asyncio.Event()
         self.app.call_later(arrived.set)
         await arrived.wait()
-        await self.wait(lambda: self.app.is_idle, "the keys to be taken")
+        await self.wait(lambda: self.app.is_idle or not self.app.is_running, "the keys to be taken")
 
     async def type(self, text: str) -> None:
         """Type text into whatever has the focus; a line end is Enter, a tab Tab."""

@@ -147,6 +147,13 @@ class House(KeysInTurn):
         """The screen with the panes, whatever lies over it."""
         return self.screen_stack[0]
 
+    @property
+    def is_busy(self) -> bool:
+        """Whether the logbook's list is about to change: a key could mean an entry that is not in it yet."""
+        if self.now != "logbook":
+            return False
+        return self.book.busy or any(pane.keeps_then for pane in self.base.query(SheetPane))
+
     def form_changed(self) -> None:
         """Something was typed: save the forms soon, drop messages that have been read."""
         self._messages.clear()

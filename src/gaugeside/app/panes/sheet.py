@@ -60,7 +60,7 @@ class SheetPane(VerticalScroll, can_focus=False):
         self._without_answer = ("", "")
         self._asked = 0
         self._linking = 0
-        self._keep_then = False
+        self.keeps_then = False
         self._picture: dict[str, Any] | None = None
         self._patience: Timer | None = None
         self._settle: Timer | None = None
@@ -180,13 +180,15 @@ class SheetPane(VerticalScroll, can_focus=False):
                 self.units[name] = dict(typed.units)
 
     def on_descendant_blur(self, event: events.DescendantBlur) -> None:
-        """A field is left: its unit is settled."""
+        """A field is left: its unit is settled, what was said has been read."""
+        self.house.word_stays = False
         self.settle_units()
 
     def on_descendant_focus(self, event: events.DescendantFocus) -> None:
         """A field is entered: say what belongs in it."""
         self._left = str(event.widget.id)
-        self.say_word()
+        if not self.house.word_stays:
+            self.say_word()
 
     # Asking and showing
 
@@ -194,7 +196,7 @@ class SheetPane(VerticalScroll, can_focus=False):
         meant = self.meant()
         refused = [typed.refusal for typed in meant.values() if typed.refusal is not None]
         self.answer, self.refusal = None, refused[0] if refused else None
-        self._keep_then = False
+        self.keeps_then = False
         self._linking += 1
         house = self.house
         values = {name: typed.value for name, typed in meant.items() if typed.value is not None}
@@ -290,7 +292,8 @@ class SheetPane(VerticalScroll, can_focus=False):
         self._show_answer()
         if not self.house.word_stays:
             self.say_word()
-        if self._keep_then:
+        if self.keeps_then:
+            self.keeps_then = False
             self.house.keep(self)
 
     def _show_answer(self) -> None:
@@ -361,7 +364,7 @@ class SheetPane(VerticalScroll, can_focus=False):
     def keep(self) -> None:
         """Keep the answer in the logbook, one that is still awaited when it comes."""
         if self._asked:
-            self._keep_then = True
+            self.keeps_then = True
             self.house.say("Working; the answer is kept when it comes.")
         else:
             self.house.keep(self)
