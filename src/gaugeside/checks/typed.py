@@ -164,8 +164,8 @@ def _state(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site: 
 
 
 def _choice(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site: Site) -> TypedLine:
-    wanted = "-".join(guard(text).casefold().split())
-    found = [choice for choice in line.choices if choice.startswith(wanted)]
+    wanted = " ".join(guard(text).casefold().replace("-", " ").split())
+    found = [choice for choice in line.choices if choice.replace("-", " ").startswith(wanted)]
     if len(found) != 1:
         raise Refusal(
             f"{quoted(text)} {'could be ' + ' or '.join(found) if found else 'is not a choice here'}.",
