@@ -109,14 +109,15 @@ class Cells:
         return x
 
     def _part(self, row: list[Cell | None], place: int, changed: set[int]) -> None:
-        """Forget the other half of a wide character of which one half is written over."""
+        """Blank the other half of a wide character of which one half is written over, as terminals do."""
         before = row[place]
         if before is None:
             return
-        if before[0] == "" and place > 0:
-            row[place - 1] = None
-        elif place + 1 < len(row) and (after := row[place + 1]) is not None and after[0] == "":
-            row[place + 1] = None
+        after = row[place + 1] if place + 1 < len(row) else None
+        other = place - 1 if before[0] == "" else place + 1 if after is not None and after[0] == "" else None
+        if other is not None:
+            row[other] = (" ", _blank_style(before[1]))
+            changed.add(other)
 
     def _sent(self, changed: dict[int, set[int]]) -> str:
         out: list[str] = []
