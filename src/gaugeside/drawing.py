@@ -196,7 +196,8 @@ def draw(picture: Picture, width: int, height: int, dress: Dress, site: Site, *,
     across = Axis(*frame[0], (width - margin) * _ACROSS)
     canvas = _Canvas(width - margin, height - 4)
     together, hidden = _fill(canvas, picture, units, across, upward)
-    rows = [f"{title}{picture.refrigerant:>{width - len(title)}}"]
+    named = f"{title}{picture.refrigerant:>{width - len(title)}}"
+    rows = [named if len(title) + len(picture.refrigerant) < width else title[:width]]
     for row, text in enumerate(canvas.rows(ascii_alone)):
         label = labels.get(row)
         rows.append(f"{label or '':>{margin - 2}} {'+' if label else '|'}{text}")
@@ -306,9 +307,10 @@ def _foot(across: Axis, margin: int, title: str) -> list[str]:
         text = number(value, decimals)
         start = max(0, min(margin + column - len(text) // 2, len(numbers) - len(text)))
         rule[column] = "+"
-        if all(cell == " " for cell in numbers[max(0, start - 1) : start + len(text) + 1]):
+        free = all(cell == " " for cell in numbers[max(0, start - 1) : start + len(text) + 1])
+        if free and len(text) <= len(numbers):
             numbers[start : start + len(text)] = text
-    return [" " * (margin - 1) + "+" + "".join(rule), "".join(numbers), f"{title:>{width + margin}}"]
+    return [" " * (margin - 1) + "+" + "".join(rule), "".join(numbers), f"{title[: width + margin]:>{width + margin}}"]
 
 
 # --- words

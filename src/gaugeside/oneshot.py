@@ -88,14 +88,19 @@ def run_check(arguments: Namespace, say: Printer) -> int:
     _raise_refused(reply.get("error"))
     answer = Answer.from_plain(reply["answer"])
     _raise_refused(answer.unresolved)
-    kept = ""
+    kept = not_kept = ""
     if arguments.keep:
         entry = entry_of(check, answer, typed, settings, dress, site, arguments.note)
-        result = Logbook(home.logbook_file).keep(entry)
-        kept = f"{'already kept' if result.already else 'kept'} as entry {result.entry.number}"
+        try:
+            result = Logbook(home.logbook_file).keep(entry)
+            kept = f"{'already kept' if result.already else 'kept'} as entry {result.entry.number}"
+        except Refusal as refusal:
+            not_kept = refusal.sentence()
     answer = replace(answer, notes=(*answer.notes, *map(Remark, troubles)))
     if arguments.json:
         document = _as_json(check, answer, typed, settings, dress, site, kept)
+        if not_kept:
+            document["not_kept"] = not_kept
         say(json.dumps(document | {name: reply[name] for name in ("picture",) if name in reply}))
     else:
         say("\n".join(_as_text(check, answer, typed, dress, site)))
@@ -103,7 +108,10 @@ def run_check(arguments: Namespace, say: Printer) -> int:
             say("\n".join(_drawn(reply["picture"], dress, site, arguments.ascii)))
         if kept:
             say(f"Logbook: {kept}.")
-    return 0
+        if not_kept:
+            say(f"NOT KEPT: {not_kept}")
+    # The answer stands although it could not be kept.
+    return 1 if not_kept else 0
 
 
 def _drawn(plain: Mapping[str, Any] | None, dress: Dress, site: Site, ascii_alone: bool) -> list[str]:

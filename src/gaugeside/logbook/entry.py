@@ -240,7 +240,8 @@ def _sound_findings(found: object) -> dict[str, dict[str, Any]]:
         return {}
     sound: dict[str, dict[str, Any]] = {}
     for name, finding in list(found.items())[:MOST_ITEMS]:
-        if isinstance(finding, dict) and _is_finite_number(finding.get("value")):
+        value = finding.get("value") if isinstance(finding, dict) else None
+        if isinstance(finding, dict) and (isinstance(value, str) or _is_finite_number(value)):
             parts = {**_plain_texts(finding), **_finite_numbers(finding)}
             sound[plain_text(name, LONGEST_NAME)] = {part: parts[part] for part in finding if part in parts}
     return sound
