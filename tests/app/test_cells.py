@@ -153,7 +153,9 @@ def test_what_is_not_understood_passes_whole_and_makes_the_screen_unknown() -> N
         ({"LANG": "C.UTF-8", "LC_ALL": "POSIX"}, "utf-8", False, "utf-8"),
         ({"LANG": "de_DE.ISO-8859-15@euro"}, "utf-8", False, "iso8859-15"),
         ({"LANG": "C.UTF-8"}, "latin-1", False, "utf-8"),
-        ({"LANG": "xx.no-such-set"}, "utf-8", True, "utf-8"),
+        ({"LANG": "xx.no-such-set"}, "utf-8", False, "utf-8"),
+        ({"LC_CTYPE": "UTF-8"}, "utf-8", True, "utf-8"),
+        ({"LANG": "en_US"}, "utf-8", False, "utf-8"),
     ],
 )
 def test_what_the_locale_promises(environ: dict[str, str], stream: str, utf8: bool, keyboard: str) -> None:

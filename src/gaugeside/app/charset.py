@@ -3,9 +3,11 @@
 from __future__ import annotations
 
 import codecs
+import os
 import unicodedata
 from collections.abc import Mapping
 from functools import cache
+from pathlib import Path
 
 from gaugeside.checks.view import ascii_only
 
@@ -46,21 +48,34 @@ def _in_cells(character: str) -> str:
     return "??" if unicodedata.east_asian_width(character) in "WF" else "?"
 
 
-def keyboard_encoding(environ: Mapping[str, str]) -> str:
-    """Return the encoding of what is typed: the locale's own, UTF-8 where it names none.
+def first_environ() -> Mapping[str, str]:
+    """Return the environment as the program was given it, where the system tells.
 
-    environ: LC_ALL, LC_CTYPE and LANG count in this order (POSIX, Base Definitions 8.2).
+    At its start the interpreter puts a UTF-8 locale of its own in the place of C and of any it does not know.
     """
-    locale = next((environ[name] for name in ("LC_ALL", "LC_CTYPE", "LANG") if environ.get(name)), "")
-    named = locale.partition("@")[0].partition(".")[2]
     try:
-        return codecs.lookup(named).name if named else "utf-8"
-    except LookupError:
-        return "utf-8"
+        pairs = Path("/proc/self/environ").read_bytes().split(b"\0")
+    except OSError:
+        return os.environ
+    return dict(os.fsdecode(pair).split("=", 1) for pair in pairs if b"=" in pair)
+
+
+def keyboard_encoding(environ: Mapping[str, str]) -> str:
+    """Return the encoding of what is typed: the locale's own, UTF-8 where it names none."""
+    return _named_encoding(environ) or "utf-8"
 
 
 def speaks_utf8(environ: Mapping[str, str], stream_encoding: str | None) -> bool:
     """Whether the terminal is promised to show UTF-8: by its locale, and by the encoding we write in."""
+    return _named_encoding(environ) == "utf-8" and (stream_encoding or "").lower().replace("-", "") == "utf8"
+
+
+def _named_encoding(environ: Mapping[str, str]) -> str:
+    """Return the encoding the locale names: LC_ALL, LC_CTYPE, LANG in this order (POSIX, Base Definitions 8.2)."""
     locale = next((environ[name] for name in ("LC_ALL", "LC_CTYPE", "LANG") if environ.get(name)), "")
-    named = "." in locale and keyboard_encoding(environ) == "utf-8"
-    return named and (stream_encoding or "").lower().replace("-", "") == "utf8"
+    plain, _, named = locale.partition("@")[0].partition(".")
+    try:
+        # Some systems name the encoding alone.
+        return codecs.lookup(named or plain).name
+    except LookupError:
+        return ""

@@ -13,11 +13,13 @@ from textual._xterm_parser import XTermParser
 from textual.drivers.linux_driver import LinuxDriver
 
 from gaugeside.app.cells import Cells
-from gaugeside.app.charset import ascii_cells, keyboard_encoding
+from gaugeside.app.charset import ascii_cells, first_environ, keyboard_encoding
 
 # Reports of the window's focus would cost a paint each, and the two questions come back as keys in a terminal that
 # does not know them.
 _NOT_SENT = frozenset({"\x1b[?1004h", "\x1b[?1004l", "\x1b[?2026$p", "\x1b[?2048$p"})
+# The shape of the mouse's pointer, which old terminals print.
+_POINTER = "\x1b]22;"
 _OTHER_SCREEN, _CLEAR = "\x1b[?1049h", "\x1b[H\x1b[2J"
 _WAIT = 0.1
 
@@ -43,7 +45,7 @@ class TerminalDriver(LinuxDriver):
 
     def write(self, data: str) -> None:
         """Write what `data` changes on the screen."""
-        if data in _NOT_SENT:
+        if data in _NOT_SENT or data.startswith(_POINTER):
             return
         if data == _OTHER_SCREEN:
             # The Linux console has no other screen; there the shell's lines would shine through.
@@ -57,7 +59,7 @@ class TerminalDriver(LinuxDriver):
     def run_input_thread(self) -> None:
         """Hand on what is typed until the program ends or the terminal does."""
         # A byte that is no character of the encoding must not end the program.
-        decode = codecs.getincrementaldecoder(keyboard_encoding(os.environ))(errors="replace").decode
+        decode = codecs.getincrementaldecoder(keyboard_encoding(first_environ()))(errors="replace").decode
         parser = XTermParser(self._debug)
         poll = select.poll()
         poll.register(self.fileno, select.POLLIN)

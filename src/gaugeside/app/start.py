@@ -39,12 +39,12 @@ def start(logbook: Path | None, ascii_alone: bool = False) -> int:
     # Blocked before any thread starts, so that only the watching thread ever takes them.
     signal.pthread_sigmask(signal.SIG_BLOCK, _SIGNALS)
     from gaugeside.app.app import GaugesideApp
-    from gaugeside.app.charset import speaks_utf8, use_ascii
+    from gaugeside.app.charset import first_environ, speaks_utf8, use_ascii
     from gaugeside.app.themes import load_themes
     from gaugeside.refrigerants import load_own
     from gaugeside.settings import load_draft, load_settings, places
 
-    if ascii_alone or not speaks_utf8(os.environ, sys.stderr.encoding):
+    if ascii_alone or not speaks_utf8(first_environ(), sys.stderr.encoding):
         use_ascii()
     home = places(logbook=logbook)
     settings, messages = load_settings(home.settings_file)

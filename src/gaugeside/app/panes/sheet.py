@@ -109,6 +109,7 @@ class SheetPane(VerticalScroll, can_focus=False):
                     line.field.value = text
                     line.field.cursor_position = len(text)
             self.units.pop(name, None)
+        self.query_one("#findings", Lines).show([])
         self.read_all()
 
     def clear(self) -> None:
