@@ -496,7 +496,9 @@ def test_entries_spoilt_by_other_hands_are_shown_as_far_as_they_go(path: Path) -
     book.keep(entry())
     spoilt = {
         "readings": "[" * 100_000,
-        "findings": json.dumps({"a": 1, "b": {"value": "x"}, "c": {"value": 1, "unit": "K\x1b[2J"}}),
+        "findings": json.dumps(
+            {"a": 1, "b": {"value": None}, "c": {"value": 1, "unit": "K\x1b[2J"}, "d": {"value": "wet"}}
+        ),
         "si_values": '{"p": 1e999, "q": ' + "9" * 400 + "}",
         "notes": '["\\u001b[31mred", 5]',
         "kept_at": "yesterday",
@@ -508,7 +510,7 @@ def test_entries_spoilt_by_other_hands_are_shown_as_far_as_they_go(path: Path) -
             connection.execute(f"UPDATE entries SET {column} = ?", [value])
     (found,) = book.entries()
     assert found.readings == {}
-    assert found.findings == {"c": {"value": 1, "unit": "K[2J"}}
+    assert found.findings == {"c": {"value": 1, "unit": "K[2J"}, "d": {"value": "wet"}}
     assert found.values == {}
     assert found.notes == ["[31mred"]
     assert found.tag == ""
