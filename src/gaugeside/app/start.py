@@ -15,8 +15,8 @@ from typing import TYPE_CHECKING, Any
 if TYPE_CHECKING:
     from gaugeside.app.app import GaugesideApp
 
-# Leave the alternate screen, show the cursor, end bracketed paste, mouse, focus and key reporting, plain colours.
-_RESTORE = b"\x1b[?1049l\x1b[?25h\x1b[?2004l\x1b[?1000l\x1b[?1003l\x1b[?1006l\x1b[?1004l\x1b[<u\x1b[0m\r\n"
+# Leave the other screen, show the cursor, wrap lines, end reports of paste, mouse, focus and keys, plain colours.
+_RESTORE = b"\x1b[?1049l\x1b[?25h\x1b[?7h\x1b[?2004l\x1b[?1000l\x1b[?1003l\x1b[?1006l\x1b[?1004l\x1b[<u\x1b[0m\r\n"
 _SIGNALS = (signal.SIGHUP, signal.SIGTERM)
 
 
