@@ -64,7 +64,7 @@ def head_line(refrigerant: Refrigerant | None, site: Site, machine: str, width: 
         return f" {left}  {machine}".rstrip()
     source = site.source.split(",")[0].removeprefix("standard atmosphere at ")
     place = f"{site.atmosphere / 1000:.2f} kPa abs  {source}"
-    return f" {left:<26}{place[:37]:<38}{machine[:14]}".rstrip()
+    return f" {left:<22}  {place[:37]}   {machine}"[: width - 1].rstrip()
 
 
 def tabs_line(pane: str, width: int) -> str:
