@@ -13,7 +13,8 @@ from datetime import UTC, datetime
 from pathlib import Path
 
 from gaugeside.errors import Refusal
-from gaugeside.logbook.entry import COLUMNS, UNREADABLE, Entry, from_row
+from gaugeside.logbook.entry import UNREADABLE, Entry, from_row
+from gaugeside.logbook.schema import SELECT, guard, is_plain
 from gaugeside.logbook.trouble import LogbookTrouble, locked
 from gaugeside.settings import reason, sync_folder
 
@@ -70,9 +71,11 @@ def readable_entries(path: Path) -> list[Entry]:
     """Return what can still be read, whole, of the damaged logbook at `path`, changing nothing there."""
     found: list[Entry] = []
     with suppress(sqlite3.Error), closing(_looking_at(path)) as connection:
-        connection.text_factory = lambda raw: raw.decode("utf-8", "replace")
+        guard(connection)
         # Without it a file shorter than its first page tells is not read at all.
         connection.execute("PRAGMA writable_schema = ON")
+        if not is_plain(connection):
+            return []
         for number in range(1, min(_last_number(connection), MOST_ENTRIES) + 1):
             with suppress(sqlite3.Error):
                 found.extend(_sound_entry(connection, number))
@@ -80,8 +83,7 @@ def readable_entries(path: Path) -> list[Entry]:
 
 
 def _sound_entry(connection: sqlite3.Connection, number: int) -> Iterator[Entry]:
-    query = f"SELECT {', '.join(COLUMNS)} FROM entries NOT INDEXED WHERE number = ?"
-    for row in connection.execute(query, [number]):
+    for row in connection.execute(f"{SELECT} NOT INDEXED WHERE number = ?", [number]):
         entry = from_row(row)
         if UNREADABLE not in entry.cautions:
             yield replace(entry, number=number)

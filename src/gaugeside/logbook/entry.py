@@ -232,7 +232,11 @@ def _is_finite_number(value: object) -> bool:
 def _finite_numbers(found: object) -> dict[str, float]:
     if not isinstance(found, dict):
         return {}
-    return {plain_text(name, LONGEST_NAME): value for name, value in found.items() if _is_finite_number(value)}
+    return {
+        plain_text(name, LONGEST_NAME): value
+        for name, value in list(found.items())[:MOST_ITEMS]
+        if _is_finite_number(value)
+    }
 
 
 def _sound_findings(found: object) -> dict[str, dict[str, Any]]:

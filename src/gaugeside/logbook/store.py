@@ -19,18 +19,13 @@ from pathlib import Path
 from gaugeside.errors import Refusal
 from gaugeside.logbook import damage
 from gaugeside.logbook.entry import COLUMNS, Entry, cleaned, from_row, to_row
+from gaugeside.logbook.schema import INSERT, SELECT, begin, guard, is_begun
 from gaugeside.logbook.trouble import LogbookTrouble, NoSuchEntry, trouble_from
 from gaugeside.settings import make_private_folder, plain_text, reason
 
-VERSION = 1
-APPLICATION = 0x47415547  # marks the file as a logbook of this program
 SAME_WITHIN = timedelta(minutes=10)
 MOST_WORDS = 20
 LARGEST_NUMBER = 2**63 - 1
-
-_NAMES = ", ".join(COLUMNS)
-_INSERT = f"INSERT INTO entries ({_NAMES}) VALUES ({', '.join('?' * len(COLUMNS))})"
-_SELECT = f"SELECT {_NAMES} FROM entries"
 
 
 @dataclass(frozen=True)
@@ -80,8 +75,9 @@ class Logbook:
         with self._reading() as connection:
             if connection is None:
                 return []
-            rows = connection.execute(_SELECT + where + order, [*words, limit, offset]).fetchall()
-        return [from_row(row) for row in rows]
+            most = min(limit, LARGEST_NUMBER)
+            # Row by row: a hundred rows of another hand's text need not be in memory at once.
+            return [from_row(row) for row in connection.execute(SELECT + where + order, [*words, most, offset])]
 
     def count(self, filter_text: str = "") -> int:
         """Return how many entries contain every word of `filter_text`."""
@@ -132,7 +128,7 @@ class Logbook:
             raise Refusal("This entry was never in the logbook, so it cannot be put back.")
         try:
             with self._writing() as connection:
-                connection.execute(_INSERT, to_row(cleaned(entry)))
+                connection.execute(INSERT, to_row(cleaned(entry)))
         except sqlite3.IntegrityError as fault:
             raise Refusal(f"Entry {entry.number} is in the logbook already.") from fault
 
@@ -140,13 +136,13 @@ class Logbook:
         row = dict(zip(COLUMNS, to_row(entry), strict=True))
         with self._writing() as connection:
             found = connection.execute(
-                _SELECT + " WHERE likeness = ? ORDER BY kept_at DESC LIMIT 1", [row["likeness"]]
+                SELECT + " WHERE likeness = ? ORDER BY kept_at DESC LIMIT 1", [row["likeness"]]
             ).fetchone()
             if found is not None:
                 earlier = from_row(found)
                 if abs(entry.kept_at - earlier.kept_at) <= SAME_WITHIN:
                     return Kept(earlier, already=True)
-            number = connection.execute(_INSERT, list(row.values())).lastrowid
+            number = connection.execute(INSERT, list(row.values())).lastrowid
         return Kept(replace(entry, number=number), already=False)
 
     def _exists(self) -> bool:
@@ -170,7 +166,7 @@ class Logbook:
                 return
             with self._connection() as connection:
                 connection.execute("BEGIN")
-                yield connection if _is_begun(connection, self.path) else None
+                yield connection if is_begun(connection, self.path) else None
 
     @contextmanager
     def _changing(self, number: int) -> Iterator[sqlite3.Connection]:
@@ -192,14 +188,14 @@ class Logbook:
             with self._connection() as connection:
                 # Any other database is refused before a setting could change it.
                 connection.execute("BEGIN")
-                _is_begun(connection, self.path)
+                is_begun(connection, self.path)
                 connection.execute("COMMIT")
                 connection.execute("PRAGMA journal_mode = DELETE")
                 # With a deleted journal only EXTRA also waits for the folder, so only it outlasts a power cut.
                 connection.execute("PRAGMA synchronous = EXTRA")
                 connection.execute("BEGIN IMMEDIATE")
-                if not _is_begun(connection, self.path):
-                    _begin(connection)
+                if not is_begun(connection, self.path):
+                    begin(connection)
                 yield connection
                 connection.execute("COMMIT")
 
@@ -218,9 +214,7 @@ class Logbook:
                 timeout=self._busy_seconds,
                 isolation_level=None,
             )
-            connection.text_factory = _decoded
-            connection.execute("PRAGMA trusted_schema = OFF")
-            connection.execute("PRAGMA cell_size_check = ON")
+            guard(connection)
             yield connection
         except sqlite3.IntegrityError:
             raise
@@ -254,7 +248,7 @@ class Logbook:
         saved = damage.readable_entries(aside)
         if saved:
             with self._writing() as connection:
-                insert = _INSERT.replace("INSERT", "INSERT OR IGNORE", 1)
+                insert = INSERT.replace("INSERT", "INSERT OR IGNORE", 1)
                 added = connection.executemany(insert, [to_row(cleaned(entry)) for entry in saved]).rowcount
             self.messages.append(f"{added} of its entries could be read and are in the new logbook.")
 
@@ -279,10 +273,6 @@ def _create_private_file(path: Path) -> None:
         os.unlink(temporary)
 
 
-def _decoded(raw: bytes) -> str:
-    return raw.decode("utf-8", "replace")
-
-
 def _condition(filter_text: str) -> tuple[str, list[str]]:
     words = plain_text(filter_text, 500).casefold().split()[:MOST_WORDS]
     return (" WHERE " + " AND ".join(["instr(search, ?) > 0"] * len(words)) if words else ""), words
@@ -291,37 +281,7 @@ def _condition(filter_text: str) -> tuple[str, list[str]]:
 def _one(connection: sqlite3.Connection, number: int) -> Entry:
     if not 0 <= number <= LARGEST_NUMBER:
         raise NoSuchEntry(number)
-    row = connection.execute(_SELECT + " WHERE number = ?", [number]).fetchone()
+    row = connection.execute(SELECT + " WHERE number = ?", [number]).fetchone()
     if row is None:
         raise NoSuchEntry(number)
     return from_row(row)
-
-
-def _is_begun(connection: sqlite3.Connection, path: Path) -> bool:
-    """Tell a logbook from an empty file, inside a transaction: all marks must be of the same moment.
-
-    Raises LogbookTrouble for any other database.
-    """
-    (version,) = connection.execute("PRAGMA user_version").fetchone()
-    (application,) = connection.execute("PRAGMA application_id").fetchone()
-    (tables,) = connection.execute("SELECT count(*) FROM sqlite_master").fetchone()
-    if (version, application, tables) == (0, 0, 0):
-        return False
-    if application != APPLICATION:
-        raise LogbookTrouble("foreign", f"{path} is the database of another program, not a logbook.")
-    if version > VERSION:
-        raise LogbookTrouble(
-            "newer",
-            f"The logbook {path} was written by a newer version of gaugeside, so it is left as it is.",
-            "Use that version, or name another file with --logbook PATH.",
-        )
-    return True
-
-
-def _begin(connection: sqlite3.Connection) -> None:
-    columns = ", ".join(f"{name} {kind}" for name, kind in COLUMNS.items())
-    connection.execute(f"CREATE TABLE entries ({columns})")
-    connection.execute("CREATE INDEX entries_by_moment ON entries (kept_at, number)")
-    connection.execute("CREATE INDEX entries_by_likeness ON entries (likeness, kept_at)")
-    connection.execute(f"PRAGMA application_id = {APPLICATION}")
-    connection.execute(f"PRAGMA user_version = {VERSION}")

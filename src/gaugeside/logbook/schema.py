@@ -1,0 +1,91 @@
+"""What a logbook file is made of, and whether one is made of that and nothing else.
+
+A file may come from other hands: a view can be endless, a trigger can take out what was just acknowledged.
+"""
+
+from __future__ import annotations
+
+import sqlite3
+from pathlib import Path
+
+from gaugeside.logbook.entry import COLUMNS
+from gaugeside.logbook.trouble import LogbookTrouble
+
+VERSION = 1
+APPLICATION = 0x47415547  # marks the file as a logbook of this program
+LONGEST_COLUMN = 500_000  # [characters]; the largest entry that is kept needs half of that
+LARGEST_VALUE = 100_000_000  # [bytes]; a file with a larger one is not read
+
+_COLUMNS = ", ".join(f"{name} {kind}" for name, kind in COLUMNS.items())
+_STATEMENTS = (
+    f"CREATE TABLE entries ({_COLUMNS})",
+    "CREATE INDEX entries_by_moment ON entries (kept_at, number)",
+    "CREATE INDEX entries_by_likeness ON entries (likeness, kept_at)",
+)
+_PLACES = ", ".join("?" * len(_STATEMENTS))
+# Text is cut while it is read, so that no row brings more into memory than an entry can hold.
+_CUT = ", ".join(name if kind.startswith("INTEGER") else f"substr({name}, 1, {LONGEST_COLUMN})"
+                 for name, kind in COLUMNS.items())  # fmt: skip
+
+SELECT = f"SELECT {_CUT} FROM entries"
+INSERT = f"INSERT INTO entries ({', '.join(COLUMNS)}) VALUES ({', '.join('?' * len(COLUMNS))})"
+
+
+def begin(connection: sqlite3.Connection) -> None:
+    """Make an empty database a logbook."""
+    for statement in _STATEMENTS:
+        connection.execute(statement)
+    connection.execute(f"PRAGMA application_id = {APPLICATION}")
+    connection.execute(f"PRAGMA user_version = {VERSION}")
+
+
+def guard(connection: sqlite3.Connection) -> None:
+    """Let a connection run nothing unsafe that a file brings along, and take in no value of any size."""
+    connection.text_factory = _decoded
+    connection.setlimit(sqlite3.SQLITE_LIMIT_LENGTH, LARGEST_VALUE)
+    connection.execute("PRAGMA trusted_schema = OFF")
+    connection.execute("PRAGMA cell_size_check = ON")
+
+
+def is_begun(connection: sqlite3.Connection, path: Path) -> bool:
+    """Tell a logbook from an empty file, inside a transaction: all marks must be of the same moment.
+
+    Raises LogbookTrouble for any other database.
+    """
+    (version,) = connection.execute("PRAGMA user_version").fetchone()
+    (application,) = connection.execute("PRAGMA application_id").fetchone()
+    (tables,) = connection.execute("SELECT count(*) FROM sqlite_master").fetchone()
+    if (version, application, tables) == (0, 0, 0):
+        return False
+    if application != APPLICATION:
+        raise LogbookTrouble("foreign", f"{path} is the database of another program, not a logbook.")
+    if version > VERSION:
+        raise LogbookTrouble(
+            "newer",
+            f"The logbook {path} was written by a newer version of gaugeside, so it is left as it is.",
+            "Use that version, or name another file with --logbook PATH.",
+        )
+    if not is_plain(connection):
+        raise LogbookTrouble(
+            "foreign",
+            f"The logbook {path} was rebuilt by another program (other columns, a view or a trigger), so it is left "
+            "as it is.",
+        )
+    return True
+
+
+def is_plain(connection: sqlite3.Connection) -> bool:
+    """Whether the entries are the table this program makes, and nothing in the file acts by itself."""
+    (ours,) = connection.execute(
+        f"SELECT count(*) FROM sqlite_master WHERE sql IN ({_PLACES})", _STATEMENTS
+    ).fetchone()  # fmt: skip
+    (others,) = connection.execute(
+        "SELECT count(*) FROM sqlite_master WHERE type IN ('view', 'trigger') "
+        f"OR (lower(tbl_name) = 'entries' AND sql NOT IN ({_PLACES}))",
+        _STATEMENTS,
+    ).fetchone()
+    return (ours, others) == (len(_STATEMENTS), 0)
+
+
+def _decoded(raw: bytes) -> str:
+    return raw.decode("utf-8", "replace")
