@@ -14,6 +14,7 @@ from typing import Any, NoReturn
 from gaugeside import __version__
 from gaugeside.errors import Refusal
 
+_LONGEST_MESSAGE = 500  # [characters]: a refused word may be of any length
 _MINUS_READING = re.compile(r"[-−]\s*[.,]?[0-9]")
 
 
@@ -27,6 +28,8 @@ class _Parser(argparse.ArgumentParser):
         _print(message.removesuffix("\n"), file)
 
     def error(self, message: str) -> NoReturn:
+        if len(message) > _LONGEST_MESSAGE:
+            message = f"{message[: _LONGEST_MESSAGE // 2]} ... {message[-_LONGEST_MESSAGE // 2 :]}"
         raise Refusal(f"{message[:1].upper()}{message[1:]}.", f"See '{self.prog} --help'.")
 
 
@@ -91,10 +94,13 @@ def _refuse(refusal: Refusal, as_json: bool) -> int:
 
 def _print(text: str, stream: Any = None) -> None:
     from gaugeside.checks.view import ascii_only
+    from gaugeside.settings import plain_text
 
     stream = sys.stdout if stream is None else stream
     if stream is None:
         return
+    # The last door: words of a command line, a path, a file of another hand end up here too.
+    text = "\n".join(plain_text(line) for line in text.split("\n"))
     print(text if _has_unicode(stream) else ascii_only(text), file=stream)
 
 

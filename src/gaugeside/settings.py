@@ -9,6 +9,7 @@ from __future__ import annotations
 import contextlib
 import dataclasses
 import json
+import math
 import os
 import stat
 import tempfile
@@ -29,8 +30,8 @@ MOST_UNITS = 100
 KEPT_ASIDE = 9  # damaged files kept side by side before the oldest name is used again
 
 _SPACING = frozenset("\t\n\r\u2028\u2029")
-# Explicit bidirectional embeddings, overrides and isolates reorder what stands around them.
-_REORDERING = frozenset("\u202a\u202b\u202c\u202d\u202e\u2066\u2067\u2068\u2069")
+# Bidirectional embeddings, overrides, isolates and marks reorder what stands around them.
+_REORDERING = frozenset("\u202a\u202b\u202c\u202d\u202e\u2066\u2067\u2068\u2069\u200e\u200f\u061c")
 
 
 @dataclass(frozen=True)
@@ -54,7 +55,7 @@ def places(environ: Mapping[str, str] | None = None, logbook: Path | None = None
     """
     home = (os.environ if environ is None else environ).get("GAUGESIDE_HOME", "")
     if home:
-        settings_folder = data_folder = state_folder = Path(os.path.abspath(os.path.expanduser(home)))
+        settings_folder = data_folder = state_folder = _whole(home)
     else:
         settings_folder = platformdirs.user_config_path("gaugeside", appauthor=False)
         data_folder = platformdirs.user_data_path("gaugeside", appauthor=False)
@@ -65,10 +66,26 @@ def places(environ: Mapping[str, str] | None = None, logbook: Path | None = None
         data_folder=data_folder,
         settings_file=settings_folder / "settings.json",
         draft_file=data_folder / "draft.json",
-        logbook_file=own_logbook if logbook is None else Path(os.path.abspath(logbook.expanduser())),
+        logbook_file=own_logbook if logbook is None else _whole(logbook),
         themes_folder=settings_folder / "themes",
         log_file=state_folder / "helper.log",
     )
+
+
+def _whole(path: str | Path) -> Path:
+    """Return a path from the root; Refusal where the home or the folder it starts from is not known."""
+    expanded = os.path.expanduser(path)
+    if expanded.startswith("~"):
+        raise Refusal(
+            f"No home folder is known for {plain_text(expanded.split(os.sep)[0], LONGEST_SETTING)}.",
+            "Write the whole path, or ./ before a name that starts with ~.",
+        )
+    try:
+        return Path(os.path.abspath(expanded))
+    except OSError as fault:
+        raise Refusal(
+            "The folder the program was started in is gone.", "Change to another one, or write the whole path."
+        ) from fault
 
 
 @dataclass(frozen=True)
@@ -102,8 +119,17 @@ def plain_text(text: str, longest: int | None = None) -> str:
     """
     if longest is not None:
         text = text[: 4 * longest]  # a text of megabytes is not walked through for a short one
-    kept = (" " if character in _SPACING else character for character in text if not _is_hidden(character))
+    if text.isprintable():
+        return text[:longest]
+    kept = (" " if character in _SPACING else character for character in text if not is_hidden(character))
     return "".join(kept)[:longest]
+
+
+def is_hidden(character: str) -> bool:
+    """Whether a character is not seen but obeyed: a control character, half a surrogate pair, a forced direction."""
+    if character in _SPACING:
+        return False
+    return character in _REORDERING or unicodedata.category(character) in ("Cc", "Cs")
 
 
 def load_settings(path: Path) -> tuple[Settings, list[str]]:
@@ -160,7 +186,7 @@ def read_json_file(path: Path) -> tuple[dict[str, Any], list[str]]:
     if len(content) > LARGEST_FILE:
         return {}, [f"{path} is larger than {LARGEST_FILE} bytes; it is not used."]
     try:
-        found = json.loads(content.decode("utf-8-sig"), parse_constant=_refuse_constant)
+        found = json.loads(content.decode("utf-8-sig"), parse_constant=_finite, parse_float=_finite)
     except (ValueError, RecursionError):
         return {}, [f"{path} is damaged (not readable as JSON); it is not used."]
     if not isinstance(found, dict):
@@ -211,9 +237,9 @@ def make_private_folder(folder: Path) -> None:
     """
     if folder.parts[:1] and folder.parts[0].startswith("~"):
         raise Refusal("No home folder is known, so nothing can be kept.", "Set GAUGESIDE_HOME to a folder of yours.")
-    if folder.is_dir():
-        return
     try:
+        if folder.is_dir():
+            return
         folder.mkdir(mode=0o700, parents=True, exist_ok=True)
     except (OSError, ValueError) as fault:
         raise Refusal(
@@ -239,20 +265,17 @@ def reason(fault: BaseException) -> str:
     return words[:1].lower() + words[1:]
 
 
-def _is_hidden(character: str) -> bool:
-    if character in _SPACING:
-        return False
-    return character in _REORDERING or unicodedata.category(character) in ("Cc", "Cs")
-
-
 def _name_aside(path: Path) -> Path:
     first = path.with_name(path.name + ".unreadable")
     others = [path.with_name(f"{path.name}.unreadable-{number}") for number in range(2, KEPT_ASIDE + 1)]
     return next((name for name in [first, *others] if not os.path.lexists(name)), first)
 
 
-def _refuse_constant(name: str) -> float:
-    raise ValueError(f"{name} is not a number")
+def _finite(text: str) -> float:
+    number = float(text)
+    if not math.isfinite(number):
+        raise ValueError(f"{text} is not a number")
+    return number
 
 
 def _is_shallow(found: object) -> bool:

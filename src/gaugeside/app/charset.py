@@ -10,6 +10,7 @@ from functools import cache
 from pathlib import Path
 
 from gaugeside.checks.view import ascii_only
+from gaugeside.settings import is_hidden, plain_text
 
 _CELLS = str.maketrans("°·−²³Δµ—–…’", " /-23du--.'")
 
@@ -28,8 +29,16 @@ def is_ascii() -> bool:
 
 
 def shown_text(text: str) -> str:
-    """Return `text` as this terminal can show it."""
-    return ascii_only(text) if _ascii else text
+    """Return `text` as this terminal can show it, without anything it would obey."""
+    plain = plain_text(text)
+    return ascii_only(plain) if _ascii else plain
+
+
+def typed_text(text: str) -> str:
+    """Return what was typed or pasted with a visible mark in the place of each character a terminal would obey."""
+    if text.isprintable():
+        return text
+    return "".join("\ufffd" if is_hidden(character) else plain_text(character) for character in text)
 
 
 def ascii_cells(data: str) -> str:

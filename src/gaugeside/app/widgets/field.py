@@ -11,7 +11,7 @@ from textual.containers import Horizontal
 from textual.message import Message
 from textual.widgets import Input, Static
 
-from gaugeside.app.charset import shown_text
+from gaugeside.app.charset import shown_text, typed_text
 from gaugeside.app.widgets.lines import Line
 
 LONGEST_TYPED = 200
@@ -32,6 +32,10 @@ class TextField(Input):
             max_length=LONGEST_TYPED,
         )
         self.cursor_blink = False
+
+    def validate_value(self, value: str) -> str:
+        """Let no character in that a terminal would obey, however it came: pasted, from a draft, a logbook."""
+        return typed_text(value)
 
 
 class ChoiceField(Static, can_focus=True):
