@@ -13,6 +13,7 @@ import math
 import os
 import stat
 import tempfile
+import tomllib
 import unicodedata
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
@@ -26,7 +27,9 @@ from gaugeside.errors import Refusal
 LARGEST_FILE = 1_000_000  # [bytes]; a full form is a few thousand
 DEEPEST_NESTING = 20
 LONGEST_SETTING = 60  # [characters]
+LONGEST_FAULT = 200  # [characters]
 MOST_UNITS = 100
+MOST_DOTS = 40  # in one line of a TOML file
 KEPT_ASIDE = 9  # damaged files kept side by side before the oldest name is used again
 
 _SPACING = frozenset("\t\n\r\u2028\u2029")
@@ -194,6 +197,41 @@ def read_json_file(path: Path) -> tuple[dict[str, Any], list[str]]:
     if not _is_shallow(found):
         return {}, [f"{path} is nested deeper than {DEEPEST_NESTING} levels; it is not used."]
     return _made_plain(found), []
+
+
+def read_toml_file(path: Path, largest: int) -> dict[str, Any]:
+    """Return the tables in `path`, none where there is no file.
+
+    largest: size of the file [bytes].
+
+    Raises OSError when it cannot be read and ValueError, with a sentence, when it is not readable as TOML.
+    """
+    try:
+        if not stat.S_ISREG(path.stat().st_mode):
+            raise ValueError("it is not a file")
+        with path.open("rb") as file:
+            content = file.read(largest + 1)
+    except FileNotFoundError:
+        return {}
+    if len(content) > largest:
+        raise ValueError(f"it is larger than {largest // 1000} kB")
+    try:
+        return parse_toml(content.decode("utf-8-sig"))
+    except UnicodeDecodeError as fault:
+        raise ValueError("it is not UTF-8 text") from fault
+
+
+def parse_toml(text: str) -> dict[str, Any]:
+    """Return the tables in a TOML text; raises ValueError, with a sentence, when it is not readable as TOML."""
+    # The library's memory grows with the square of the parts of a dotted key.
+    if any(line.count(".") > MOST_DOTS for line in text.split("\n")):
+        raise ValueError(f"a line of it has more than {MOST_DOTS} dots")
+    try:
+        return tomllib.loads(text)
+    except RecursionError as fault:
+        raise ValueError("it is nested too deeply") from fault
+    except ValueError as fault:
+        raise ValueError(f"it is not readable as TOML: {plain_text(str(fault), LONGEST_FAULT)}") from fault
 
 
 def write_json_file(path: Path, content: Mapping[str, Any], is_faulty: Callable[[], bool]) -> None:

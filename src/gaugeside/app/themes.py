@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import re
 import stat
-import tomllib
 from collections.abc import Mapping
 from contextlib import suppress
 from itertools import islice
@@ -14,7 +13,7 @@ from typing import Any
 from textual.color import Color, ColorParseError
 from textual.theme import Theme
 
-from gaugeside.settings import Settings, plain_text, reason
+from gaugeside.settings import Settings, parse_toml, plain_text, reason
 
 TERMINAL_COLOURS = "terminal colours"
 TERMINAL_COLOURS_LIGHT = "terminal colours light"
@@ -115,8 +114,8 @@ def without_colour(environ: Mapping[str, str]) -> bool:
 def read_theme(text: str) -> Theme:
     """Return the theme that the TOML `text` describes; raises ThemeFault with the reason it is none."""
     try:
-        content = tomllib.loads(text)
-    except (ValueError, RecursionError) as fault:
+        content = parse_toml(text)
+    except ValueError as fault:
         raise ThemeFault("is not readable as TOML") from fault
     _only(content, _KEYS, "key")
     name = content.get("name")

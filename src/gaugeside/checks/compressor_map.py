@@ -7,7 +7,6 @@ AHRI 540 and EN 12900.
 
 from __future__ import annotations
 
-import tomllib
 from collections.abc import Mapping
 from dataclasses import dataclass
 from pathlib import Path
@@ -16,9 +15,12 @@ from typing import Any
 from gaugeside.errors import Refusal
 from gaugeside.quantities import SEA_LEVEL, Dress, Kind, Site, quoted, read, unit
 from gaugeside.quantities.convert import from_si, to_si
+from gaugeside.refrigerants import find
+from gaugeside.settings import plain_text, read_toml_file, reason
 
 FILE_NAME = "compressors.toml"
 _LARGEST = 200_000
+_LONGEST_TAG = 60  # [characters]
 _KEYS = {
     "refrigerant", "source", "temperature", "mass_flow_unit", "power_unit", "mass_flow", "power", "suction_range",
     "discharge_range", "rated_superheat", "rated_suction_temperature",
@@ -100,16 +102,13 @@ def load_maps(folder: Path) -> tuple[dict[str, CompressorMap], list[str]]:
     """Return the compressor maps of a settings folder by tag, and a sentence for each that could not be used."""
     path = folder / FILE_NAME
     try:
-        if not path.is_file():
-            return {}, []
-        if path.stat().st_size > _LARGEST:
-            return {}, [f"{path} is too large for compressor coefficients and is left out."]
-        content = tomllib.loads(path.read_text(encoding="utf-8"))
-    except (OSError, ValueError, RecursionError) as fault:
-        return {}, [f"{path} cannot be read ({type(fault).__name__}): its compressor coefficients are left out."]
+        content = read_toml_file(path, _LARGEST)
+    except (OSError, ValueError) as fault:
+        return {}, [f"{path} could not be read: {reason(fault)}. Its compressor coefficients are left out."]
     maps: dict[str, CompressorMap] = {}
     troubles = []
-    for tag, table in content.items():
+    for name, table in content.items():
+        tag = plain_text(name, _LONGEST_TAG)
         try:
             maps[tag.casefold()] = _map(tag, table)
         except Refusal as refusal:
@@ -131,8 +130,8 @@ def _map(tag: str, table: Any) -> CompressorMap:
             raise Refusal(f"{key} is not a short text.", "Write it in quotes.")
     return CompressorMap(
         tag=tag,
-        refrigerant=texts["refrigerant"],
-        source=texts["source"],
+        refrigerant=find(texts["refrigerant"]).designation,
+        source=plain_text(texts["source"]),
         temperature=_unit_label(Kind.TEMPERATURE, texts["temperature"], "temperature"),
         mass_flow_unit=_unit_label(Kind.MASS_FLOW, texts["mass_flow_unit"] or "kg/s", "mass_flow_unit"),
         power_unit=_unit_label(Kind.POWER, texts["power_unit"] or "W", "power_unit"),
@@ -154,7 +153,7 @@ def _unit_label(kind: Kind, text: str, key: str) -> str:
 
 def _numbers(table: Mapping[str, Any], key: str, count: int) -> tuple[float, ...]:
     value = table.get(key, [])
-    if not isinstance(value, list) or not all(isinstance(n, int | float) and abs(n) < 1e30 for n in value):
+    if not isinstance(value, list) or not all(type(n) in (int, float) and abs(n) < 1e30 for n in value):
         raise Refusal(f"{key} is not a list of numbers.", f"Write {count} numbers between square brackets.")
     if value and len(value) != count:
         raise Refusal(f"{key} has {len(value)} numbers.", f"It takes {count}, in the order of the standard.")
@@ -164,5 +163,8 @@ def _numbers(table: Mapping[str, Any], key: str, count: int) -> tuple[float, ...
 def _typed(table: Mapping[str, Any], key: str, kind: Kind) -> float | None:
     if key not in table:
         return None
+    value = table[key]
+    if not (isinstance(value, str) or (type(value) in (int, float) and abs(value) < 1e30)):
+        raise Refusal(f"{key} is not a reading.", "Write a number, or a reading with its unit in quotes.")
     dress, site = Dress(), Site(SEA_LEVEL.atmosphere)
-    return read(str(table[key]), kind, dress.default(kind), dress, site).value
+    return read(str(value), kind, dress.default(kind), dress, site).value

@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-import tomllib
 from pathlib import Path
 from typing import Any
 
+from ..settings import read_toml_file, reason
 from .catalogue import LONGEST_NAME, Refrigerant, blend_gwp, catalogue, folded, model_kinds, natural_order
 
 FILE = "refrigerants.toml"
@@ -34,14 +34,9 @@ def load_own(folder: Path) -> list[str]:
     path = folder / FILE
     catalogue.cache_clear()  # what an earlier call took in is forgotten
     try:
-        if not path.is_file():
-            return []
-        if path.stat().st_size > LARGEST_FILE:
-            return [f"{FILE} is larger than {LARGEST_FILE // 1000} kB and was not read."]
-        data = tomllib.loads(path.read_text(encoding="utf-8"))
-    except (OSError, UnicodeDecodeError, tomllib.TOMLDecodeError, RecursionError) as error:
-        reason = str(error) if str(error).isprintable() else type(error).__name__
-        return [f"{FILE} could not be read: {reason}."]
+        data = read_toml_file(path, LARGEST_FILE)
+    except (OSError, ValueError) as fault:
+        return [f"{FILE} could not be read: {reason(fault)}."]
     problems = [
         f"{FILE}: “{_shown(key)}” is not known here; write [names] or [blends.NAME]."
         for key in data
