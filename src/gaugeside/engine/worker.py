@@ -10,9 +10,11 @@ import json
 import os
 import queue
 import signal
+import stat
 import sys
 import threading
 import traceback
+from contextlib import suppress
 from pathlib import Path
 from typing import BinaryIO
 
@@ -38,17 +40,26 @@ def _take_over_outputs(log: str) -> int:
     answers_to = os.dup(1)
     target = os.open(os.devnull, os.O_WRONLY)
     if log:
-        try:
-            Path(log).parent.mkdir(parents=True, exist_ok=True, mode=0o700)
-            flags = os.O_WRONLY | os.O_CREAT | os.O_APPEND
-            if os.path.exists(log) and os.path.getsize(log) > _LARGEST_LOG:
-                flags |= os.O_TRUNC
-            target = os.open(log, flags, 0o600)
-        except OSError:
-            pass  # Without a log the program still works; there is nobody here to tell.
+        # Without a log the program still works; there is nobody here to tell.
+        with suppress(OSError, ValueError):
+            target = _opened(Path(log))
     os.dup2(target, 1)
     os.dup2(target, 2)
     return answers_to
+
+
+def _opened(log: Path) -> int:
+    """Open the log to append, emptied when it has grown large; OSError for a link, a pipe, anything but a file."""
+    log.parent.mkdir(parents=True, exist_ok=True, mode=0o700)
+    # A pipe that nobody reads would hold the helper up for ever, a link leads into a file of another purpose.
+    flags = os.O_WRONLY | os.O_CREAT | os.O_APPEND | os.O_NOFOLLOW | os.O_NONBLOCK
+    target = os.open(log, flags, 0o600)
+    found = os.fstat(target)
+    if not stat.S_ISREG(found.st_mode):
+        raise OSError("not a file")
+    if found.st_size > _LARGEST_LOG:
+        os.ftruncate(target, 0)
+    return target
 
 
 def _listen(source: BinaryIO, asked: queue.Queue[bytes]) -> None:
