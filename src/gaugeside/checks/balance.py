@@ -24,9 +24,9 @@ Solver = Callable[[Values], Any]
 class Relation:
     """One equation.
 
-    words: the equation as a person says it. solvers: for each quantity it ties, how it follows from the others; a
-    solver raises Refusal where no value fits and returns None where the quantity has no meaning. sides: both sides of
-    the equation once all are known.
+    words: how far its sides are apart, as a person says it, with {off} for the figure. solvers: for each quantity it
+    ties, how it follows from the others; a solver raises Refusal where no value fits and returns None where the
+    quantity has no meaning. sides: both sides of the equation once all are known.
     """
 
     words: str
@@ -62,7 +62,10 @@ class Network:
         return [name for name in relation.solvers if self.known.get(name) is None]
 
     def disagreements(self) -> list[tuple[Relation, float]]:
-        """Return the relations that were not needed and do not hold, with how far apart their sides are (relative)."""
+        """Return the relations that were not needed and do not hold, with how far the right side is off the left.
+
+        The left side is the quantity the relation is named after as it is known; the offset is relative to it.
+        """
         used = {id(relation) for relation in self.followed.values()}
         apart = []
         for relation in self.relations:
@@ -70,7 +73,7 @@ class Network:
                 left, right = relation.sides(self.known)
                 size = max(abs(left), abs(right))
                 if size and abs(left - right) > 1e-9 * size:
-                    apart.append((relation, (left - right) / right if right else math.inf))
+                    apart.append((relation, (right - left) / left if left else math.inf))
         return apart
 
 
@@ -174,7 +177,7 @@ def energy(
         return float(sign * (v[amount] - loss) / v[flow])
 
     return Relation(
-        "mass flow times enthalpy difference",
+        f"mass flow times enthalpy difference is {{off}} off the {amount}",
         {
             flow: solve_flow,
             amount: lambda v: v[flow] * gain(v) + loss,
@@ -210,8 +213,7 @@ def isentropic(fluid: Fluid, inlet: Place, outlet: Place) -> Relation:
             first = fluid.state_ph(pressure, enthalpy)
             return float(first.enthalpy + ideal(first, second.pressure) / v["isentropic_efficiency"] - second.enthalpy)
 
-        low = fluid.state_px(pressure, 0.0).enthalpy if pressure < fluid.critical_pressure else second.enthalpy / 2
-        high = second.enthalpy
+        low, high = _coldest_enthalpy(fluid, pressure), second.enthalpy
         for _ in range(60):
             try:
                 apart(high)
@@ -222,13 +224,21 @@ def isentropic(fluid: Fluid, inlet: Place, outlet: Place) -> Relation:
         return fluid.state_ph(pressure, _root_at(inlet, apart, low, high))
 
     return Relation(
-        "isentropic efficiency",
+        "the isentropic efficiency by the states is {off} off the one typed",
         {"isentropic_efficiency": solve_efficiency, outlet.name: solve_outlet, inlet.name: solve_inlet},
         lambda v: (
             v["isentropic_efficiency"] * (v[outlet.name].enthalpy - v[inlet.name].enthalpy),
             ideal(v[inlet.name], v[outlet.name].pressure),
         ),
     )
+
+
+def _coldest_enthalpy(fluid: Fluid, pressure: float) -> float:
+    """Return the enthalpy [J/kg] of the coldest liquid the model has at a pressure [Pa]."""
+    try:
+        return fluid.state_pt(pressure, fluid.minimum_temperature + 1e-3).enthalpy
+    except Refusal:
+        return fluid.state_px(pressure, 0.0).enthalpy
 
 
 def swept(fluid: Fluid, inlet: Place) -> Relation:
@@ -245,7 +255,7 @@ def swept(fluid: Fluid, inlet: Place) -> Relation:
         return fluid.state_pt(pressure, _root_at(inlet, apart, low, fluid.maximum_temperature - 1e-6))
 
     return Relation(
-        "displacement times volumetric efficiency times suction density",
+        "displacement times volumetric efficiency times suction density is {off} off the mass flow",
         {
             "mass_flow": lambda v: v["volumetric_efficiency"] * v["displacement"] * v[inlet.name].density,
             "volumetric_efficiency": lambda v: v["mass_flow"] / (v["displacement"] * v[inlet.name].density),
@@ -259,7 +269,7 @@ def swept(fluid: Fluid, inlet: Place) -> Relation:
 def driven() -> Relation:
     """Return power to the refrigerant = electrical power * motor and drive efficiency."""
     return Relation(
-        "electrical power times motor and drive efficiency",
+        "electrical power times motor and drive efficiency is {off} off the power to the refrigerant",
         {
             "power": lambda v: v["electrical_power"] * v["motor_efficiency"],
             "electrical_power": lambda v: v["power"] / v["motor_efficiency"],

@@ -162,7 +162,8 @@ def _say_what_is_missing(setup: Setup, outcome: Outcome) -> None:
     """Set `unresolved` when the balance has blanks left, or had none from the start."""
     blanks = setup.network.blanks(setup.balance)
     if not blanks:
-        if all(name not in setup.network.followed for name in setup.balance.solvers):
+        redundant = all(name not in setup.network.followed for name in setup.balance.solvers)
+        if redundant and setup.component != "liquid-suction":
             _nothing_blank(setup, outcome)
         return
     names = [setup.label(name) for name in blanks]
@@ -176,10 +177,12 @@ def _say_what_is_missing(setup: Setup, outcome: Outcome) -> None:
 
 def _nothing_blank(setup: Setup, outcome: Outcome) -> None:
     typed, found = setup.balance.sides(setup.network.known)
-    apart = f"{100 * (typed - found) / found:+.1f} % apart" if found else "apart"
     if setup.component == "expansion":
-        message = f"Nothing is left blank: the two enthalpies typed are {apart}."
+        # A percentage of an enthalpy would hang on the datum.
+        off = f"{(typed - found) / 1e3:+.2f} kJ/kg"
+        message = f"Nothing is left blank: the outlet enthalpy typed is {off} off the inlet's."
     else:
+        apart = f"{100 * (typed - found) / found:+.1f} % apart" if found else "apart"
         message = (
             f"Nothing is left blank: mass flow and states give the {setup.label(setup.amount)} already, and the figure "
             f"typed is {apart}."

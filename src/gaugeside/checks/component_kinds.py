@@ -58,8 +58,9 @@ class Setup:
     def explain(self, outcome: Outcome) -> None:
         """Say which redundant readings disagree."""
         for relation, apart in self.network.disagreements():
-            if relation is not self.balance:
-                outcome.note(f"The readings disagree: {relation.words} is {100 * apart:+.1f} % off what is typed.")
+            # The two sides of a liquid-suction exchanger may both be measured; other balances are told with their hint.
+            if relation is not self.balance or self.component == "liquid-suction":
+                outcome.note(f"The readings disagree: {relation.words.format(off=f'{100 * apart:+.1f} %')}.")
 
 
 def set_up(conditions: Conditions, component: str, typed: Mapping[str, Any], outcome: Outcome) -> Setup:
@@ -170,7 +171,7 @@ def _expansion(
         return solve
 
     balance = Relation(
-        "constant enthalpy",
+        "the outlet enthalpy is {off} off the inlet's",
         {"outlet": follow("outlet", "inlet"), "inlet": follow("inlet", "outlet")},
         lambda v: (v["outlet"].enthalpy, v["inlet"].enthalpy),
     )
@@ -209,7 +210,7 @@ def _liquid_suction(fluid: Fluid, known: dict[str, Any], places: Mapping[str, Pl
         return float(share * (v["suction_outlet"].enthalpy - v["suction_inlet"].enthalpy))
 
     exchange = Relation(
-        "heat given off by the liquid and taken up by the suction gas",
+        "heat taken up by the suction gas is {off} off the heat given off by the liquid",
         {
             "suction_outlet": lambda v: places["suction_outlet"].at_enthalpy(
                 fluid, v["suction_inlet"].enthalpy + given_off(v) / share

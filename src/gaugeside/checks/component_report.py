@@ -119,7 +119,8 @@ def _too_good(setup: Setup, outcome: Outcome) -> None:
     for name in ("isentropic_efficiency", "motor_efficiency", "volumetric_efficiency"):
         value = setup.network.known.get(name)
         if value is not None and value > 1 and name in setup.network.followed:
-            outcome.remark(name, "above 100 % cannot be: a reading is wrong, or heat leaves the shell")
+            or_else = ", or heat leaves the shell" if name == "isentropic_efficiency" else ""
+            outcome.remark(name, f"above 100 % cannot be: a reading is wrong{or_else}")
 
 
 def _report_shell(setup: Setup, outcome: Outcome) -> None:

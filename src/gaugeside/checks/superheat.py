@@ -81,13 +81,14 @@ def _suction(conditions: Conditions, readings: Readings, outcome: Outcome) -> No
     pressure = _at_clamp(outcome, readings, "suction", +1)
     if pressure is None:
         return
-    suction_caution(conditions, outcome, pressure)
+    # The gauge sits downstream of the clamp, where the pressure is lowest.
+    suction_caution(conditions, outcome, min(pressure, readings.suction_pressure or pressure))
     dew = _saturated(conditions.fluid, conditions.fluid.dew_at_pressure, pressure, "suction_pressure", outcome)
     if dew is None:
         return
     found: Findings = outcome.findings
     found.saturated_suction_temperature = dew.temperature
-    _say_which(conditions, outcome, "saturated_suction_temperature", "dew", dew)
+    _say_which(conditions, outcome, "saturated_suction_temperature", "dew", dew, readings.suction_pressure_drop)
     if readings.suction_temperature is not None:
         found.superheat = readings.suction_temperature - dew.temperature
         outcome.remark("superheat", "above the dew point {dew}", dew=(dew.temperature, Kind.TEMPERATURE))
@@ -105,7 +106,7 @@ def _liquid(conditions: Conditions, readings: Readings, outcome: Outcome) -> Non
         return
     found: Findings = outcome.findings
     found.saturated_liquid_temperature = bubble.temperature
-    _say_which(conditions, outcome, "saturated_liquid_temperature", "bubble", bubble)
+    _say_which(conditions, outcome, "saturated_liquid_temperature", "bubble", bubble, readings.liquid_pressure_drop)
     if readings.liquid_temperature is not None:
         found.subcooling = bubble.temperature - readings.liquid_temperature
         outcome.remark("subcooling", "below the bubble point {bubble}", bubble=(bubble.temperature, Kind.TEMPERATURE))
@@ -125,7 +126,7 @@ def _discharge(conditions: Conditions, readings: Readings, outcome: Outcome) -> 
         return
     found: Findings = outcome.findings
     found.saturated_discharge_temperature = dew.temperature
-    _say_which(conditions, outcome, "saturated_discharge_temperature", "dew", dew)
+    _say_which(conditions, outcome, "saturated_discharge_temperature", "dew", dew, None)
     if readings.discharge_temperature is not None:
         found.discharge_superheat = readings.discharge_temperature - dew.temperature
         outcome.remark("discharge_superheat", "above the dew point {dew}", dew=(dew.temperature, Kind.TEMPERATURE))
@@ -175,9 +176,14 @@ def _saturated(
         outcome.no_finding = outcome.no_finding or refusal.about(name)
         place = name.split("_", 1)[0].capitalize()
         if pressure >= fluid.critical_pressure:
+            what = (
+                "so no superheat; check the reading, an evaporator works below it."
+                if name == "suction_pressure"
+                else "so no subcooling; the high side is a gas cooler, judged by its outlet temperature."
+            )
             outcome.note(
                 f"{place} pressure {{pressure}} is above the critical {{critical}}: there is no bubble or dew point, "
-                "so no subcooling; the high side is a gas cooler, judged by its outlet temperature.",
+                f"{what}",
                 pressure=(pressure, Kind.PRESSURE),
                 critical=(fluid.critical_pressure, Kind.PRESSURE),
             )
@@ -186,10 +192,15 @@ def _saturated(
         return None
 
 
-def _say_which(conditions: Conditions, outcome: Outcome, name: str, point: str, saturated: State) -> None:
-    """Say which saturation point a temperature is, and for a zeotrope the mean with the other one."""
+def _say_which(
+    conditions: Conditions, outcome: Outcome, name: str, point: str, saturated: State, drop: float | None
+) -> None:
+    """Say which saturation point a temperature is, and for a zeotrope the mean with the other one.
+
+    drop: between gauge and pipe clamp [Pa], None where the two are one place.
+    """
     if conditions.refrigerant.nature != "zeotrope":
-        outcome.remark(name, "at the pressure typed")
+        outcome.remark(name, "at the pressure typed" if drop is None else "at the pipe clamp")
         return
     other = "bubble" if point == "dew" else "dew"
     find_other = conditions.fluid.bubble_at_pressure if point == "dew" else conditions.fluid.dew_at_pressure
