@@ -52,9 +52,7 @@ def test_logbook_path_overrides_the_logbook_alone(tmp_path: Path) -> None:
 
 def test_platform_folders_without_the_override(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.delenv("GAUGESIDE_HOME", raising=False)
-    monkeypatch.setattr(
-        module.platformdirs, "user_config_path", lambda name, appauthor: tmp_path / "c" / name
-    )
+    monkeypatch.setattr(module.platformdirs, "user_config_path", lambda name, appauthor: tmp_path / "c" / name)
     monkeypatch.setattr(module.platformdirs, "user_data_path", lambda name, appauthor: tmp_path / "d" / name)
     monkeypatch.setattr(module.platformdirs, "user_state_path", lambda name, appauthor: tmp_path / "s" / name)
     found = places()
@@ -116,9 +114,7 @@ def test_absent_file_is_the_defaults(tmp_path: Path) -> None:
         ("window", "big", "not a setting of this version"),
     ],
 )
-def test_one_bad_field_is_named_and_the_good_ones_count(
-    tmp_path: Path, name: str, value: object, words: str
-) -> None:
+def test_one_bad_field_is_named_and_the_good_ones_count(tmp_path: Path, name: str, value: object, words: str) -> None:
     path = tmp_path / "settings.json"
     path.write_text(json.dumps({"datum": "nbp", name: value}))
     found, faults = load_settings(path)
@@ -145,9 +141,7 @@ def test_one_bad_field_is_named_and_the_good_ones_count(
     ],
     ids=lambda content: repr(content[:12]),
 )
-def test_damaged_file_is_reported_untouched_and_kept_aside_on_the_next_save(
-    tmp_path: Path, content: bytes
-) -> None:
+def test_damaged_file_is_reported_untouched_and_kept_aside_on_the_next_save(tmp_path: Path, content: bytes) -> None:
     path = tmp_path / "settings.json"
     path.write_bytes(content)
     found, faults = load_settings(path)
