@@ -221,7 +221,7 @@ def test_every_blank_of_cooled_air_is_solved_back(
     heat = first.heat_absorbed if first.heat_absorbed is not None else -first.heat_rejected
     assert heat + (power or 0.0) == pytest.approx(gained, rel=1e-9, abs=1e-6)
     whole = first.sensible_heat + first.latent_heat
-    assert whole == pytest.approx(abs(gained), rel=1e-9, abs=1e-6)
+    assert whole == pytest.approx(abs(heat), rel=1e-9, abs=1e-6)
 
 
 def test_cooled_air_drops_the_water_it_cannot_hold() -> None:

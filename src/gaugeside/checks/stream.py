@@ -308,7 +308,7 @@ def _report(balance: _Balance, readings: Readings, outcome: Outcome) -> None:
     if balance.inlet is not None and balance.outlet is not None:
         found.temperature_difference = balance.outlet - balance.inlet
     _report_heat(balance, outcome)
-    side.report(outcome, balance.inlet, balance.outlet, balance.base_flow, readings.flow_at or "inlet")
+    side.report(outcome, balance.inlet, balance.outlet, balance.base_flow, readings.flow_at or "inlet", balance.power)
     if balance.flow is not None and Kind.VOLUME_FLOW.value in balance.flow and readings.flow_at is None:
         outcome.note("The volume flow is taken as measured at the inlet, none being said.")
     if readings.pressure is None:

@@ -39,9 +39,15 @@ class Side(Protocol):
         """Return the flow of the base from a mass or volume flow."""
 
     def report(
-        self, outcome: Outcome, inlet: float | None, outlet: float | None, base_flow: float | None, place: str
+        self,
+        outcome: Outcome,
+        inlet: float | None,
+        outlet: float | None,
+        base_flow: float | None,
+        place: str,
+        power: float = 0.0,
     ) -> None:
-        """Add findings, notes and cautions; `place` is where a volume flow counts."""
+        """Add findings, notes and cautions; `place` is where a volume flow counts, `power` a fan's or pump's [W]."""
 
 
 def open_side(medium: Medium, pressure: float, readings: Any) -> Side:
@@ -85,7 +91,13 @@ class LiquidSide:
         return flow[Kind.VOLUME_FLOW.value] * self._liquid.density(inlet if self._flow_at == "inlet" else outlet)
 
     def report(
-        self, outcome: Outcome, inlet: float | None, outlet: float | None, base_flow: float | None, place: str
+        self,
+        outcome: Outcome,
+        inlet: float | None,
+        outlet: float | None,
+        base_flow: float | None,
+        place: str,
+        power: float = 0.0,
     ) -> None:
         found = outcome.findings
         at = {"inlet": inlet, "outlet": outlet}
@@ -216,7 +228,13 @@ class AirSide:
         return flow[Kind.VOLUME_FLOW.value] / self._air.volume(temperature, ratio)
 
     def report(
-        self, outcome: Outcome, inlet: float | None, outlet: float | None, base_flow: float | None, place: str
+        self,
+        outcome: Outcome,
+        inlet: float | None,
+        outlet: float | None,
+        base_flow: float | None,
+        place: str,
+        power: float = 0.0,
     ) -> None:
         if inlet is None or outlet is None or not self._settled:
             return
@@ -234,7 +252,7 @@ class AirSide:
         outcome.remark("mass_flow", f"moist air at the {place}")
         outcome.remark("volume_flow", f"at the {place}")
         self._report_water(outcome, outlet, base_flow * (ratios[0] - ratios[1]))
-        self._report_shares(outcome, inlet, outlet, base_flow, min(ratios))
+        self._report_shares(outcome, inlet, outlet, base_flow, min(ratios), power)
 
     def _report_state(self, outcome: Outcome, place: str, temperature: float, ratio: float) -> None:
         found, air = outcome.findings, self._air
@@ -258,11 +276,13 @@ class AirSide:
             outcome.findings.water_taken_up = -flow
             outcome.note("The water taken up is counted as fed at the outlet temperature.")
 
-    def _report_shares(self, outcome: Outcome, inlet: float, outlet: float, base_flow: float, ratio: float) -> None:
-        """Split the air's heat: sensible along the lower humidity ratio, latent the rest."""
+    def _report_shares(
+        self, outcome: Outcome, inlet: float, outlet: float, base_flow: float, ratio: float, power: float
+    ) -> None:
+        """Split the heat through the wall: sensible along the lower humidity ratio less the fan's, latent the rest."""
         found = outcome.findings
-        total = base_flow * self.gain(inlet, outlet)
-        sensible = base_flow * (self._air.enthalpy(outlet, ratio) - self._air.enthalpy(inlet, ratio))
+        total = base_flow * self.gain(inlet, outlet) - power
+        sensible = base_flow * (self._air.enthalpy(outlet, ratio) - self._air.enthalpy(inlet, ratio)) - power
         sense = 1.0 if total >= 0 else -1.0
         found.sensible_heat, found.latent_heat = sense * sensible, sense * (total - sensible)
         for name in ("sensible_heat", "latent_heat"):
