@@ -1,0 +1,212 @@
+"""What the screen costs on a slow link, and how soon it answers, beside a bare app of the same screen library.
+
+    python tests/bench/terminal.py [--json]
+
+A pseudo-terminal of 80 x 24, xterm-256color. Bytes are counted as the program sends them: the first screen, three idle
+seconds, each typed key with everything that follows within a fifth of a second, each Tab. Times are medians of several
+runs, taken in turn with the bare app's and told as ratios to them or to the import of the property library.
+"""
+
+from __future__ import annotations
+
+import argparse
+import json
+import statistics
+import subprocess
+import sys
+import tempfile
+import time
+from collections.abc import Callable
+from pathlib import Path
+
+# In the place of this folder, where this file itself has the name of what is imported.
+sys.path[0] = str(Path(__file__).resolve().parents[1])
+
+from terminal.apps import READY, app
+from terminal.harness import Terminal
+
+READINGS = ("38 psig", "28 F", "14.1 bar g", "29 C", "15 bar g", "65 C")
+PAUSE = 0.2  # [s] between keys, as fast as most people type
+# Bytes at most.
+BUDGET = {"key_mean": 400, "tab_mean": 400, "tab_worst": 400, "idle": 0, "first_screen": 9000}
+BARE = [sys.executable, str(Path(__file__).with_name("bare_app.py"))]
+
+
+def sent(shown: Terminal, keys: str | bytes) -> int:
+    """Return the bytes that follow some keys."""
+    shown.mark()
+    shown.send(keys)
+    shown.pump(PAUSE)
+    return shown.bytes_since_mark()
+
+
+def byte_figures(open_it: Callable[[Path], Terminal], ready: str) -> dict[str, float]:
+    """Return the bytes of one program."""
+    with tempfile.TemporaryDirectory() as folder, open_it(Path(folder)) as shown:
+        shown.wait_for(ready)
+        shown.pump(1.0)
+        figures: dict[str, float] = {"first_screen": len(shown.raw)}
+        shown.mark()
+        shown.pump(3.0)
+        figures["idle"] = shown.bytes_since_mark()
+        keys, tabs = [], []
+        for reading in READINGS:
+            keys += [sent(shown, key) for key in reading]
+            tabs.append(sent(shown, "\t"))
+        for name, counts in (("key", keys), ("tab", tabs)):
+            figures[f"{name}_mean"] = round(statistics.mean(counts), 1)
+            figures[f"{name}_median"] = statistics.median(counts)
+            figures[f"{name}_worst"] = max(counts)
+        return figures
+
+
+def until(shown: Terminal, condition: Callable[[], object], start: float) -> float:
+    """Return the seconds from `start` until something is on the screen."""
+    while not condition():
+        shown.pump(0.0005)
+        if time.perf_counter() - start > 30:
+            raise SystemExit(f"nothing came:\n{shown.framed()}")
+    return time.perf_counter() - start
+
+
+def first_frame(command: Callable[[Path], Terminal], ready: str) -> float:
+    """Return the seconds from the start of the process to its first whole screen."""
+    with tempfile.TemporaryDirectory() as folder:
+        start = time.perf_counter()
+        with command(Path(folder)) as shown:
+            return until(shown, lambda: ready in shown.screen_text(), start)
+
+
+def first_answer() -> float:
+    """Return the seconds from the start to the answer to readings that were on the form, as after a break."""
+    with tempfile.TemporaryDirectory() as folder:
+        home = Path(folder)
+        draft = {"pane": "superheat", "forms": {"superheat": {"texts": {"suction_pressure": "2 bar g"}, "units": {}}}}
+        (home / "gaugeside").mkdir()
+        (home / "gaugeside" / "settings.json").write_text(json.dumps({"refrigerant": "R-134a"}))
+        (home / "gaugeside" / "draft.json").write_text(json.dumps(draft))
+        start = time.perf_counter()
+        with app(home) as shown:
+            return until(shown, lambda: "saturated suction" in shown.screen_text(), start)
+
+
+def key_to_answer(refrigerant: str) -> float:
+    """Return the median seconds from a key to the repainted answer."""
+    with tempfile.TemporaryDirectory() as folder, app(Path(folder), refrigerant=refrigerant) as shown:
+        shown.wait_for(READY)
+        shown.send("12 C")
+        shown.settle()
+        shown.send("\x152.0 bar g\t5 C")
+        shown.wait_for("superheat  ")
+        shown.send(b"\x1b[A\x15")
+        shown.send("2.")
+        times = []
+        for number in range(40):
+            shown.settle(0.1)
+            before = shown.line_with("saturated suction")
+            start = time.perf_counter()
+            # A digit, then the next one in its place: every second key is measured.
+            shown.send(str(number % 9 + 1))
+            times.append(until(shown, lambda before=before: before != answer_line(shown), start))
+            shown.settle(0.1)
+            shown.send("\x7f")
+        return statistics.median(times)
+
+
+def answer_line(shown: Terminal) -> str:
+    """Return the line of the saturated suction temperature; an empty screen is no answer."""
+    found = [line for line in shown.lines() if "saturated suction" in line]
+    return found[0] if found else next((line for line in shown.lines() if not line), "")
+
+
+def key_to_echo() -> float:
+    """Return the bare app's median seconds from a key to its repainted result."""
+    with tempfile.TemporaryDirectory() as folder, Terminal(BARE, Path(folder)) as shown:
+        shown.wait_for("leave")
+        shown.pump(0.5)
+        times = []
+        text = ""
+        for number in range(40):
+            text += str(number % 10)
+            start = time.perf_counter()
+            shown.send(text[-1])
+            times.append(until(shown, lambda text=text: f"result {text}" in shown.screen_text(), start))
+            shown.pump(0.1)
+        return statistics.median(times)
+
+
+def library_import() -> float:
+    """Return the seconds that a process takes to import the property library whole."""
+    start = time.perf_counter()
+    subprocess.run([sys.executable, "-c", "import CoolProp"], check=True)
+    return time.perf_counter() - start
+
+
+def time_figures(rounds: int) -> dict[str, float]:
+    """Return medians [s] and their ratios."""
+    frames: list[float] = []
+    bare_frames: list[float] = []
+    answers: list[float] = []
+    imports: list[float] = []
+    for _ in range(rounds):
+        frames.append(first_frame(app, READY))
+        bare_frames.append(first_frame(lambda home: Terminal(BARE, home), "leave"))
+        answers.append(first_answer())
+        imports.append(library_import())
+    pure, blend, echo = key_to_answer("R-134a"), key_to_answer("R-454C"), key_to_echo()
+    figures = {
+        "first_frame": statistics.median(frames),
+        "bare_first_frame": statistics.median(bare_frames),
+        "first_answer": statistics.median(answers),
+        "library_import": statistics.median(imports),
+        "key_to_answer_pure": pure,
+        "key_to_answer_blend": blend,
+        "bare_key_to_echo": echo,
+    }
+    return {
+        **{f"{name}_s": round(value, 4) for name, value in figures.items()},
+        "first_frame_ratio": round(figures["first_frame"] / figures["bare_first_frame"], 2),
+        "first_answer_ratio": round(figures["first_answer"] / figures["library_import"], 2),
+        "key_to_answer_pure_ratio": round(pure / echo, 2),
+        "key_to_answer_blend_ratio": round(blend / echo, 2),
+    }
+
+
+def main() -> int:
+    """Print the tables; 1 when a byte budget is exceeded."""
+    parser = argparse.ArgumentParser(description=__doc__)
+    parser.add_argument("--json", action="store_true")
+    parser.add_argument("--rounds", type=int, default=7, help="of each start that is timed")
+    arguments = parser.parse_args()
+    columns = {
+        "program": byte_figures(lambda home: app(home, refrigerant="R-454C"), READY),
+        "terminal colours": byte_figures(lambda home: app(home, refrigerant="R-454C", theme="terminal colours"), READY),
+        "bare app": byte_figures(lambda home: Terminal(BARE, home), "leave"),
+    }
+    times = time_figures(arguments.rounds)
+    over = [
+        name
+        for name, most in BUDGET.items()
+        for which in ("program", "terminal colours")
+        if columns[which][name] > most
+    ]
+    if arguments.json:
+        figures = {
+            f"{which}_{name}".replace(" ", "_"): value for which, row in columns.items() for name, value in row.items()
+        }
+        print(json.dumps({"figures": {**figures, **times}}))
+        return 1 if over else 0
+    print(f"{'bytes':<16}{'at most':>9}" + "".join(f"{which:>18}" for which in columns))
+    for name in columns["program"]:
+        most = str(BUDGET.get(name, ""))
+        print(f"{name:<16}{most:>9}" + "".join(f"{row[name]:>18g}" for row in columns.values()))
+    print()
+    for name, value in times.items():
+        print(f"{name:<28}{value:>10g}")
+    if over:
+        print("over the budget:", ", ".join(over))
+    return 1 if over else 0
+
+
+if __name__ == "__main__":
+    sys.exit(main())
