@@ -95,12 +95,13 @@ def with_linked_entries(values: Mapping[str, Any], logbook: Logbook) -> dict[str
 
 
 def _stage(entry: Entry) -> dict[str, float]:
-    """Return heat absorbed, heat rejected and power of a kept machine; electrical power where it is known."""
+    """Return heat absorbed, heat rejected and the powers of a kept machine, each where it is known."""
     found = {name: item["value"] for name, item in entry.findings.items() if isinstance(item.get("value"), float | int)}
-    power = found.get("electrical_power", found.get("power_to_refrigerant"))
-    if entry.check != "machine" or power is None or not {"heat_absorbed", "heat_rejected"} <= set(found):
+    wanted = ("heat_absorbed", "heat_rejected", "electrical_power", "power_to_refrigerant")
+    stage = {name: float(found[name]) for name in wanted if name in found}
+    if entry.check != "machine" or len(stage) < 3 or not {"heat_absorbed", "heat_rejected"} <= set(stage):
         raise Refusal(
             f"Entry {entry.number} is no machine sheet with heat absorbed, heat rejected and power.",
             "Keep the lower stage's machine sheet once it shows all three, and give its number.",
         )
-    return {"heat_absorbed": found["heat_absorbed"], "heat_rejected": found["heat_rejected"], "power": float(power)}
+    return stage

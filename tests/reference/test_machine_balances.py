@@ -78,7 +78,7 @@ def test_two_stages_with_a_flash_chamber():
         stage_below={
             "heat_absorbed": lower["heat_absorbed"],
             "heat_rejected": lower["heat_rejected"],
-            "power": lower["power_to_refrigerant"],
+            "power_to_refrigerant": lower["power_to_refrigerant"],
         },
     )
     # The heat balance of the two sheets must give the one kilogram through the condenser of the publication.

@@ -5,6 +5,9 @@ from __future__ import annotations
 import pytest
 from CoolProp.CoolProp import PropsSI
 
+from gaugeside.checks.perform import perform, request
+from gaugeside.checks.sheet import Answer
+from gaugeside.quantities import SEA_LEVEL, Dress
 from unit.check_tools import ask, number, refusal, said
 
 ATMOSPHERE = 101325.0
@@ -116,3 +119,69 @@ def test_a_fan_between_the_readings_is_part_of_the_sensible_heat() -> None:
     assert number(found, "latent_heat") / 1e3 == pytest.approx(latent, rel=0.02)
     whole = number(found, "sensible_heat") + number(found, "latent_heat")
     assert whole == pytest.approx(number(found, "heat_rejected"), rel=1e-12)
+
+
+# An invented R-134a machine: 2.0 and 10.1 bar abs, saturated at -10.08 and 39.8 °C.
+MACHINE = {
+    "suction_pressure": "2.0 bar abs", "suction_temperature": "0 C", "discharge_pressure": "10.1 bar abs",
+    "discharge_temperature": "68 C", "liquid_temperature": "33 C",
+}  # fmt: skip
+
+
+def test_suction_colder_than_its_dew_point_gives_no_heats() -> None:
+    """Pressure and temperature alone would make the suction gas a liquid and the heat absorbed negative."""
+    found = ask("machine", "R-134a", **{**MACHINE, "suction_temperature": "-11 C"}, heat_rejected="17 kW")
+    dew = PropsSI("T", "P", 2e5, "Q", 1, "R134a")
+    assert number(found, "superheat") == pytest.approx(262.15 - dew, abs=1e-6)
+    assert {"heat_absorbed", "isentropic_efficiency", "volumetric_capacity"}.isdisjoint(found.findings)
+    assert "suction pipe reads below the dew point" in said(found)
+    assert "suction (vapour, not a pipe below the dew point)" in said(found)
+
+
+def test_liquid_warmer_than_its_bubble_point_gives_no_heats() -> None:
+    found = ask("machine", "R-134a", **{**MACHINE, "liquid_temperature": "42 C"}, mass_flow="0.14 kg/s")
+    bubble = PropsSI("T", "P", 10.1e5, "Q", 0, "R134a")
+    assert number(found, "subcooling") == pytest.approx(bubble - 315.15, abs=1e-6)
+    assert {"heat_absorbed", "heat_rejected", "flash_fraction"}.isdisjoint(found.findings)
+    work = 0.14 * (r134a("H", 10.1e5, 68) - r134a("H", 2e5, 0))
+    assert number(found, "power_to_refrigerant") == pytest.approx(work, rel=1e-7)
+
+
+def test_shell_loss_hides_the_isentropic_efficiency_of_the_machine_too() -> None:
+    found = ask("machine", "R-134a", **MACHINE, electrical_power="8 kW", drive="hermetic", shell_loss="0.4 kW")
+    assert "isentropic_efficiency" not in found.findings
+    assert "the compression is not adiabatic" in said(found)
+    flow = 7600 / (r134a("H", 10.1e5, 68) - r134a("H", 2e5, 0))
+    assert number(found, "mass_flow") == pytest.approx(flow, rel=1e-7)
+
+
+def test_limit_of_a_cascade_is_that_of_both_stages() -> None:
+    """By hand: 80 kW at -25 °C to 25 °C take at least 80 kW x 50 / 248.15; both draw 20 + 25 kW."""
+    below = {"heat_absorbed": 80e3, "heat_rejected": 100e3, "electrical_power": 20e3, "power_to_refrigerant": 20e3}
+    asked = request(
+        "machine",
+        "R-717",
+        {"suction_pressure": 2.9e5, "stage_below": below, "electrical_power": 25e3, "drive": "hermetic",
+         "space_temperature": 248.15, "sink_temperature": 298.15},
+        site=SEA_LEVEL,
+        datum="iir",
+        dress=Dress(),
+    )  # fmt: skip
+    found = Answer.from_plain(perform(asked)["answer"])
+    assert number(found, "minimum_power") == pytest.approx(80e3 * 50 / 248.15, rel=1e-12)
+    assert number(found, "overall_cop_refrigerator") == pytest.approx(80 / 45, rel=1e-12)
+    assert number(found, "second_law_efficiency") == pytest.approx(80 / 45 * 50 / 248.15, rel=1e-12)
+    # The upper refrigerant is warmer than the space, as it must be.
+    assert "cooled space is not warmer" not in said(found)
+
+
+def test_heat_gained_by_the_suction_line_is_no_cooling() -> None:
+    """Heat rejected and power give what enters; evaporator and line share it by their enthalpy changes."""
+    typed = {name: text for name, text in MACHINE.items() if name != "discharge_temperature"}
+    found = ask(
+        "machine", "R-134a", **typed, evaporator_outlet_temperature="-6 C", heat_rejected="30 kW",
+        electrical_power="8 kW", drive="hermetic",
+    )  # fmt: skip
+    liquid, leaving, suction = r134a("H", 10.1e5, 33), r134a("H", 2e5, -6), r134a("H", 2e5, 0)
+    assert number(found, "mass_flow") == pytest.approx(22e3 / (suction - liquid), rel=1e-7)
+    assert number(found, "heat_absorbed") == pytest.approx(22e3 * (leaving - liquid) / (suction - liquid), rel=1e-7)

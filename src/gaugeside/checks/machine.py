@@ -116,11 +116,11 @@ def run(conditions: Conditions, readings: Readings) -> Outcome:
     flows = balance(conditions, circuit, typed, readings.drive, outcome)
     if below is not None and readings.heat_absorbed is None:
         flows.sources["heat_absorbed"] = "rejected by the stage below"
-    _report_circuit(conditions, circuit, outcome)
+    _report_circuit(conditions, circuit, flows.shell_loss, outcome)
     _report_flows(flows, circuit, outcome)
     if below is not None:
         _report_both(below, flows, outcome)
-    _report_limit(flows, circuit, typed, outcome)
+    _report_limit(flows, circuit, typed, below, outcome)
     _name_missing(circuit, flows, outcome)
     outcome.note(f"Enthalpies: {conditions.fluid.datum_note}. Steady flow; kinetic and potential energy neglected.")
     model_note(conditions, outcome)
@@ -143,23 +143,25 @@ def _take_up(below: Mapping[str, float], typed: dict[str, float], outcome: Outco
 
 def _report_both(below: Mapping[str, float], flows: Flows, outcome: Outcome) -> None:
     """Add what both stages do together: heat absorbed below over the power of both."""
-    work = flows.electrical if flows.electrical is not None else flows.power
     found: Findings = outcome.findings
-    if work is None:
+    for own, name in ((flows.electrical, "electrical_power"), (flows.power, "power_to_refrigerant")):
+        if own is not None and name in below:
+            found.overall_power = own + below[name]
+            found.overall_cop_refrigerator = below["heat_absorbed"] / found.overall_power
+            outcome.remark("overall_power", name.replace("_", " "))
+            outcome.remark("overall_cop_refrigerator", "of the lower heat absorbed")
+            return
+    if flows.electrical is None and flows.power is None:
         return
-    found.overall_power = work + below["power"]
-    found.overall_cop_refrigerator = below["heat_absorbed"] / found.overall_power
-    outcome.remark("overall_cop_refrigerator", "of the lower heat absorbed")
+    outcome.note("No power of both stages: one sheet knows the electrical power, the other that to the refrigerant.")
 
 
-def _report_circuit(conditions: Conditions, circuit: Circuit, outcome: Outcome) -> None:
+def _report_circuit(conditions: Conditions, circuit: Circuit, shell_loss: float, outcome: Outcome) -> None:
     found: Findings = outcome.findings
     found.superheat, found.subcooling = circuit.superheat, circuit.subcooling
-    found.isentropic_efficiency = circuit.isentropic_efficiency(conditions.fluid)
     if circuit.superheat is not None:
         outcome.remark("superheat", "at the compressor")
-    if found.isentropic_efficiency is not None and not 0.2 <= found.isentropic_efficiency <= 1:
-        outcome.remark("isentropic_efficiency", "not plausible: a pressure or a temperature is off")
+    _report_efficiency(circuit.isentropic_efficiency(conditions.fluid), shell_loss, outcome)
     suction, discharge = circuit.pressures.get("suction"), circuit.pressures.get("discharge")
     if suction is not None:
         suction_caution(conditions, outcome, suction)
@@ -172,6 +174,22 @@ def _report_circuit(conditions: Conditions, circuit: Circuit, outcome: Outcome) 
         found.flash_fraction = after_valve.vapour_fraction
     if circuit.states:
         outcome.tables.append(_points(circuit))
+
+
+def _report_efficiency(efficiency: float | None, shell_loss: float, outcome: Outcome) -> None:
+    """Add the isentropic efficiency of an adiabatic compression."""
+    if efficiency is None:
+        return
+    if shell_loss:
+        outcome.note(
+            "With heat lost from the shell no isentropic efficiency is given: the compression is not adiabatic."
+        )
+        return
+    outcome.findings.isentropic_efficiency = efficiency
+    if efficiency > 1:
+        outcome.remark("isentropic_efficiency", "above 100 % cannot be: a reading is wrong, or heat leaves the shell")
+    elif efficiency < 0.2:
+        outcome.remark("isentropic_efficiency", "not plausible: a pressure or a temperature is off")
 
 
 def _points(circuit: Circuit) -> Table:
@@ -210,11 +228,19 @@ def _report_flows(flows: Flows, circuit: Circuit, outcome: Outcome) -> None:
         found.volumetric_capacity = effect * suction.density
 
 
-def _report_limit(flows: Flows, circuit: Circuit, typed: dict[str, float], outcome: Outcome) -> None:
-    """Add the reversible limit between the cooled space and the heat sink (Carnot, temperatures in kelvin)."""
+def _report_limit(
+    flows: Flows, circuit: Circuit, typed: Mapping[str, float], below: Mapping[str, float] | None, outcome: Outcome
+) -> None:
+    """Add the reversible limit between the cooled space and the heat sink (Carnot, temperatures in kelvin).
+
+    With a stage below, the space is that stage's, and the limit holds for both together.
+    """
     space, sink = typed.get("space_temperature"), typed.get("sink_temperature")
     found: Findings = outcome.findings
-    _not_the_refrigerant(circuit, space, sink, outcome)
+    _not_the_refrigerant(circuit, None if below else space, sink, outcome)
+    absorbed, reached = flows.absorbed, found.cop_refrigerator
+    if below is not None:
+        absorbed, reached = below["heat_absorbed"], found.overall_cop_refrigerator
     if space is None or sink is None:
         return
     if sink <= space:
@@ -222,10 +248,13 @@ def _report_limit(flows: Flows, circuit: Circuit, typed: dict[str, float], outco
         return
     found.reversible_cop_refrigerator = space / (sink - space)
     outcome.remark("reversible_cop_refrigerator", "cooled space to heat sink")
-    if flows.absorbed is not None:
-        found.minimum_power = flows.absorbed / found.reversible_cop_refrigerator
-    if found.cop_refrigerator is not None:
-        found.second_law_efficiency = found.cop_refrigerator / found.reversible_cop_refrigerator
+    if absorbed is not None:
+        found.minimum_power = absorbed / found.reversible_cop_refrigerator
+    if reached is not None:
+        found.second_law_efficiency = reached / found.reversible_cop_refrigerator
+        if below is not None:
+            for name in ("minimum_power", "second_law_efficiency"):
+                outcome.remark(name, "of both stages together")
         if found.second_law_efficiency > 1:
             outcome.remark("second_law_efficiency", "above 100 % cannot be: a reading is wrong")
 

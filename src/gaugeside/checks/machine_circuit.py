@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 
 from gaugeside.checks.sheet import Conditions, Outcome
 from gaugeside.errors import OutOfRange, Refusal
+from gaugeside.refrigerants import Region
 
 if TYPE_CHECKING:
     from gaugeside.refrigerants import Fluid, State
@@ -18,7 +19,7 @@ class Circuit:
     """States by place, in the order of the flow: suction, discharge, liquid, after valve, evaporator outlet.
 
     pressures [Pa] by place. superheat, subcooling [K]. evaporating, condensing: dew temperatures [K]. missing: what
-    each place still lacks.
+    each place still lacks. misread: what pressure and pipe say where that cannot be.
     """
 
     states: dict[str, State] = field(default_factory=dict)
@@ -28,6 +29,11 @@ class Circuit:
     evaporating: float | None = None
     condensing: float | None = None
     missing: dict[str, str] = field(default_factory=dict)
+    misread: dict[str, State] = field(default_factory=dict)
+
+    def read(self, place: str) -> State | None:
+        """Return what pressure and pipe of a place say, believed or not."""
+        return self.states.get(place) or self.misread.get(place)
 
     @property
     def refrigerating_effect(self) -> float | None:
@@ -85,7 +91,8 @@ def trace(conditions: Conditions, typed: Mapping[str, float], outcome: Outcome) 
     ):
         pressure, temperature = circuit.pressures.get(place), typed.get(temperature_name)
         if pressure is not None and temperature is not None:
-            circuit.states[place] = _state(fluid, pressure, temperature, temperature_name, outcome)
+            state = _state(fluid, pressure, temperature, temperature_name, outcome)
+            _accept(circuit, place, state, outcome)
         elif place != "evaporator outlet":
             lacks = [word for word, value in (("pressure", pressure), ("pipe", temperature)) if value is None]
             circuit.missing[place] = " and ".join(lacks)
@@ -94,9 +101,8 @@ def trace(conditions: Conditions, typed: Mapping[str, float], outcome: Outcome) 
     if liquid is not None and low is not None:
         circuit.states["after valve"] = fluid.state_ph(low, liquid.enthalpy)
         outcome.note("The valve is taken at constant enthalpy.")
-        _check_liquid(circuit, outcome)
     if "evaporator outlet" not in circuit.states and "suction" in circuit.states:
-        outcome.note("Evaporator and suction line count as one: no evaporator outlet is typed.")
+        outcome.note("Evaporator and suction line count as one: no evaporator outlet is known.")
     order = ("suction", "discharge", "liquid", "after valve", "evaporator outlet")
     circuit.states = {place: circuit.states[place] for place in order if place in circuit.states}
     return circuit
@@ -143,6 +149,30 @@ def _state(fluid: Fluid, pressure: float, temperature: float, name: str, outcome
         raise refusal.about(name) from None
 
 
+def _accept(circuit: Circuit, place: str, state: State, outcome: Outcome) -> None:
+    """Take a state into the circuit, unless pressure and pipe make it the phase that cannot be there.
+
+    A pipe half a kelvin past saturation would turn gas into liquid, and every heat with it.
+    """
+    liquid = place == "liquid"
+    beyond = "above the bubble point" if liquid else "below the dew point"
+    if state.region is (Region.SUPERHEATED if liquid else Region.SUBCOOLED):
+        outcome.note(
+            f"The {place} pipe reads {beyond}: it is not {'liquid' if liquid else 'vapour'} as typed, so no state is "
+            "taken there. The flow is two-phase, a sensor is off, or the refrigerant or the gauge/absolute reference "
+            "is wrong."
+        )
+        circuit.missing[place] = f"{'liquid' if liquid else 'vapour'}, not a pipe {beyond}"
+        circuit.misread[place] = state
+        return
+    if state.region is Region.TWO_PHASE:
+        outcome.note(
+            f"The {place} pipe lies between bubble and dew point: the state there is wet, and its vapour fraction "
+            "hangs on a few tenths of a kelvin."
+        )
+    circuit.states[place] = state
+
+
 def _saturations(conditions: Conditions, circuit: Circuit) -> None:
     """Fill superheat, subcooling and the dew temperatures, where there is saturation at all."""
     fluid = conditions.fluid
@@ -155,21 +185,12 @@ def _saturations(conditions: Conditions, circuit: Circuit) -> None:
         except OutOfRange:
             continue
         setattr(circuit, name, dew)
-        if place == "suction" and "suction" in circuit.states:
-            circuit.superheat = circuit.states["suction"].temperature - dew
-    if "liquid" in circuit.states:
-        liquid = circuit.states["liquid"]
+        suction = circuit.read("suction")
+        if place == "suction" and suction is not None:
+            circuit.superheat = suction.temperature - dew
+    liquid = circuit.read("liquid")
+    if liquid is not None:
         try:
             circuit.subcooling = fluid.bubble_at_pressure(liquid.pressure).temperature - liquid.temperature
         except OutOfRange:
             circuit.subcooling = None
-
-
-def _check_liquid(circuit: Circuit, outcome: Outcome) -> None:
-    if circuit.subcooling is not None and circuit.subcooling < 0:
-        outcome.note(
-            "The liquid line reading lies above the bubble point: it is not liquid as typed, and the heats below are "
-            "as wrong as that reading."
-        )
-    if circuit.superheat is not None and circuit.superheat < 0:
-        outcome.note("The suction reading lies below the dew point: the state there is not settled vapour.")

@@ -184,6 +184,12 @@ def _from_pairs(flows: Flows, typed: Mapping[str, float], circuit: Circuit, outc
     words = "balance, Q_H = Q_L + W"
     before = (flows.absorbed, flows.rejected, flows.power)
     if flows.absorbed is None and flows.rejected is not None and flows.power is not None:
+        effect, entering = circuit.refrigerating_effect or 0.0, flows.rejected - flows.power + flows.shell_loss
+        if flows.mass_flow is None and min(effect, effect + circuit.line_gain, entering) > 0:
+            # Evaporator and suction line share what enters, in the ratio of their enthalpy changes.
+            flows.mass_flow = entering / (effect + circuit.line_gain)
+            flows.sources["mass_flow"] = "from the balance"
+            extra = flows.mass_flow * circuit.line_gain - flows.shell_loss
         flows.absorbed = flows.rejected - flows.power - extra
         flows.sources["heat_absorbed"] = words
     elif flows.rejected is None and flows.absorbed is not None and flows.power is not None:
