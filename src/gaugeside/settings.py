@@ -342,7 +342,7 @@ def _made_plain(found: Any) -> Any:
 
 
 def _shown(value: object) -> str:
-    text = json.dumps(value, ensure_ascii=False)
+    text = "".join(c if c.isprintable() else "?" for c in json.dumps(value, ensure_ascii=False))
     return text if len(text) <= 40 else text[:37] + "..."
 
 

@@ -1,7 +1,12 @@
-"""What faults cost, counted by hand: python tests/bench/faults.py [--rounds N] [--seed N] [--json].
+"""What faults cost, counted by hand: python tests/bench/faults.py [--rounds N] [--inputs N] [--kills N] [--json].
 
 (a) Two writers keep entries in one logbook until both are killed with SIGKILL at a random moment. Every
 entry that a writer acknowledged must be there, whole, in a file that passes its integrity check.
+(b) Random and mutated inputs at every door through which text comes in. Each is taken as what it means, by an
+independent oracle, or refused with one sentence.
+(c) The helper process is killed while readings are typed. What is shown then is the answer to what is typed; a
+tenth as many kills are of a program in a real terminal.
+A part is left out with the number 0.
 """
 
 from __future__ import annotations
@@ -116,25 +121,71 @@ def kill_writers(folder: Path, rounds: int, seed: int) -> Count:
     return count
 
 
+def inputs_at_the_doors(inputs: int, seed: int, folder: Path) -> tuple[dict[str, float], list[str]]:
+    """Run (b); return the counts by door and in all, and what went wrong."""
+    from bench import fault_inputs  # here, because a run by hand must set the path first
+
+    began = time.monotonic()
+    tallies = fault_inputs.put(inputs, seed, folder)
+    names = ("inputs", "taken", "refused", "crashes", "misreadings", "beyond_the_oracle")
+    figures: dict[str, float] = {
+        f"{door}_{name}": getattr(tally, name) for door, tally in tallies.items() for name in names[:5]
+    }
+    figures |= {f"all_{name}": sum(getattr(tally, name) for tally in tallies.values()) for name in names}
+    figures["seconds"] = round(time.monotonic() - began, 1)
+    return figures, [example for tally in tallies.values() for example in tally.examples]
+
+
+def helper_kills(kills: int, seed: int, folder: Path) -> tuple[dict[str, float], list[str]]:
+    """Run (c); return the counts and what went wrong."""
+    from bench import fault_kills
+
+    figures: dict[str, float] = {}
+    wrong: list[str] = []
+    for name, count in (
+        ("engine", fault_kills.kill_while_typing(kills, seed)),
+        ("screen", fault_kills.kill_on_the_screen(kills // 10, seed, folder)),
+    ):
+        wrong += count.examples
+        figures |= {f"{name}_{what}": round(n, 2) for what, n in vars(count).items() if what != "examples"}
+    return figures, wrong
+
+
 def main() -> None:
     """Run what was asked for and print the counts."""
     parser = argparse.ArgumentParser(description=__doc__)
     parser.add_argument("--rounds", type=int, default=500)
+    parser.add_argument("--inputs", type=int, default=200_000)
+    parser.add_argument("--kills", type=int, default=100)
     parser.add_argument("--seed", type=int, default=1)
     parser.add_argument("--json", action="store_true")
     parser.add_argument("--write", nargs=2, metavar=("PATH", "NAME"), help=argparse.SUPPRESS)
     asked = parser.parse_args()
     if asked.write:
         write_for_ever(Path(asked.write[0]), asked.write[1])
-    with tempfile.TemporaryDirectory() as folder:
-        count = kill_writers(Path(folder), asked.rounds, asked.seed)
-    figures = {f"logbook_kill_{name}": value for name, value in vars(count).items()}
+    figures: dict[str, float] = {}
+    wrong: list[str] = []
+    with tempfile.TemporaryDirectory() as name:
+        folder = Path(name)
+        if asked.rounds:
+            count = kill_writers(folder, asked.rounds, asked.seed)
+            figures |= {f"logbook_kill_{name}": value for name, value in vars(count).items()}
+        for part, run, number in (
+            ("inputs", inputs_at_the_doors, asked.inputs), ("helper_kill", helper_kills, asked.kills),
+        ):  # fmt: skip
+            if number:
+                found, faults = run(number, asked.seed, folder)
+                figures |= {f"{part}_{name}": value for name, value in found.items()}
+                wrong += faults
+    for line in wrong:
+        print(line, file=sys.stderr)
     if asked.json:
         print(json.dumps({"figures": figures}))
     else:
         for name, value in figures.items():
-            print(f"{name:32}{value:>10}")
+            print(f"{name:44}{value:>10}")
 
 
 if __name__ == "__main__":
+    sys.path[0] = str(Path(__file__).resolve().parents[1])
     main()
