@@ -57,6 +57,7 @@ _SENSES = {"g": "g gauge gage", "abs": "a abs absolute", "vac": "v vac vacuum"}
 # Spellings whose case alone tells a thousand million apart.
 _FORBIDDEN = ("mPa", "Mbar", "mW")
 
+_NOT_HEARD = re.compile(r"[\s.()\[\]°º˚^·*_]")
 _BLANKS = dict.fromkeys(map(ord, "\u00a0\u202f\u2009"), " ")
 _NUMBER = re.compile(r"\s*([-+−–‒])?\s*([0-9.,'’ ]*[0-9][.,]?)([eE][+-]?[0-9]{1,3})?(?![0-9])")
 
@@ -113,6 +114,12 @@ def value_of(number: Fraction, kind: str, unit: Unit) -> Fraction | None:
 def written(chance: random.Random) -> Written:
     """Write down one reading."""
     kind = chance.choice(KINDS)
+    if chance.random() < 0.02:
+        word = chance.choice(_FORBIDDEN)
+        word = chance.choice(
+            [word, f"{word[0]} {word[1:]}", f"{word[0]}.{word[1:]}", f"{word[0]}({word[1:]})", f"({word}"]
+        )
+        return Written(f"{chance.randrange(100)} {word}", "heat or power" if "W" in word else "pressure", None)
     word = chance.choice(sorted(UNITS[kind]))
     number, text = _number(chance)
     unit = UNITS[kind][word]
@@ -155,10 +162,10 @@ def mistaken(text: str, kind: str, value: float) -> str:
         return "it has no number"
     sign, digits, exponent = found.groups()
     rest = plain[found.end() :]
-    squeezed = "".join(rest.split())
+    squeezed = _NOT_HEARD.sub("", rest)
     if any(squeezed.startswith(word) for word in _FORBIDDEN):
         return "its case names another unit"
-    unit = UNITS[kind].get(re.sub(r"[\s.()\[\]°º˚^·*_]", "", rest).replace("²", "2").replace("³", "3").casefold())
+    unit = UNITS[kind].get(squeezed.replace("²", "2").replace("³", "3").casefold())
     if unit is None:
         return "?"
     numbers = _meanings(digits)

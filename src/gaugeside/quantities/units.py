@@ -244,8 +244,13 @@ def fold(text: str) -> str:
         ("⁻¹", "-1"),
     ):
         text = text.replace(old, new)
-    dropped = " \t .()[]°º˚^·*_"
-    return "".join(c for c in text if c not in dropped).casefold()
+    return _heard(text).casefold()
+
+
+def _heard(text: str) -> str:
+    """Return `text` without the blanks, brackets and signs that say nothing in a unit."""
+    dropped = "\u00a0\u202f\u2009 \t.()[]°º˚^·*_"
+    return "".join(c for c in text if c not in dropped)
 
 
 def _enter(found: dict[str, Unit], spelling: str, unit: Unit) -> None:
@@ -299,7 +304,7 @@ def labels(kind: Kind) -> tuple[str, ...]:
 
 def ambiguous(text: str) -> tuple[str, str] | None:
     """Return why this unit text names no single unit and what to write, or None."""
-    squeezed = "".join(text.split())
+    squeezed = "".join(_heard(text).split())
     if squeezed in AMBIGUOUS:
         return AMBIGUOUS[squeezed]
     folded = fold(text)
