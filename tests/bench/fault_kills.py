@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import contextlib
+import math
 import os
 import random
 import signal
@@ -64,9 +65,15 @@ def _asked(refrigerant: str, text: str) -> dict[str, Any] | None:
     return request("saturation", refrigerant, readings, site=SEA_LEVEL, datum="iir", dress=DRESS)
 
 
-def _expected(asked: Mapping[str, Any]) -> dict[str, Any]:
-    """Return the undisturbed reply, computed in this process."""
-    return perform(asked)
+def _alike(one: Any, other: Any) -> bool:
+    """Whether two replies say the same; an iteration ends differently in the last digits by what was asked before."""
+    if isinstance(one, float) and isinstance(other, float):
+        return math.isclose(one, other, rel_tol=1e-9, abs_tol=1e-9)
+    if isinstance(one, dict) and isinstance(other, dict):
+        return one.keys() == other.keys() and all(_alike(one[name], other[name]) for name in one)
+    if isinstance(one, list | tuple) and isinstance(other, list | tuple):
+        return len(one) == len(other) and all(map(_alike, one, other))
+    return bool(one == other)
 
 
 def kill_while_typing(kills: int, seed: int) -> Kills:
@@ -130,8 +137,8 @@ def _judge(screen: _Screen, asked: Mapping[str, Any], count: Kills) -> None:
         count.missing += 1
         return
     count.shown += 1
-    expected = _expected(asked)
-    if reply.fault or (reply.answer, reply.error) != (expected.get("answer"), expected.get("error")):
+    expected = perform(asked)
+    if reply.fault or not _alike([reply.answer, reply.error], [expected.get("answer"), expected.get("error")]):
         count.wrong += 1
         count.examples.append(f"{asked['refrigerant']} {asked['values']}: {reply.fault or reply.answer!r:.200}")
 

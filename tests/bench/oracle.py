@@ -116,10 +116,9 @@ def written(chance: random.Random) -> Written:
     kind = chance.choice(KINDS)
     if chance.random() < 0.02:
         word = chance.choice(_FORBIDDEN)
-        word = chance.choice(
-            [word, f"{word[0]} {word[1:]}", f"{word[0]}.{word[1:]}", f"{word[0]}({word[1:]})", f"({word}"]
-        )
-        return Written(f"{chance.randrange(100)} {word}", "heat or power" if "W" in word else "pressure", None)
+        kind = "heat or power" if "W" in word else "pressure"
+        apart = chance.choice(["", " ", ".", "("])
+        return Written(f"{chance.randrange(100)} {word[0]}{apart}{word[1:]}", kind, None)
     word = chance.choice(sorted(UNITS[kind]))
     number, text = _number(chance)
     unit = UNITS[kind][word]
