@@ -171,6 +171,15 @@ def test_every_blank_of_a_liquid_is_solved_back(
     assert heat + (power or 0.0) == pytest.approx(gained, rel=1e-9, abs=1e-9)
 
 
+def test_a_form_left_as_it_opens_says_no_direction_and_the_temperatures_tell_it() -> None:
+    opened = CHECK.reading_line("heat_direction").choices[0]
+    for outlet, name in ((ZERO + 7, "heat_rejected"), (ZERO + 17, "heat_absorbed")):
+        told = outcome(medium="water", inlet=ZERO + 12, outlet=outlet, flow={"mass flow": 1.0}, heat_direction=opened)
+        assert told.unresolved is None
+        # Heat capacity of water near 10 °C: 4.19 kJ/(kg K), any table of water.
+        assert getattr(told.findings, name) == pytest.approx(5 * 4190, rel=0.01)
+
+
 def solved_back(typed: dict[str, Any], first: Findings) -> None:
     """Leave each of flow, inlet and outlet blank with the heat just found, and find it again."""
     absorbs = first.heat_absorbed is not None

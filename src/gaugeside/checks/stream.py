@@ -38,7 +38,9 @@ class Readings:
     flow_at: str | None = choice("flow measured at", _PLACES, "Where a volume flow is measured; the inlet if blank.")
     heat: float | None = reading("heat", Kind.POWER, "Through the wall, without a sign; blank when it is wanted.")
     heat_direction: str | None = choice(
-        "heat is", _DIRECTIONS, "By the medium; needed when heat is typed and a temperature is wanted."
+        "heat is",
+        ("not said", *_DIRECTIONS),
+        "By the medium; to be said when heat is typed and a temperature is wanted, else the temperatures tell.",
     )
     fan_or_pump_heat: float | None = reading(
         "fan or pump heat", Kind.POWER, "Power that heats the stream between the two temperatures; none if blank."
