@@ -266,3 +266,10 @@ def test_wet_vapour_into_a_compressor_is_said() -> None:
     found = component("compressor", "R-134a", inlet="2 bar g, x 0.95", outlet="9 bar g, 45 C", mass_flow="1 kg/s")
     assert "Wet vapour enters the compressor" in said(found)
     assert "kinetic and potential energy neglected" in said(found)
+
+
+def test_a_machine_that_cannot_move_what_enters_it_is_said() -> None:
+    pump = component("pump", "R-717", inlet="2 bar g, SH 8 K", outlet="11.2 bar g, 120 C", mass_flow="0.35 kg/s")
+    assert "Gas enters the pump" in said(pump)
+    compressor = component("compressor", "R-717", inlet="2 bar g, SC 8 K", outlet="9 bar g, 90 C", mass_flow="1 kg/s")
+    assert "Liquid enters the compressor" in said(compressor)

@@ -8,6 +8,7 @@ from gaugeside.checks.caution import discharge_cautions, model_note, refrigerant
 from gaugeside.checks.component_kinds import WRONG_WAY, Setup
 from gaugeside.checks.sheet import Conditions, Outcome
 from gaugeside.errors import Refusal
+from gaugeside.refrigerants import Region
 
 if TYPE_CHECKING:
     from gaugeside.refrigerants import Fluid, State
@@ -106,11 +107,15 @@ def _report_machine(setup: Setup, outcome: Outcome, inlet: State | None, outlet:
         outcome.note("The outlet pressure is not above the inlet pressure: nothing is compressed.")
     if setup.component == "pump":
         found.head = (outlet.pressure - inlet.pressure) / (inlet.density * _STANDARD_GRAVITY)
-        if inlet.vapour_fraction is not None and inlet.vapour_fraction > 0:
+        if inlet.region is Region.SUPERHEATED:
+            outcome.note("Gas enters the pump: a liquid pump cannot move it. Check the component chosen and the inlet.")
+        elif inlet.vapour_fraction is not None and inlet.vapour_fraction > 0:
             outcome.note("Vapour enters the pump: it cavitates.")
         return
     discharge_cautions(outcome, outlet.temperature, ratio)
-    if inlet.vapour_fraction is not None and inlet.vapour_fraction < 1:
+    if inlet.region in (Region.SUBCOOLED, Region.LIQUID_ABOVE_CRITICAL_PRESSURE):
+        outcome.note("Liquid enters the compressor: it breaks. Check the component chosen and the inlet.")
+    elif inlet.vapour_fraction is not None and inlet.vapour_fraction < 1:
         outcome.note("Wet vapour enters the compressor: liquid damages it.")
 
 
