@@ -7,7 +7,7 @@ from CoolProp.CoolProp import PropsSI
 
 from gaugeside.checks.perform import perform, request
 from gaugeside.checks.sheet import Answer
-from gaugeside.quantities import SEA_LEVEL, Dress
+from gaugeside.quantities import SEA_LEVEL, Dress, Kind, unit, write
 from unit.check_tools import ask, number, refusal, said
 
 ATMOSPHERE = 101325.0
@@ -185,3 +185,19 @@ def test_heat_gained_by_the_suction_line_is_no_cooling() -> None:
     liquid, leaving, suction = r134a("H", 10.1e5, 33), r134a("H", 2e5, -6), r134a("H", 2e5, 0)
     assert number(found, "mass_flow") == pytest.approx(22e3 / (suction - liquid), rel=1e-7)
     assert number(found, "heat_absorbed") == pytest.approx(22e3 * (leaving - liquid) / (suction - liquid), rel=1e-7)
+
+
+@pytest.mark.parametrize(
+    ("value", "kind", "label", "text"),
+    [
+        (124.0, Kind.POWER, "kW", "0.124 kW"), (124.0, Kind.POWER, "hp", "0.166 hp"),
+        (21400.0, Kind.POWER, "kW", "21.40 kW"), (20.98, Kind.POWER, "Btu/h", "71.6 Btu/h"),
+        (0.00149, Kind.MASS_FLOW, "kg/s", "0.00149 kg/s"),
+        (0.0001, Kind.MASS_FLOW, "kg/h", "0.360 kg/h"), (-0.0001, Kind.MASS_FLOW, "kg/h", "-0.360 kg/h"),
+        (0.0, Kind.POWER, "kW", "0.00 kW"), (-0.0, Kind.POWER, "kW", "0.00 kW"), (1e-9, Kind.POWER, "kW", "0.00 kW"),
+        (0.01 / 3600, Kind.VOLUME_FLOW, "m3/h", "0.0100 m3/h"),
+    ],
+)  # fmt: skip
+def test_small_flows_and_powers_keep_three_digits(value: float, kind: Kind, label: str, text: str) -> None:
+    """Factors of NIST SP 811 (2008), appendix B.8, by hand."""
+    assert write(value, unit(kind, label), kind, SEA_LEVEL) == text

@@ -48,6 +48,8 @@ _IP: dict[Kind, str] = _SI | {
     Kind.LENGTH: "ft",
 }
 _SYSTEMS = {"si": _SI, "ip": _IP}
+# Kinds that run over decades from machine to machine: a pump's 124 W are not 0.12 kW when a meter is good for 1 %.
+_THREE_DIGITS = (Kind.MASS_FLOW, Kind.VOLUME_FLOW, Kind.POWER)
 # Kinds whose unit a person may choose singly, in the order of the site pane.
 CHOOSABLE = (
     Kind.PRESSURE,
@@ -115,15 +117,17 @@ def in_unit(value: float, to: Unit, kind: Kind, site: Site) -> float:
     return from_si(value, to, kind)
 
 
-def number(value: float, decimals: int, *, fixed: bool = False) -> str:
+def number(value: float, decimals: int, *, fixed: bool = False, three: bool = False) -> str:
     """Return `value` with fixed decimals, or with three significant digits where those would hide it.
 
-    fixed: keep to the decimals, as in the columns of a table.
+    fixed: keep to the decimals, as in the columns of a table. three: never fewer than three digits.
     """
     if not math.isfinite(value):
         return "-"
-    if not fixed and value != 0 and abs(value) < 10.0 ** (1 - decimals) and decimals > 1:
-        text = f"{value:.{min(2 - math.floor(math.log10(abs(value))), decimals + 4)}f}"
+    small = abs(value) < 10.0 ** (1 - decimals) and decimals > 1
+    if value != 0 and not fixed and (small or three):
+        wanted = 2 - math.floor(math.log10(abs(value)))
+        text = f"{value:.{max(decimals, min(wanted, decimals + 4))}f}"
     else:
         text = f"{value:.{decimals}f}"
     # Nothing is left of it: zero, and without a sign.
@@ -138,7 +142,7 @@ def write(value: float, to: Unit, kind: Kind, site: Site) -> str:
         decimals = max(decimals, 2)
     # A gauge pressure near zero is the small difference of two larger ones: more digits would be invented.
     fixed = to.sense in (Sense.GAUGE, Sense.VACUUM)
-    return f"{number(count, decimals, fixed=fixed)} {to.label}".strip()
+    return f"{number(count, decimals, fixed=fixed, three=kind in _THREE_DIGITS)} {to.label}".strip()
 
 
 def shown(value: float, kind: Kind, dress: Dress, site: Site) -> str:
