@@ -68,6 +68,10 @@ def _shut_output() -> None:
 
 
 def _run(words: Sequence[str]) -> int:
+    # The checks, of which the commands are made, are not waited for where none is given: the screen paints sooner.
+    app_arguments, others = _app_parser(None).parse_known_args(words)
+    if not others:
+        return _open_app(app_arguments)
     try:
         arguments = _parser().parse_args(words)
     except SystemExit as leave:
@@ -121,21 +125,27 @@ def _printer(arguments: argparse.Namespace) -> Callable[[str], None]:
     return _print_ascii if arguments.ascii else _print
 
 
-def _parser() -> argparse.ArgumentParser:
-    from gaugeside.checks import CHECKS
-
-    parser = _Parser(
-        prog="gaugeside",
-        description="Saturation, superheat and subcooling, and the heat and power of a component, from readings in "
-        "any units. Without a command the app opens.",
-    )
-    parser.add_argument("--version", action="version", version=f"gaugeside {__version__}")
+def _app_parser(description: str | None) -> _Parser:
+    """Return the parser of the app's own options; with a description also of --help and --version."""
+    parser = _Parser(prog="gaugeside", description=description, add_help=description is not None)
+    if description is not None:
+        parser.add_argument("--version", action="version", version=f"gaugeside {__version__}")
     parser.add_argument("--logbook", type=Path, metavar="PATH", help="use this logbook file")
     parser.add_argument("--ascii", action="store_true", help="write ASCII characters alone, on the screen too")
     parser.add_argument(
         "--demo", action="store_true", help="open the app on an invented cold store, in a throw-away folder"
     )
     parser.set_defaults(run=None)
+    return parser
+
+
+def _parser() -> argparse.ArgumentParser:
+    from gaugeside.checks import CHECKS
+
+    parser = _app_parser(
+        "Saturation, superheat and subcooling, and the heat and power of a component, from readings in any units. "
+        "Without a command the app opens."
+    )
     commands = parser.add_subparsers(title="commands", metavar="COMMAND")
     for check in CHECKS.values():
         _add_check(commands, check)

@@ -18,6 +18,7 @@ from gaugeside.app.panes.sheet import SheetPane
 from gaugeside.app.themes import load_themes
 from gaugeside.app.widgets.field import FieldLine
 from gaugeside.app.widgets.lines import Line, Lines
+from gaugeside.engine import Engine
 from gaugeside.settings import Settings, load_draft, load_settings, places
 
 # Waits for a slow machine; nothing is measured with it.
@@ -140,10 +141,16 @@ async def sheet(
     draft, more = load_draft(where.draft_file)
     themes, faults = load_themes(where.themes_folder)
     shown = environ or {"TERM": "xterm-256color"}
-    app = GaugesideApp(where, known, draft, themes, [*messages, *more, *faults], shown, engine_command=command)
+    engine = Engine(
+        lambda _: None, lambda _: None, log=where.log_file, own_folder=where.settings_folder, command=command
+    )
+    engine.start()
+    app = GaugesideApp(where, known, draft, themes, [*messages, *more, *faults], shown, engine)
     try:
         async with app.run_test(size=size) as pilot:
-            yield Sheet(app, pilot)
+            shown_sheet = Sheet(app, pilot)
+            await shown_sheet.wait(lambda: app.is_painted, "the first frame")
+            yield shown_sheet
     finally:
         app.saver.close()
         app.engine.close()

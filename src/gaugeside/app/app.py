@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import asyncio
+import gc
+import threading
 from collections.abc import Callable
 from dataclasses import replace
 from typing import Any
@@ -18,11 +20,12 @@ from gaugeside.app.house import House
 from gaugeside.app.panes.logbook import LogbookPane
 from gaugeside.app.panes.sheet import SheetPane
 from gaugeside.app.panes.site import SitePane
-from gaugeside.app.themes import CURSOR_STYLE, pick_theme
+from gaugeside.app.themes import CURSOR_STYLE
 from gaugeside.app.widgets.dialogs import Dialog, Help, MachineAndNote, Menu, RefrigerantPicker
 from gaugeside.app.widgets.lines import CAUTION, MUTED, Line, QuietScreen
 from gaugeside.checks import CHECKS
 from gaugeside.errors import Refusal
+from gaugeside.quantities.convert import warm_up
 from gaugeside.refrigerants import Refrigerant, find
 
 Pane = SheetPane | LogbookPane | SitePane
@@ -53,7 +56,6 @@ class GaugesideApp(House):
     """
         + CURSOR_STYLE
     )
-    HORIZONTAL_BREAKPOINTS = [(0, "-narrow"), (WIDE, "-wide")]
     BINDINGS = [
         *(Binding(key.lower(), f"pane('{name}')", priority=True) for name, key in PANES.items()),
         Binding("f1", "help", priority=True),
@@ -80,7 +82,10 @@ class GaugesideApp(House):
         yield Line(id="head")
         yield Line(id="tabs")
         yield Line(style=MUTED, id="rule", classes="rule")
-        yield Container(id="panes")
+        wanted = str(self.saved.get("pane", ""))
+        self.now = wanted if wanted in PANES else "superheat"
+        with Container(id="panes"):
+            yield self._build(self.now)
         with Container(id="word"):
             yield Line()
             yield Line()
@@ -89,22 +94,31 @@ class GaugesideApp(House):
     async def on_mount(self) -> None:
         """Start the helper, the theme and the pane that was open last."""
         self.event_loop = asyncio.get_running_loop()
-        self.engine.start()
-        for theme in self.themes.values():
-            self.register_theme(theme)
-        self.theme = pick_theme(self.settings.theme, self.environ, self.themes)
+        pane = self._pane()
+        self._follow_scrolling(pane)
+        self.head()
+        self.base.set_focus(pane.first_field())
+        self.under_way = True
+        self.show_word()
+        self.call_after_refresh(self._painted)
+
+    def _painted(self) -> None:
+        """After the first frame, do what would have kept it waiting."""
+        self.is_painted = True
+        gc.enable()
         if self.settings.refrigerant:
             try:
                 self.refrigerant = find(self.settings.refrigerant)
             except Refusal as refusal:
                 self.trouble(refusal.sentence())
-        wanted = str(self.saved.get("pane", ""))
-        await self.action_pane(wanted if wanted in PANES else "superheat")
-        self.under_way = True
-        self.show_word()
+        for pane in self.base.query(SheetPane):
+            pane.read_all()
+        self.head()
+        threading.Thread(target=warm_up, name="units", daemon=True).start()
 
     def on_resize(self) -> None:
-        """Lay the frame out anew."""
+        """Lay the frame out anew, in two lines a reading where the window is narrow."""
+        self.base.set_class(self.size.width < WIDE, "-narrow")
         self.call_after_refresh(self._frame)
 
     def _frame(self) -> None:
@@ -117,14 +131,19 @@ class GaugesideApp(House):
         """Show refrigerant, site, machine and keys as they are now."""
         width, height = self.size
         small = width < WIDE or height < HIGH
+        wanted = "" if self.is_painted else self.settings.refrigerant
         lines = {
-            "#head": (head_line(self.refrigerant, self.site, self.settings.tag, width),
-                      CAUTION if self.refrigerant is None else "bold"),
+            "#head": (head_line(self.refrigerant or wanted, self.site, self.settings.tag, width),
+                      "bold" if self.refrigerant or wanted else CAUTION),
             "#tabs": (tabs_line(self.now, width), ""),
             "#keys": (keys_line(self.now, width, height), CAUTION if small else MUTED),
         }  # fmt: skip
         for name, (text, style) in lines.items():
             self.base.query_one(name, Line).say(text, style)
+
+    def _follow_scrolling(self, pane: Pane) -> None:
+        for attribute in ("virtual_size", "scroll_y", "size"):
+            self.watch(pane, attribute, self._scrolled, init=False)
 
     def _scrolled(self) -> None:
         self.call_after_refresh(self._show_more)
@@ -147,8 +166,7 @@ class GaugesideApp(House):
             found = self._build(name)
             found.display = False
             await panes.mount(found)
-            for attribute in ("virtual_size", "scroll_y", "size"):
-                self.watch(found, attribute, self._scrolled, init=False)
+            self._follow_scrolling(found)
         elif isinstance(found, LogbookPane):
             found.reload()
         self.now = name

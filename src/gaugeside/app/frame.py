@@ -54,10 +54,13 @@ def keys_line(pane: str, width: int, height: int) -> str:
     return next((form for form in forms if len(form) <= width), forms[-1])
 
 
-def head_line(refrigerant: Refrigerant | None, site: Site, machine: str, width: int) -> str:
-    """Return refrigerant, site and machine in one line."""
-    if refrigerant is None:
-        left = "no refrigerant: F8"
+def head_line(refrigerant: Refrigerant | str | None, site: Site, machine: str, width: int) -> str:
+    """Return refrigerant, site and machine in one line.
+
+    refrigerant: its designation alone while it has not been looked up.
+    """
+    if isinstance(refrigerant, str) or refrigerant is None:
+        left = refrigerant or "no refrigerant: F8"
     else:
         left = f"{refrigerant.designation}  {refrigerant.safety_class}  {refrigerant.nature}"
     if width < WIDE:

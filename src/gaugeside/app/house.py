@@ -9,6 +9,7 @@ from dataclasses import replace
 from functools import partial
 from typing import Any
 
+from textual.app import App
 from textual.screen import Screen
 from textual.theme import Theme
 
@@ -55,7 +56,7 @@ class House(KeysInTurn):
         themes: dict[str, Theme],
         messages: list[str],
         environ: Mapping[str, str],
-        engine_command: list[str] | None = None,
+        engine: Engine,
     ) -> None:
         super().__init__(driver_class=TerminalDriver, ansi_color=True if without_colour(environ) else None)
         self.places, self.settings, self.saved = places, settings, draft
@@ -68,20 +69,22 @@ class House(KeysInTurn):
         self.word_stays = False
         self.now = ""
         self.under_way = False
+        self.is_painted = False
         self.event_loop: asyncio.AbstractEventLoop | None = None
-        self.engine = Engine(
-            lambda reply: self._from_thread(self._reply, reply),
-            lambda word: self._from_thread(self._engine_says, word),
-            log=places.log_file,
-            own_folder=places.settings_folder,
-            command=engine_command,
-        )
+        self.engine = engine
+        engine.on_reply = lambda reply: self._from_thread(self._reply, reply)
+        engine.on_state = lambda word: self._from_thread(self._engine_says, word)
         self.saver = Saver(places, lambda text: self._from_thread(self.trouble, text))
         self.book = Book(Logbook(places.logbook_file), self._from_thread, self.trouble)
         self._maps, bad_maps = load_maps(places.settings_folder)
         for trouble in bad_maps:
             self.trouble(trouble)
         self._take_settings(settings)
+        for theme in themes.values():
+            self.register_theme(theme)
+        # Before the app runs: a theme set later has the whole style sheet read again.
+        self.set_reactive(App.theme, pick_theme(settings.theme, environ, themes))
+        self.stylesheet.set_variables(self.get_css_variables())
 
     def _take_settings(self, settings: Settings) -> None:
         self.settings = settings

@@ -55,7 +55,7 @@ class Engine:
     """Runs checks in one helper process.
 
     on_reply is called with each Reply whose request is still the newest of its slot; on_state with a word about the
-    helper ("" when all is well). Both are called from the engine's thread.
+    helper ("" when all is well). Both are called from the engine's thread; both may be replaced at any time.
     command replaces the helper's command line (tests). time_limit: seconds one request may take.
     """
 
@@ -69,7 +69,7 @@ class Engine:
         command: list[str] | None = None,
         time_limit: float = TIME_LIMIT,
     ) -> None:
-        self._on_reply, self._on_state = on_reply, on_state
+        self.on_reply, self.on_state = on_reply, on_state
         self._command = command or [
             sys.executable, "-P", "-m", "gaugeside.engine.worker", str(log or ""), str(own_folder or ""),
         ]  # fmt: skip
@@ -155,7 +155,7 @@ class Engine:
     def _after_break(self, current: _Asked | None, why: str) -> _Asked | None:
         """Say what happened and decide whether the request is tried once more."""
         self._ailing = True
-        self._on_state(f"{why}; it is started again.")
+        self.on_state(f"{why}; it is started again.")
         if self._starts > 3:
             self._ending.wait(min(self._starts, 20) * 0.1)
         if current is None:
@@ -201,7 +201,7 @@ class Engine:
             pass
         if self._ailing:
             self._ailing = False
-            self._on_state("")
+            self.on_state("")
 
     def _stop(self) -> None:
         process, self._process = self._process, None
@@ -273,7 +273,7 @@ class Engine:
         if not self._is_newest(asked):
             return
         self._starts = min(self._starts, 1) if "fault" not in message else self._starts
-        self._on_reply(
+        self.on_reply(
             Reply(
                 asked.slot,
                 asked.number,

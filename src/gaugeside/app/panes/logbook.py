@@ -43,6 +43,8 @@ class LogbookPane(VerticalScroll, can_focus=False):
     def __init__(self) -> None:
         super().__init__(id="pane-logbook", classes="pane")
         self._filter = FieldLine("filter", "show entries with", FilterField(id="filter"))
+        # Made here and not when they are shown: what was read may arrive first.
+        self._list, self._chosen = Lines(id="entries"), Lines(id="entry")
         self.entries: list[Entry] = []
         self._selected = 0
         self._top = 0
@@ -58,9 +60,9 @@ class LogbookPane(VerticalScroll, can_focus=False):
         yield Line(f"{'':<20}{'as typed':<21}words, all of which must occur", MUTED)
         yield self._filter
         yield Line(RULE, MUTED, classes="rule")
-        yield Lines(id="entries")
+        yield self._list
         yield Line(RULE, MUTED, classes="rule")
-        yield Lines(id="entry")
+        yield self._chosen
 
     def on_mount(self) -> None:
         """Read the logbook."""
@@ -122,8 +124,8 @@ class LogbookPane(VerticalScroll, can_focus=False):
             what = f"{mark} {when}  {entry.refrigerant:<10}  {machine}{entry.headline}"
             lines.append((what, "reverse" if place == self._selected else ""))
         self._understood()
-        self.query_one("#entries", Lines).show(lines)
-        self.query_one("#entry", Lines).show(self._details())
+        self._list.show(lines)
+        self._chosen.show(self._details())
 
     def _understood(self) -> None:
         count = f"{len(self.entries)} shown" if self.entries else "none"

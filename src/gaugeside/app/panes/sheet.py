@@ -29,6 +29,7 @@ from gaugeside.keeping import headline, with_linked_entries
 if TYPE_CHECKING:
     from gaugeside.app.house import House
 
+_PICK = "Press F8 and type part of the refrigerant's name."
 # Seconds after which a unit that was typed becomes the field's own although the field is not left.
 _SETTLE = 0.7
 # Seconds after which findings of older readings are taken off the screen while an answer is awaited or a unit is
@@ -53,6 +54,7 @@ class SheetPane(VerticalScroll, can_focus=False):
                 if isinstance(known, dict):
                     self.units[str(name)] = {str(kind): str(label) for kind, label in known.items()}
         self._lines: dict[str, FieldLine] = {}
+        self._findings = Lines(id="findings")
         self.typed: dict[str, TypedLine] = {}
         self.answer: Answer | None = None
         self.refusal: Refusal | None = None
@@ -83,11 +85,20 @@ class SheetPane(VerticalScroll, can_focus=False):
             self._lines[line.name] = FieldLine(line.name, line.label, field)
             yield self._lines[line.name]
         yield Line(RULE, MUTED, classes="rule")
-        yield Lines(id="findings")
+        yield self._findings
 
     def on_mount(self) -> None:
-        """Read what was saved."""
-        self.read_all()
+        """Read what was saved; a number not before the first frame, which would wait for the unit library."""
+        if self.house.is_painted or not any(isinstance(f, TextField) and f.value for f in self._fields()):
+            self.read_all()
+            return
+        for line in self.check.reading_lines():
+            if not self._texts[line.name] or line.entry is Entry.CHOICE:
+                self._read(line)
+        self._show_meant()
+
+    def _fields(self) -> list[TextField | ChoiceField]:
+        return [line.field for line in self._lines.values()]
 
     def meant(self) -> dict[str, TypedLine]:
         """Return the lines that are shown, as read."""
@@ -109,7 +120,7 @@ class SheetPane(VerticalScroll, can_focus=False):
                     line.field.value = text
                     line.field.cursor_position = len(text)
             self.units.pop(name, None)
-        self.query_one("#findings", Lines).show([])
+        self._findings.show([])
         self.read_all()
 
     def clear(self) -> None:
@@ -207,7 +218,7 @@ class SheetPane(VerticalScroll, can_focus=False):
             house.engine.forget(self.check.name)
             self._without_answer = (
                 "" if typed_in or refused else self.check.summary,
-                "" if self._has_refrigerant else "Press F8 and type part of the refrigerant's name.",
+                "" if self._has_refrigerant or not house.is_painted else _PICK,
             )
             if self.refusal is None or not self._is_being_typed(self.refusal.field):
                 self._show_without_answer()
@@ -274,7 +285,7 @@ class SheetPane(VerticalScroll, can_focus=False):
     def _show_nothing(self, *words: str) -> None:
         width = self._width
         lines = [(text, MUTED) for word in words for text in textwrap.wrap(word, width)]
-        self.query_one("#findings", Lines).show(lines)
+        self._findings.show(lines)
 
     @property
     def _width(self) -> int:
@@ -304,7 +315,7 @@ class SheetPane(VerticalScroll, can_focus=False):
                 lines = self._picture_lines()
             else:
                 lines = answer_lines(self.check, self.answer, house.dress, house.site, self._width)
-        self.query_one("#findings", Lines).show(lines)
+        self._findings.show(lines)
 
     def _picture_lines(self) -> list[Styled]:
         """Draw what the helper sent; the field being typed in and three lines of the legend stay in sight."""
@@ -351,7 +362,7 @@ class SheetPane(VerticalScroll, can_focus=False):
 
     def _findings_out_of_sight(self) -> bool:
         """Whether the form is so long that what it tells stands below the window."""
-        return self.query_one("#findings", Lines).virtual_region.y >= self.scroll_y + self.size.height > 0
+        return self._findings.virtual_region.y >= self.scroll_y + self.size.height > 0
 
     # Keeping
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
+from textual.app import ComposeResult
 from textual.containers import Vertical
 from textual.content import Content
 from textual.reactive import Reactive
@@ -58,6 +59,12 @@ class Lines(Vertical):
     def __init__(self, *, id: str | None = None) -> None:
         super().__init__(id=id)
         self._lines: list[Line] = []
+        self._composed = False
+
+    def compose(self) -> ComposeResult:
+        """The lines that were asked for before there was a place for them."""
+        self._composed = True
+        yield from self._lines
 
     def show(self, lines: Sequence[Styled]) -> None:
         """Show these (text, style) lines."""
@@ -68,7 +75,7 @@ class Lines(Vertical):
             line.display = False
         fresh = [Line(text, style) for text, style in lines[len(self._lines) :]]
         self._lines += fresh
-        if fresh:
+        if fresh and self._composed:
             self.mount(*fresh)
 
     def texts(self) -> list[str]:
