@@ -13,6 +13,7 @@ from gaugeside.quantities import (
     Sense,
     Site,
     checked_single,
+    example,
     fold,
     guard,
     quoted,
@@ -70,6 +71,9 @@ def read_site(text: str, source: str, dress: Dress) -> Site:
     kind = Kind.LENGTH if source == "altitude" else Kind.ABSOLUTE_PRESSURE
     try:
         reading = read(text, kind, dress.default(kind), dress, SEA_LEVEL)
+        if reading.bare_number and source == "barometer":
+            # 29.92 is the weather in inHg, and a mountain top in kPa.
+            raise Refusal(f"{quoted(text.strip())} has no unit.", f"Type the unit too: {example(kind)}.")
         make = site_at_altitude if source == "altitude" else site_with_barometer
         return make(reading.value, reading.complete())
     except Refusal as refusal:

@@ -96,3 +96,5 @@ def test_a_site_without_a_word_is_sea_level_and_without_a_unit_is_refused() -> N
     with pytest.raises(Refusal, match="this field takes an absolute pressure") as refusal:
         site_of(Settings(site_pressure_text="5 C", site_pressure_from="barometer"))
     assert refusal.value.field == "barometer"
+    with pytest.raises(Refusal, match="has no unit"):
+        read_site("29.92", "barometer", Dress())
