@@ -108,6 +108,7 @@ def test_bare_numbers_are_pressure_then_temperature_in_the_field_units(dress: Dr
         ("9 bar g, saturated", ["'saturated' is not a word for a state", "sat liquid or sat vapour"]),
         ("9 bar g, SH", ["'SH' is not a word"]), ("9 bar g, gas", ["'gas' is not a word"]),
         ("1,234 kPa, 5 C", ["1.234 or as 1234"]), ("9 bar g, 5 R", ["degR"]), ("9 bar g, 5 kW", ["is a heat or power"]),
+        ("9,1 bar 68,5 c", ["no comma between", "Write 9,1 bar, 68,5 c."]), ("9 bar\tsc 4", ["Write 9 bar, sc 4."]),
         ("9 bar g / 68 C", ["is not a unit of pressure"]), ("9.1,68", ["separators"]),
         ("40 inHg vac, 5 C", ["no pressure is left"]), ("9 bar g, -300 C", ["absolute zero"]),
         ("9 bar g, SC 4 bar", ["is a pressure; this field takes a temperature difference"]),

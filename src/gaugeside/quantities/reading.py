@@ -249,7 +249,9 @@ def _possible(si: float, kind: Kind, text: str, site: Site) -> float:
     if kind is Kind.TEMPERATURE and si <= 0:
         raise Refusal(f"{quoted(text)} is at or below absolute zero (-273.15 °C, -459.67 °F).", "Check sign and unit.")
     if kind is Kind.FRACTION and not 0 <= si <= 1:
-        raise Refusal(f"{quoted(text)} is not between 0 and 1 (0 and 100 %).", "Write for example 25 % or 0.25.")
+        as_percent = 1 < si <= 100 and "%" not in text
+        instead = f"{si:g} % or {si / 100:g}, if that is meant" if as_percent else f"for example {example(kind)}"
+        raise Refusal(f"{quoted(text)} is not between 0 and 1 (0 and 100 %).", f"Write {instead}.")
     if not math.isfinite(si):
         raise Refusal(f"{quoted(text)} is too large a number.", "Check the digits.")
     return si

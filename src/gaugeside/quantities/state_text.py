@@ -114,13 +114,32 @@ def read_state(text: str, units: Mapping[str, Unit], dress: Dress, site: Site) -
     values: dict[str, float] = {}
     read_parts: list[tuple[str, Reading | None]] = []
     for place, part in enumerate(parts):
-        name, value, reading = _read_part(part, place, units, dress, site)
+        try:
+            name, value, reading = _read_part(part, place, units, dress, site)
+        except Refusal:
+            _refuse_without_comma(part, units, dress, site)
+            raise
         if name in values:
             raise Refusal(f"{quoted(text)} gives the {name.replace('_', ' ')} twice.", f"Write for example {EXAMPLE}.")
         values[name] = value
         read_parts.append((name if reading else part.strip(), reading))
     _compatible(values, text)
     return StateReading(text, values, tuple(read_parts))
+
+
+def _refuse_without_comma(part: str, units: Mapping[str, Unit], dress: Dress, site: Site) -> None:
+    """Raise Refusal when this part, itself not understood, is two properties with a blank in place of the comma."""
+    for gap in re.finditer(r"\s+", part.strip()):
+        halves = part.strip()[: gap.start()], part.strip()[gap.end() :]
+        try:
+            first, second = (_read_part(half, place, units, dress, site)[0] for place, half in enumerate(halves))
+        except Refusal:
+            continue
+        if {first, second} in _COMPLETE:
+            raise Refusal(
+                f"{quoted(part.strip())} has no comma between its two readings.",
+                f"Write {', '.join(' '.join(half.split()) for half in halves)}.",
+            )
 
 
 def _read_part(
