@@ -61,8 +61,10 @@ class Sheet:
             self.app.post_message(events.Key(_NAMES.get(key, key), character))
         arrived = asyncio.Event()
         self.app.call_later(arrived.set)
-        await arrived.wait()
-        await self.wait(lambda: self.app.is_idle or not self.app.is_running, "the keys to be taken")
+        # An app that has been left takes no more calls.
+        await self.wait(
+            lambda: (arrived.is_set() and self.app.is_idle) or not self.app.is_running, "the keys to be taken"
+        )
 
     async def type(self, text: str) -> None:
         """Type text into whatever has the focus; a line end is Enter, a tab Tab."""
