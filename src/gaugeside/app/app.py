@@ -271,6 +271,7 @@ class GaugesideApp(House):
         if isinstance(pane, SheetPane):
             pane.clear()
             self.form_changed()
+            pane.top_field().focus()
 
     def action_delete_entry(self) -> None:
         """Delete the logbook entry selected."""

@@ -67,7 +67,8 @@ def head_line(refrigerant: Refrigerant | str | None, site: Site, machine: str, w
         return f" {left}  {machine}".rstrip()
     source = site.source.split(",")[0].removeprefix("standard atmosphere at ")
     place = f"{site.atmosphere / 1000:.2f} kPa abs  {source}"
-    return f" {left:<22}  {place[:37]}   {machine}"[: width - 1].rstrip()
+    head = f" {left:<22}  {place[:37]}   {machine}".rstrip()
+    return head if len(head) < width else f"{head[: width - 4]}..."
 
 
 def tabs_line(pane: str, width: int) -> str:

@@ -31,12 +31,15 @@ KEYS = (
     ("Tab, Down / Up", "next / previous field"),
     ("Enter", "keep the calculation in the logbook; in the logbook, open the entry"),
     ("PageDown / PageUp", "scroll, where a rule says that there is more"),
-    ("F2 F3 F4 F6 F7", "saturation, superheat, component, logbook, site"),
+    ("F2 F3 F4 F5", "saturation, superheat, component, whole machine"),
+    ("F12", "stream: water, brine or air side"),
+    ("F6 F7", "logbook, site and units"),
     ("F8", "pick the refrigerant"),
     ("F9", "machine and note for what is kept next, or of the entry selected"),
     ("F10, Ctrl+Q", "leave; what is typed comes back at the next start"),
     ("Ctrl+O", "menu with every action under a letter, if function keys get lost"),
     ("Delete, Ctrl+Z", "in the logbook: delete the entry selected, bring it back"),
+    ("Ctrl+G", "the readings as a picture, and back"),
     ("Ctrl+L", "paint the screen again;  Ctrl+U clear the field"),
 )
 WRITING = (
@@ -89,12 +92,12 @@ def _wrapped(label: str, text: str, column: int, width: int, style: str = "") ->
 
 
 def _fields(check: Check, units: dict[str, dict[str, str]], dress: Dress, width: int) -> list[Styled]:
-    lines: list[Styled] = _wrapped("", f"{check.label.capitalize()}: {check.summary}", 0, width, MAIN)
+    lines: list[Styled] = _wrapped("", f"{check.label.capitalize()}: {check.summary}", 2, width, MAIN)
     for line in check.reading_lines():
         known: FieldUnits = units.get(line.name, {})
         lines += _wrapped(line.label, line.help, 25, width)
         if line.entry is Entry.QUANTITY:
             lines += _wrapped("", f"{example(line.kind)}; alone: {takes(line, known, dress)}", 25, width, MUTED)
-        elif line.entry is not Entry.CHOICE:
+        elif line.entry in (Entry.EITHER, Entry.STATE):
             lines += _wrapped("", f"a number alone: {takes(line, known, dress)}", 25, width, MUTED)
     return [*lines, ("", "")]

@@ -42,28 +42,28 @@ def start(logbook: Path | None, ascii_alone: bool = False) -> int:
         signal.signal(number, signal.SIG_DFL)
     # Blocked before any thread starts, so that only the watching thread ever takes them.
     signal.pthread_sigmask(signal.SIG_BLOCK, _SIGNALS)
-    from gaugeside.engine import Engine
-    from gaugeside.settings import load_draft, load_settings, places
-
-    home = places(logbook=logbook)
-    engine = Engine(lambda _: None, lambda _: None, log=home.log_file, own_folder=home.settings_folder)
-    # The helper loads while the screen library is imported; until the first frame nothing is worth collecting.
-    engine.start()
+    # Until the first frame nothing is worth collecting.
     gc.disable()
     from gaugeside.app.app import GaugesideApp
     from gaugeside.app.charset import first_environ, speaks_utf8, use_ascii
     from gaugeside.app.themes import load_themes
+    from gaugeside.engine import Engine
     from gaugeside.refrigerants import load_own
+    from gaugeside.settings import load_draft, load_settings, places
 
+    home = places(logbook=logbook)
     if ascii_alone or not speaks_utf8(first_environ(), sys.stderr.encoding):
         use_ascii()
     settings, messages = load_settings(home.settings_file)
     draft, more = load_draft(home.draft_file)
     themes, bad_themes = load_themes(home.themes_folder)
     messages += [*more, *bad_themes, *load_own(home.settings_folder)]
+    engine = Engine(lambda _: None, lambda _: None, log=home.log_file, own_folder=home.settings_folder)
     app = GaugesideApp(home, settings, draft, themes, messages, dict(os.environ), engine)
     modes = termios.tcgetattr(0)
     threading.Thread(target=_watch, args=(app, modes), name="signals", daemon=True).start()
+    # Not before: on a busy machine the helper's loading would keep the imports for the first frame waiting.
+    engine.start()
     try:
         app.run(mouse=False)
     finally:

@@ -23,7 +23,10 @@ def answer_lines(check: Check, answer: Answer, dress: Dress, site: Site, width: 
     pressures = every_pressure(answer, dress, site) if check.name == "saturation" else None
     if pressures is not None:
         tables.insert(0, pressures)
-    lines += [(text, "") for text in side_by_side(tables)]
+    if len(tables) == 1:
+        # Alone it stands under its title, which says the units.
+        lines += [(text, MUTED) for text in textwrap.wrap(tables[0].title, width)]
+    lines += [(text, "") for text in side_by_side(tables, width)]
     return lines + _remarks(answer.notes, dress, site, width, MUTED)
 
 
@@ -38,14 +41,18 @@ def finding_lines(found: FindingText, width: int) -> list[str]:
         words = f"{found.label}  {found.first}  {found.second}  {found.remark}".strip()
         return textwrap.wrap(words, width, subsequent_indent="    ")
     label, first, second = (16, 17, 17) if found.paired else (21, 13, 12)
-    head = f"{found.label:<{label}} {found.first:<{first}} {found.second:<{second}} "
+    # Words may be wider than their column: two blanks keep them apart.
+    apart = "  " if len(found.first) > first else " "
+    head = f"{found.label:<{label}} {found.first:<{first}}{apart}{found.second:<{second}} "
     beside = textwrap.wrap(found.remark, max(12, width - len(head))) or [""]
     return [(head + beside[0]).rstrip(), *(" " * len(head) + more for more in beside[1:])]
 
 
-def side_by_side(tables: list[TableText]) -> list[str]:
-    """Return tables as lines, beside each other."""
+def side_by_side(tables: list[TableText], width: int) -> list[str]:
+    """Return tables as lines, beside each other, or below each other in a window too narrow for that."""
     blocks = [_block(one) for one in tables]
+    if sum(max(map(len, block)) + 3 for block in blocks) - 3 > width:
+        return [line for block in blocks for line in block]
     height = max((len(block) for block in blocks), default=0)
     lines = []
     for row in range(height):

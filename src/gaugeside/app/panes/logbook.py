@@ -116,7 +116,7 @@ class LogbookPane(VerticalScroll, can_focus=False):
         rows = self._rows()
         self._top = min(max(self._top, self._selected - rows + 1), self._selected)
         lines: list[Styled] = []
-        wide = self.size.width >= WIDE
+        wide = (self.size.width or self.app.size.width) >= WIDE
         for place, entry in enumerate(self.entries[self._top : self._top + rows], self._top):
             when = entry.kept_at.astimezone().strftime("%m-%d %H:%M")
             mark = ">" if place == self._selected else " "
@@ -138,10 +138,11 @@ class LogbookPane(VerticalScroll, can_focus=False):
                 "No entry holds these words." if self.filter_text else "Nothing kept yet: Enter on a sheet keeps it."
             )
             return self._wrapped(words, MUTED)
-        readings = "  ".join(f"{name.replace('_', ' ')} {text}" for name, text in entry.readings.items())
+        readings = "; ".join(f"{name.replace('_', ' ')} {text}" for name, text in entry.readings.items())
         kept = entry.kept_at.astimezone().strftime("%Y-%m-%d %H:%M:%S")
         return [
             *self._wrapped(f"entry {entry.number}, {kept}, {entry.check}, site {entry.options.get('site', '')}", MUTED),
+            *self._wrapped(f"machine: {entry.tag}" if entry.tag else "", ""),
             *self._wrapped(readings, ""),
             *self._wrapped(f"note: {entry.note}" if entry.note else "", ""),
             *(line for text in entry.cautions[:1] for line in self._wrapped(text, CAUTION)),

@@ -129,9 +129,12 @@ class SheetPane(VerticalScroll, can_focus=False):
 
     def first_field(self) -> Widget:
         """The field the cursor was left in, or the first that is typed in."""
-        fields = {name: line.field for name, line in self._lines.items()}
-        typed_in = [field for field in fields.values() if isinstance(field, TextField)]
-        return fields.get(self._left, typed_in[0])
+        line = self._lines.get(self._left)
+        return self.top_field() if line is None else line.field
+
+    def top_field(self) -> Widget:
+        """The first field that is typed in."""
+        return next(field for field in self._fields() if isinstance(field, TextField))
 
     # Reading
 
@@ -285,7 +288,20 @@ class SheetPane(VerticalScroll, can_focus=False):
     def _show_nothing(self, *words: str) -> None:
         width = self._width
         lines = [(text, MUTED) for word in words for text in textwrap.wrap(word, width)]
-        self._findings.show(lines)
+        self._findings.show([*self._long_refusal(), *lines])
+
+    def _refusal_words(self) -> str:
+        """Return the refusal with the label of its field before it, empty without one."""
+        if self.refusal is None:
+            return ""
+        labels = {line.name: line.label for line in self.check.reading_lines()}
+        field = labels.get(self.refusal.field or "")
+        return f"{field}: {self.refusal.sentence()}" if field else self.refusal.sentence()
+
+    def _long_refusal(self) -> list[Styled]:
+        """Return the refusal whole where the two lines under the sheet cannot hold it."""
+        lines = textwrap.wrap(self._refusal_words(), self._width)
+        return [(line, CAUTION) for line in lines] if len(lines) > 2 else []
 
     @property
     def _width(self) -> int:
@@ -315,7 +331,7 @@ class SheetPane(VerticalScroll, can_focus=False):
                 lines = self._picture_lines()
             else:
                 lines = answer_lines(self.check, self.answer, house.dress, house.site, self._width)
-        self._findings.show(lines)
+        self._findings.show([*self._long_refusal(), *lines])
 
     def _picture_lines(self) -> list[Styled]:
         """Draw what the helper sent; the field being typed in and three lines of the legend stay in sight."""
@@ -341,11 +357,8 @@ class SheetPane(VerticalScroll, can_focus=False):
         """Show under the sheet what stands in the way, or what belongs in the field."""
         if not self.display:
             return
-        refusal = self.refusal
-        if refusal is not None:
-            labels = {line.name: line.label for line in self.check.reading_lines()}
-            field = f"{labels.get(refusal.field or '', '')}: " if refusal.field in labels else ""
-            self.house.say(f"{field}{refusal.sentence()}", CAUTION)
+        if self.refusal is not None:
+            self.house.say(self._refusal_words(), CAUTION)
             return
         focused = self.screen.focused
         line = next(

@@ -181,6 +181,8 @@ class Help(Dialog):
 class MachineAndNote(Dialog):
     """Which machine the readings are of, and a note; Enter on the note takes both."""
 
+    DEFAULT_CSS = "MachineAndNote TextField { width: 1fr; } MachineAndNote .understood { width: 0; padding: 0; }"
+
     def __init__(self, title: str, tag: str, note: str) -> None:
         super().__init__()
         self._title = title
