@@ -30,7 +30,8 @@ class _Parser(argparse.ArgumentParser):
     def error(self, message: str) -> NoReturn:
         if len(message) > _LONGEST_MESSAGE:
             message = f"{message[: _LONGEST_MESSAGE // 2]} ... {message[-_LONGEST_MESSAGE // 2 :]}"
-        raise Refusal(f"{message[:1].upper()}{message[1:]}.", f"See '{self.prog} --help'.")
+        quotes = "A reading with a blank in it needs quotes: '45 C'. " if message.startswith("unrecognized") else ""
+        raise Refusal(f"{message[:1].upper()}{message[1:]}.", f"{quotes}See '{self.prog} --help'.")
 
 
 def main(argv: Sequence[str] | None = None) -> int:

@@ -376,6 +376,8 @@ def show_entry(arguments: Namespace, say: Printer) -> int:
     say(entry_line(entry))
     for name, text in entry.readings.items():
         say(f"  {name.replace('_', ' '):<24}{text}")
+    if entry.options.get("site"):
+        say(f"  {'site':<24}{entry.options['site']}")
     say(f"  {entry.headline}")
     for text in (*entry.cautions, *entry.notes):
         say(f"  {text}")

@@ -218,6 +218,7 @@ def test_convert_shows_every_unit_gauge_and_absolute(run: Any) -> None:
         (["saturation", "R-134a"], None, "required: reading"), (["nonsense"], None, "invalid choice: 'nonsense'"),
         (["saturation", "R-134a", "5 C", "--datum", "mine"], None, "invalid choice: 'mine'"),
         (["saturation", "R-134a", "5 C", "--unit", "ip"], None, "Unrecognized arguments"),
+        (["saturation", "R-134a", "45", "c"], None, "needs quotes: '45 C'"),
         (["logbook", "show", "3"], None, "no entry 3"), (["refrigerants", "R-4544"], None, "Did you mean"),
     ],
 )  # fmt: skip
@@ -309,6 +310,7 @@ def test_logbook_lists_newest_first_filters_and_shows(run: Any) -> None:
     assert run("logbook", "list", "R-717").out == "No entry.\n"
     assert run("logbook", "list", "--most", "2").out.count("\n") == 2
     shown = run("logbook", "show", "2").out
+    assert "site                    standard atmosphere at sea level" in shown
     assert "2 C" in shown
     assert "R-134a" in shown
     assert run("logbook", "show", "2", "--json").json["number"] == 2

@@ -188,6 +188,8 @@ def test_transcritical_high_side_is_said_in_words_and_the_suction_answered() -> 
     alone = refusal("superheat", "R-744", liquid_pressure="90 bar g", liquid_temperature="35 C")
     assert alone.field == "liquid_pressure"
     assert "no saturation above its critical point" in alone.sentence()
+    assert "no subcooling" in alone.sentence()
+    assert "take a gas cooler as a component" in alone.sentence()
 
 
 def test_below_the_triple_point_is_said_in_words() -> None:

@@ -32,7 +32,7 @@ MENU = (
     ("5", "whole machine", "pane('machine')"),
     ("6", "logbook", "pane('logbook')"),
     ("7", "site, units, theme", "pane('site')"),
-    ("0", "water, brine or air side", "pane('stream')"),
+    ("0", "stream: secondary side of water, brine or air", "pane('stream')"),
     ("8", "pick the refrigerant", "pick"),
     ("9", "machine and note", "words"),
     ("g", "picture on or off", "picture"),

@@ -32,7 +32,7 @@ KEYS = (
     ("Enter", "keep the calculation in the logbook; in the logbook, open the entry"),
     ("PageDown / PageUp", "scroll, where a rule says that there is more"),
     ("F2 F3 F4 F5", "saturation, superheat, component, whole machine"),
-    ("F12", "stream: water, brine or air side"),
+    ("F12", "stream: secondary side of water, brine or air"),
     ("F6 F7", "logbook, site and units"),
     ("F8", "pick the refrigerant"),
     ("F9", "machine and note for what is kept next, or of the entry selected"),

@@ -173,7 +173,11 @@ def _saturated(
     try:
         return saturation(pressure)
     except OutOfRange as refusal:
-        outcome.no_finding = outcome.no_finding or refusal.about(name)
+        none = refusal
+        if pressure >= fluid.critical_pressure and name != "suction_pressure":
+            none = OutOfRange(refusal.message, "So there is no subcooling: type suction readings, or take a gas cooler "
+                              "as a component, by pressure and outlet temperature.")  # fmt: skip
+        outcome.no_finding = outcome.no_finding or none.about(name)
         place = name.split("_", 1)[0].capitalize()
         if pressure >= fluid.critical_pressure:
             what = (
