@@ -244,6 +244,9 @@ def write_json_file(path: Path, content: Mapping[str, Any], is_faulty: Callable[
     """
     try:
         text = json.dumps(content, ensure_ascii=False, indent=1, allow_nan=False)
+        if len(text) > LARGEST_FILE // 2:
+            # The blanks alone could make it too large to be read again.
+            text = json.dumps(content, ensure_ascii=False, separators=(",", ":"), allow_nan=False)
     except (ValueError, RecursionError) as fault:
         raise Refusal(f"{path.name} cannot hold what was to be kept: {fault}.") from fault
     make_private_folder(path.parent)
