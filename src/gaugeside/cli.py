@@ -150,8 +150,8 @@ def _parser() -> argparse.ArgumentParser:
     commands = parser.add_subparsers(title="commands", metavar="COMMAND")
     for check in CHECKS.values():
         _add_check(commands, check)
-    convert = commands.add_parser("convert", help="one reading in every unit of its kind")
-    convert.add_argument("reading")
+    convert = commands.add_parser("convert", help="one reading in every unit of its kind", **_with_example("convert"))
+    convert.add_argument("reading", help="a number and its unit, in quotes: '12.4 bar g', '23 inHg vac', '45 C'")
     _add_common(convert)
     convert.set_defaults(run=_convert)
     refrigerants = commands.add_parser("refrigerants", help="the catalogue, or the part of it that matches")
@@ -163,10 +163,29 @@ def _parser() -> argparse.ArgumentParser:
     return parser
 
 
+# Commands that may be typed as they stand.
+EXAMPLES = {
+    "saturation": ("saturation R-448A '12.4 bar g'",),
+    "superheat": ("superheat R-134a --suction-pressure '29 psig'", "--suction-temperature '41 F'"),
+    "component": (
+        "component condenser R-134a --inlet '9.1 bar g, 68 C'",
+        "--outlet '9 bar g, SC 4 K' --mass-flow '0.14 kg/s'",
+    ),
+    "stream": ("stream water --inlet '12 C' --outlet '7 C' --flow '3.2 L/s'",),
+    "machine": (
+        "machine R-134a",
+        "--suction-pressure '1 bar g' --suction-temperature '8 C'",
+        "--discharge-pressure '9.1 bar g' --discharge-temperature '68 C'",
+        "--liquid-temperature '32 C' --electrical-power '6.2 kW'",
+    ),
+    "convert": ("convert '12.4 bar g'",),
+}
+
+
 def _add_check(commands: Any, check: Any) -> None:
     from gaugeside.checks.picture import DRAWN
 
-    command = commands.add_parser(check.name, help=_plain(check.summary))
+    command = commands.add_parser(check.name, help=_plain(check.summary), **_with_example(check.name))
     before = [line for line in check.reading_lines() if line.positional and line.choices]
     after = [line for line in check.reading_lines() if line.positional and not line.choices]
     for line in before:
@@ -177,7 +196,9 @@ def _add_check(commands: Any, check: Any) -> None:
         command.add_argument(line.name, help=_plain(line.help))
     for line in check.reading_lines():
         if not line.positional:
-            command.add_argument(f"--{line.name.replace('_', '-')}", metavar="READING", help=_plain(line.help))
+            said = f"{', '.join(line.choices)}. {line.help}" if line.choices else line.help
+            metavar = "WORD" if line.choices else "READING"
+            command.add_argument(f"--{line.name.replace('_', '-')}", metavar=metavar, help=_plain(said))
     _add_common(command)
     if check.name in DRAWN:
         command.add_argument("--picture", action="store_true", help="draw the readings among the refrigerant's curves")
@@ -187,6 +208,12 @@ def _add_check(commands: Any, check: Any) -> None:
     command.add_argument("--tag", default=None, help="which machine, for the logbook")
     command.add_argument("--note", default="", help="a note for the logbook")
     command.set_defaults(run=_run_check, check=check)
+
+
+def _with_example(name: str) -> dict[str, Any]:
+    """Return what a parser takes to end its help with a command that may be copied, its lines left as they are."""
+    example = " \\\n      ".join(EXAMPLES[name])
+    return {"epilog": f"example:\n  gaugeside {example}", "formatter_class": argparse.RawDescriptionHelpFormatter}
 
 
 def _plain(help_text: str) -> str:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import shlex
 from pathlib import Path
 from typing import Any
 
@@ -388,3 +389,13 @@ def test_without_a_terminal_the_app_says_what_else_there_is(run: Any) -> None:
     found = run()
     assert found.status == 2
     assert "one-shot commands" in found.err
+
+
+@pytest.mark.parametrize("name", cli.EXAMPLES)
+def test_the_example_under_each_help_can_be_copied_and_answers(run: Any, name: str) -> None:
+    said = run(name, "--help").out
+    example = said[said.index("  gaugeside ") :]
+    assert all(len(line) <= 80 for line in example.splitlines())
+    words = shlex.split(example.replace("\\\n", " "))
+    assert words[:2] == ["gaugeside", name]
+    assert run(*words[1:]).status == 0
