@@ -176,7 +176,7 @@ EXAMPLES = {
         "machine R-134a",
         "--suction-pressure '1 bar g' --suction-temperature '8 C'",
         "--discharge-pressure '9.1 bar g' --discharge-temperature '68 C'",
-        "--liquid-temperature '32 C' --electrical-power '6.2 kW'",
+        "--liquid-temperature '32 C' --electrical-power '6.2 kW' --drive hermetic",
     ),
     "convert": ("convert '12.4 bar g'",),
 }
