@@ -201,3 +201,23 @@ def test_heat_gained_by_the_suction_line_is_no_cooling() -> None:
 def test_small_flows_and_powers_keep_three_digits(value: float, kind: Kind, label: str, text: str) -> None:
     """Factors of NIST SP 811 (2008), appendix B.8, by hand."""
     assert write(value, unit(kind, label), kind, SEA_LEVEL) == text
+
+
+def test_a_refrigerant_without_a_safety_class_is_not_passed_over() -> None:
+    """R-41 has no class in ASHRAE 34, and burns."""
+    assert "No safety class of R-41" in said(ask("saturation", "R-41", reading="10 bar abs"))
+    assert "safety class" not in said(ask("saturation", "R-134a", reading="10 bar abs"))
+
+
+def test_compressor_that_draws_below_the_atmosphere() -> None:
+    typed = {"component": "compressor", "outlet": "6 bar abs, 60 C", "mass_flow": "0.01 kg/s"}
+    assert "Suction is below the atmosphere" in said(ask("component", "R-600a", **typed, inlet="0.9 bar abs, 0 C"))
+    assert "Suction is below the atmosphere" not in said(ask("component", "R-600a", **typed, inlet="1.1 bar abs, 0 C"))
+
+
+def test_more_gas_than_the_displacement_holds_is_told() -> None:
+    found = ask("machine", "R-134a", **MACHINE, mass_flow="0.14 kg/s", displacement="50 m3/h")
+    share = 0.14 / (50 / 3600 * r134a("D", 2e5, 0))
+    assert share > 1
+    assert number(found, "volumetric_efficiency") == pytest.approx(share, rel=1e-7)
+    assert "cannot be" in found.remarks["volumetric_efficiency"].text

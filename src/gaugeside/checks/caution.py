@@ -28,6 +28,10 @@ def refrigerant_caution(conditions: Conditions, outcome: Outcome) -> None:
         outcome.caution(f"{refrigerant.designation} is {words}: ventilate, no ignition source, follow local code.")
     elif refrigerant.designation == "R-744":
         outcome.caution("R-744 stands at high pressure and displaces air in closed rooms: vent and enter with care.")
+    elif not refrigerant.safety_class:
+        outcome.caution(
+            f"No safety class of {refrigerant.designation} is known here: treat it as flammable and toxic."
+        )
 
 
 def suction_caution(conditions: Conditions, outcome: Outcome, pressure: float) -> None:
@@ -57,6 +61,6 @@ def model_note(conditions: Conditions, outcome: Outcome) -> None:
     refrigerant = conditions.refrigerant
     if refrigerant.model_uncertainty >= 0.1:
         outcome.note(
-            f"The property model itself is uncertain by about {{model}}: {refrigerant.model_uncertainty_reason}",
+            f"The property model itself is uncertain by about {{model}}: {refrigerant.model_uncertainty_reason}.",
             model=(refrigerant.model_uncertainty, Kind.TEMPERATURE_DIFFERENCE),
         )

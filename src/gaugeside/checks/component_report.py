@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Any
 
-from gaugeside.checks.caution import discharge_cautions, model_note, refrigerant_caution
+from gaugeside.checks.caution import discharge_cautions, model_note, refrigerant_caution, suction_caution
 from gaugeside.checks.component_kinds import WRONG_WAY, Setup
 from gaugeside.checks.sheet import Conditions, Outcome
 from gaugeside.errors import Refusal
@@ -46,7 +46,7 @@ def report(conditions: Conditions, setup: Setup, outcome: Outcome) -> None:
     elif inlet is not None and outlet is not None and outlet.pressure >= inlet.pressure:
         outcome.note("The outlet pressure is not below the inlet pressure: nothing expands; check which is which.")
     if setup.component in ("compressor", "pump"):
-        _report_machine(setup, outcome, inlet, outlet)
+        _report_machine(conditions, setup, outcome)
     if setup.component == "liquid-suction":
         _report_effectiveness(known, outcome)
     outcome.note(f"Enthalpies: {conditions.fluid.datum_note}.")
@@ -92,8 +92,9 @@ def _report_energy(setup: Setup, outcome: Outcome) -> None:
         outcome.note(f"Wrong way round: {WRONG_WAY[setup.component]}. Check which side is the inlet.")
 
 
-def _report_machine(setup: Setup, outcome: Outcome, inlet: State | None, outlet: State | None) -> None:
+def _report_machine(conditions: Conditions, setup: Setup, outcome: Outcome) -> None:
     known, found = setup.network.known, outcome.findings
+    inlet, outlet = known.get("inlet"), known.get("outlet")
     for name in ("electrical_power", "motor_efficiency", "isentropic_efficiency"):
         setattr(found, name, known.get(name))
     _too_good(setup, outcome)
@@ -112,6 +113,7 @@ def _report_machine(setup: Setup, outcome: Outcome, inlet: State | None, outlet:
         elif inlet.vapour_fraction is not None and inlet.vapour_fraction > 0:
             outcome.note("Vapour enters the pump: it cavitates.")
         return
+    suction_caution(conditions, outcome, inlet.pressure)
     discharge_cautions(outcome, outlet.temperature, ratio)
     if inlet.region in (Region.SUBCOOLED, Region.LIQUID_ABOVE_CRITICAL_PRESSURE):
         outcome.note("Liquid enters the compressor: it breaks. Check the component chosen and the inlet.")

@@ -209,6 +209,8 @@ def _report_flows(flows: Flows, circuit: Circuit, outcome: Outcome) -> None:
     found.mass_flow, found.heat_absorbed, found.heat_rejected = flows.mass_flow, flows.absorbed, flows.rejected
     found.power_to_refrigerant, found.electrical_power = flows.power, flows.electrical
     found.volumetric_efficiency = flows.volumetric_efficiency
+    if flows.volumetric_efficiency is not None and flows.volumetric_efficiency > 1:
+        outcome.remark("volumetric_efficiency", "above 100 % cannot be: a reading is wrong")
     for name, words in flows.sources.items():
         outcome.remark(name, words)
     work = flows.electrical if flows.electrical is not None else flows.power
