@@ -1,4 +1,4 @@
-"""What a person has to read stands whole: long refusals, wide tables, the help, and where the cursor is after clearing."""
+"""What a person has to read stands whole: long refusals, wide tables, the help; a cleared sheet starts at its top."""
 
 from __future__ import annotations
 

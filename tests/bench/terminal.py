@@ -22,8 +22,8 @@ from pathlib import Path
 # In the place of this folder, where this file itself has the name of what is imported.
 sys.path[0] = str(Path(__file__).resolve().parents[1])
 
-from terminal.apps import READY, app
-from terminal.harness import Terminal
+from terminal.apps import READY, app  # noqa: E402
+from terminal.harness import Terminal  # noqa: E402
 
 READINGS = ("38 psig", "28 F", "14.1 bar g", "29 C", "15 bar g", "65 C")
 PAUSE = 0.2  # [s] between keys, as fast as most people type

@@ -273,10 +273,9 @@ def test_a_killed_helper_is_survived_with_a_word_and_the_next_key_works(tmp_path
 
 
 def test_the_helpers_noise_never_reaches_the_screen(tmp_path: Path) -> None:
-    noise = "import os; os.write(1, b'NOISE'); os.write(2, b'NOISE')"
-    environ = with_helper(
-        tmp_path, f"import threading\nthreading.Timer(1.0, lambda: [{noise.split('; ')[1]}]).start()\nimport os"
-    )
+    noise = "def cry():\n    while True: time.sleep(0.1); os.write(2, b'NOISE')"
+    start = "threading.Thread(target=cry, daemon=True).start()"
+    environ = with_helper(tmp_path, f"import os, threading, time\n{noise}\n{start}")
     with app(tmp_path, environ=environ) as shown:
         shown.wait_for(READY)
         typed(shown, "2 bar g\t5 C")

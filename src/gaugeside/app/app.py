@@ -14,7 +14,7 @@ from textual.binding import Binding
 from textual.containers import Container
 
 from gaugeside.app.driver import TerminalDriver
-from gaugeside.app.frame import HIGH, MENU, PANES, WIDE, head_line, keys_line, rule_line, tabs_line
+from gaugeside.app.frame import HIGH, LOW, MENU, PANES, TINY, WIDE, head_line, keys_line, rule_line, tabs_line
 from gaugeside.app.help_text import help_lines
 from gaugeside.app.house import House
 from gaugeside.app.panes.logbook import LogbookPane
@@ -49,7 +49,10 @@ class GaugesideApp(House):
     .rule { text-overflow: clip; }
     #word { height: 2; }
     #word > Line { height: 1; }
+    Screen.-low #tabs, Screen.-low #rule { display: none; }
+    Screen.-low #word { height: 1; }
     Screen.-narrow FieldLine { height: 2; layout: grid; grid-size: 2 2; grid-columns: 20 1fr; grid-rows: 1 1; }
+    Screen.-tiny FieldLine { grid-columns: 9 1fr; }
     Screen.-narrow FieldLine > .understood { column-span: 2; width: 1fr; padding-left: 2; }
     Screen.-narrow FieldLine > TextField { width: 1fr; }
     Screen.-narrow FieldLine > ChoiceField { width: 1fr; }
@@ -119,6 +122,8 @@ class GaugesideApp(House):
     def on_resize(self) -> None:
         """Lay the frame out anew, in two lines a reading where the window is narrow."""
         self.base.set_class(self.size.width < WIDE, "-narrow")
+        self.base.set_class(self.size.width < TINY, "-tiny")
+        self.base.set_class(self.size.height < LOW, "-low")
         self.call_after_refresh(self._frame)
 
     def _frame(self) -> None:

@@ -22,6 +22,8 @@ _NOT_SENT = frozenset({"\x1b[?1004h", "\x1b[?1004l", "\x1b[?2026$p", "\x1b[?2048
 _POINTER = "\x1b]22;"
 _OTHER_SCREEN, _CLEAR = "\x1b[?1049h", "\x1b[H\x1b[2J"
 _WAIT = 0.1
+# Seconds after a change of the window's size until it is painted whole, by when the change has been taken in.
+_RESIZED = 0.15
 
 
 def erases_in_colour() -> bool:
@@ -37,11 +39,25 @@ class TerminalDriver(LinuxDriver):
 
     def __init__(self, *arguments: Any, **options: Any) -> None:
         self._cells = Cells(erases_in_colour())
+        self._has_screen = False
         super().__init__(*arguments, **options)
 
     def repaint(self) -> None:
         """Send everything with the next paint, whatever stands on the screen."""
         self._cells.forget()
+
+    def _get_terminal_size(self) -> tuple[int, int]:
+        # Asked for when the window changes: what it then shows of its old content is the terminal's own affair, and
+        # a paint for the old size may still be under way. One that comes back to its size is painted anew all the same.
+        self._cells.forget()
+        if self._has_screen:
+            self._loop.call_soon_threadsafe(self._loop.call_later, _RESIZED, self._paint_anew)
+        return super()._get_terminal_size()
+
+    def _paint_anew(self) -> None:
+        self._cells.forget()
+        if self._app.screen_stack:
+            self._app.screen.refresh(layout=True)
 
     def write(self, data: str) -> None:
         """Write what `data` changes on the screen."""
@@ -49,6 +65,7 @@ class TerminalDriver(LinuxDriver):
             return
         if data == _OTHER_SCREEN:
             # The Linux console has no other screen; there the shell's lines would shine through.
+            self._has_screen = True
             super().write(data + _CLEAR)
             self._cells.clear(*self._app.size)
             return

@@ -18,6 +18,10 @@ PANES = {
     "stream": "F12",
 }
 WIDE, HIGH = 80, 24
+# Below this height [lines] the frame leaves its room to the form.
+LOW = 10
+# Below this width [characters] a label leaves half of its room to the field.
+TINY = 40
 
 _KEYS = "Enter keep F1 help F8 refrigerant F9 machine, note ^G picture ^O menu F10 leave"
 _OTHER_KEYS = {

@@ -4,11 +4,29 @@ from __future__ import annotations
 
 import textwrap
 from collections.abc import Sequence
+from typing import Any
 
 from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, Styled
 from gaugeside.checks.sheet import Answer, Check, Remark
 from gaugeside.checks.view import FindingText, TableText, every_pressure, findings, sentence, table
+from gaugeside.engine import Reply
+from gaugeside.errors import Refusal
 from gaugeside.quantities import Dress, Site
+
+
+def answer_of(reply: Reply) -> tuple[Answer | None, Refusal | None]:
+    """Return what a reply answers and what it refuses; one that makes no sense is refused."""
+    answer = None
+    unresolved: dict[str, Any] | None = reply.error or {"field": None, "message": reply.fault, "hint": ""}
+    try:
+        if reply.answer is not None:
+            answer = Answer.from_plain(reply.answer)
+            unresolved = answer.unresolved
+        if unresolved is None:
+            return answer, None
+        return answer, Refusal(str(unresolved["message"]), str(unresolved["hint"] or ""), unresolved["field"])
+    except (KeyError, TypeError, ValueError, AttributeError):
+        return None, Refusal("The property helper's answer makes no sense.", "Change a reading to try again.")
 
 
 def answer_lines(check: Check, answer: Answer, dress: Dress, site: Site, width: int) -> list[Styled]:

@@ -14,7 +14,7 @@ from textual.widget import Widget
 from textual.widgets import Input
 
 from gaugeside.app.charset import is_ascii
-from gaugeside.app.panes.answer_lines import answer_lines
+from gaugeside.app.panes.answer_lines import answer_lines, answer_of
 from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
 from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, RULE, Line, Lines, Styled
 from gaugeside.checks.perform import request
@@ -393,18 +393,3 @@ class SheetPane(VerticalScroll, can_focus=False):
             self.house.say("Working; the answer is kept when it comes.")
         else:
             self.house.keep(self)
-
-
-def answer_of(reply: Reply) -> tuple[Answer | None, Refusal | None]:
-    """Return what a reply answers and what it refuses; one that makes no sense is refused."""
-    answer = None
-    unresolved: dict[str, Any] | None = reply.error or {"field": None, "message": reply.fault, "hint": ""}
-    try:
-        if reply.answer is not None:
-            answer = Answer.from_plain(reply.answer)
-            unresolved = answer.unresolved
-        if unresolved is None:
-            return answer, None
-        return answer, Refusal(str(unresolved["message"]), str(unresolved["hint"] or ""), unresolved["field"])
-    except (KeyError, TypeError, ValueError, AttributeError):
-        return None, Refusal("The property helper's answer makes no sense.", "Change a reading to try again.")
