@@ -55,7 +55,8 @@ runpy.run_module(MODULE, run_name="__main__", alter_sys=True)
 COMMANDS = [
     ["saturation", "R-454C", "12.4 bar g", "--json", "--keep"],
     ["superheat", "R-448A", "--suction-pressure", "2.6 bar g", "--suction-temperature", "2 C", "--picture"],
-    ["component", "condenser", "R-134a", "--inlet", "9.1 bar g, 68 C", "--outlet", "9 bar g, SC 4 K"],
+    ["component", "condenser", "R-134a", "--inlet", "9.1 bar g, 68 C", "--outlet", "9 bar g, SC 4 K",
+     "--mass-flow", "0.14 kg/s"],
     ["stream", "water", "--inlet", "12 C", "--outlet", "7 C", "--flow", "10 m3/h"],
     ["machine", "R-134a", "--suction-pressure", "1 bar g", "--discharge-pressure", "9 bar g",
      "--suction-temperature", "0 C", "--discharge-temperature", "70 C"],
