@@ -156,7 +156,7 @@ def _parser() -> argparse.ArgumentParser:
     convert.set_defaults(run=_convert)
     refrigerants = commands.add_parser("refrigerants", help="the catalogue, or the part of it that matches")
     refrigerants.add_argument("part", nargs="?", default="", help="part of a designation, name or component")
-    refrigerants.add_argument("--json", action="store_true")
+    refrigerants.add_argument("--json", action="store_true", help="the same as JSON")
     refrigerants.set_defaults(run=_refrigerants)
     _add_table(commands)
     _add_logbook(commands)
@@ -250,9 +250,9 @@ def _add_logbook(commands: Any) -> None:
     listing.add_argument("words", nargs="*", help="only entries that hold all these words")
     listing.add_argument("--most", type=int, default=200, help="how many at the most (200)")
     showing = actions.add_parser("show", help="one entry whole")
-    showing.add_argument("number", type=int)
+    showing.add_argument("number", type=int, help="of the entry, as the list shows it")
     for action, run in ((listing, _logbook_list), (showing, _logbook_show)):
-        action.add_argument("--json", action="store_true")
+        action.add_argument("--json", action="store_true", help="the same as JSON")
         action.add_argument("--logbook", type=Path, metavar="PATH", default=argparse.SUPPRESS, help=argparse.SUPPRESS)
         action.set_defaults(run=run)
 

@@ -182,6 +182,11 @@ def test_convert_shows_every_unit_gauge_and_absolute(run: Any) -> None:
     lines = run("convert", "1 bar g").out.splitlines()
     for expected in ("  1.00 bar g", "  14.5 psi g", "  2.01 bar abs", "  29.2 psi abs", "  29.53 inHg g"):
         assert expected in lines
+    assert not [line for line in lines if "vac" in line or "micron" in line]
+    below = run("convert", "-10 inHg g").out.splitlines()
+    # 1 inHg is 3386.389 Pa (NIST SP 811), 1 psi 6894.757 Pa.
+    for expected in ("  10.00 inHg vac", "  4.9 psi vac", "  506000 micron"):
+        assert expected in below
     assert "As a temperature difference it would be 10.0 K = 18.0 °F" in run("convert", "10 C").out
 
 

@@ -185,7 +185,8 @@ def test_what_can_be_read_two_ways_is_refused(text: str, kind: Kind, words: list
         ("0 bar abs", Kind.PRESSURE, ["no pressure is left"]), ("-5 micron", Kind.PRESSURE, ["no pressure is left"]),
         ("-10 inHg vac", Kind.PRESSURE, ["A vacuum counts downward: write 10 inHg vac"]),
         ("-1 kPa", Kind.ABSOLUTE_PRESSURE, ["not above zero absolute pressure"]),
-        ("25", Kind.FRACTION, ["not between 0 and 1", "Write 25 % or 0.25, if"]), ("101 %", Kind.FRACTION, ["not between", "for example 25 %"]),
+        ("25", Kind.FRACTION, ["not between 0 and 1", "Write 25 % or 0.25, if"]),
+        ("101 %", Kind.FRACTION, ["not between", "for example 25 %"]),
         ("-0.1", Kind.FRACTION, ["not between"]),
     ],
 )  # fmt: skip

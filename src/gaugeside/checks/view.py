@@ -178,11 +178,13 @@ def _senses(values: dict[str, float], label: str, site: Site) -> list[str]:
 
 
 def every_unit(value: float, kind: Kind, site: Site) -> list[str]:
-    """Return one value in every unit of its kind, pressures gauge and absolute."""
+    """Return one value in every unit of its kind, pressures gauge and absolute, below the atmosphere as vacuum too."""
+    wanted = list(labels(kind))
     if kind is Kind.PRESSURE:
-        wanted = [label for label in labels(kind) if unit(kind, label).sense in (Sense.GAUGE, Sense.ABSOLUTE)]
-    else:
-        wanted = list(labels(kind))
+        vacuum = value < site.atmosphere
+        senses = (Sense.GAUGE, Sense.ABSOLUTE, *([Sense.VACUUM] if vacuum else []))
+        # A vacuum gauge's unit has no use above the atmosphere.
+        wanted = [label for label in wanted if unit(kind, label).sense in senses and (vacuum or label != "micron")]
     return [write(value, unit(kind, label), kind, site) for label in wanted]
 
 
