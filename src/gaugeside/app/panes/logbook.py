@@ -120,7 +120,8 @@ class LogbookPane(VerticalScroll, can_focus=False):
         for place, entry in enumerate(self.entries[self._top : self._top + rows], self._top):
             when = entry.kept_at.astimezone().strftime("%m-%d %H:%M")
             mark = ">" if place == self._selected else " "
-            machine = f"{(entry.tag or '-')[:12]:<12}  " if wide else ""
+            tag = entry.tag or "-"
+            machine = f"{tag if len(tag) <= 12 else f'{tag[:10]}..':<12}  " if wide else ""
             what = f"{mark} {when}  {entry.refrigerant:<10}  {machine}{entry.headline}"
             lines.append((what, "reverse" if place == self._selected else ""))
         self._understood()
