@@ -142,7 +142,8 @@ class House(KeysInTurn):
             more = len(self._messages) - 1
             text, style = self._messages[0] + (f" ({more} more: F1)" if more else ""), CAUTION
         shown = word_lines(text or (FOOTNOTE if self.now in CHECKS else ""), self.size.width)
-        for line, part in zip(self.base.query("#word > Line").results(Line), shown, strict=True):
+        # While the app ends its lines go one by one, and a thread may still have something to say.
+        for line, part in zip(self.base.query("#word > Line").results(Line), shown, strict=False):
             line.say(part, style)
 
     @property

@@ -140,6 +140,9 @@ class SheetPane(VerticalScroll, can_focus=False):
 
     def read_all(self) -> None:
         """Read every line again, as after a change of site, units or refrigerant."""
+        if not self._lines:
+            # Not composed yet: it reads itself when it is.
+            return
         for line in self.check.reading_lines():
             self._read(line)
         self._show_meant()
