@@ -12,9 +12,9 @@ SHORT = {
     "escape": "\x1b[2J", "title": "\x1b]0;OWNED\x07", "c1": "5\x9b31m bar", "shift out": "\x0e5 bar",
     "nul": "5\x00 bar", "backspace": "5\b6 bar", "line end": "5 bar\r\nrm", "bidi": "5 \u202ebar",
     "zero width": "5\u200b bar", "surrogate": "5\ud800 bar", "markup": "[b]5 bar[/b]",
-    "format": "{0.__class__} bar", "percent": "%s%n bar", "path": "../../../etc/passwd", "sql": "'; DROP TABLE entries;--",
-    "shell": "$(touch owned) `id` bar", "expression": "__import__('os') bar", "power": "9**9**9 bar", "exponent": "1e999999999 bar",
-    "nested": "(" * 10**5,
+    "format": "{0.__class__} bar", "percent": "%s%n bar", "path": "../../../etc/passwd",
+    "sql": "'; DROP TABLE entries;--", "shell": "$(touch owned) `id` bar", "expression": "__import__('os') bar",
+    "power": "9**9**9 bar", "exponent": "1e999999999 bar", "nested": "(" * 10**5,
     "other digits": "٣٤ bar", "half": "½ bar", "combining": "5" + "\u0301" * 60, "nan": "nan", "infinite": "inf bar",
     "all": EVIL,
 }  # fmt: skip
