@@ -86,7 +86,7 @@ def looks(screen: pyte.Screen) -> list[list[tuple[object, ...]]]:
     return rows
 
 
-@settings(max_examples=300, deadline=None)
+@settings(max_examples=150, deadline=None)
 @given(paints=PAINTS, erases_in_colour=st.booleans(), cleared=st.booleans())
 def test_the_screen_is_the_same_as_if_all_had_been_sent(
     paints: list[list[tuple[int, int, list[tuple[str, str]]]]], erases_in_colour: bool, cleared: bool

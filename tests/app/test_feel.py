@@ -196,7 +196,7 @@ async def test_refused_input_stays_and_says_field_reason_and_instead() -> None:
         await shown.see("Not kept: ")
         await shown.type("\t1,234 kpa")
         assert shown.pane("superheat").texts()["suction_pressure"] == "38 psik"
-        await shown.press("shift+tab", "backspace")
+        await shown.press("shift+tab", "end", "backspace")
         assert shown.pane("superheat").texts()["suction_pressure"] == "38 psi"
         await shown.see("suction pipe: ")
         assert entries() == []
@@ -376,7 +376,7 @@ async def test_ctrl_c_leaves_nothing_behind_and_says_how_to_leave() -> None:
         assert "F10 or Ctrl+Q leaves." in shown.word
 
 
-@pytest.mark.parametrize("size", [(80, 24), (40, 10), (20, 5), (120, 40), (300, 100)])
+@pytest.mark.parametrize("size", [(80, 24), (40, 10), (20, 5), (300, 100)])
 async def test_every_pane_and_dialog_at_every_size(size: tuple[int, int]) -> None:
     async with sheet("R-454C", size=size) as shown:
         await shown.type("38 psig\t2 C")
