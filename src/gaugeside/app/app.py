@@ -211,6 +211,8 @@ class GaugesideApp(House):
         def picked(found: Any) -> None:
             if isinstance(found, Refrigerant):
                 self.use(found)
+                if self.settings.tag:
+                    self.say(f"What is kept goes under machine {self.settings.tag}; F9 changes it.")
 
         await self._open(RefrigerantPicker(), picked)
 

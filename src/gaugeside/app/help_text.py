@@ -41,6 +41,7 @@ KEYS = (
     ("Delete, Ctrl+Z", "in the logbook: delete the entry selected, bring it back"),
     ("Ctrl+G", "the readings as a picture, and back"),
     ("Ctrl+L", "paint the screen again;  Ctrl+U clear the field"),
+    ("End", "write on behind what stands in a field; typing at once replaces it"),
 )
 WRITING = (
     "A number, then its unit: 185 psig, 12,4 bar g, -5 °C, 23 inHg vac, 0.14 kg/s, 6 TR. Point or comma for "

@@ -185,7 +185,8 @@ def _saturated(
                 if name == "suction_pressure"
                 else "so no subcooling; the high side is a gas cooler, judged by its outlet temperature."
             )
-            outcome.note(
+            # Among the cautions, which stand first: whoever reads on looks for a subcooling that cannot be.
+            outcome.caution(
                 f"{place} pressure {{pressure}} is above the critical {{critical}}: there is no bubble or dew point, "
                 f"{what}",
                 pressure=(pressure, Kind.PRESSURE),

@@ -9,6 +9,7 @@ from textual import events
 from textual.app import ComposeResult
 from textual.containers import Horizontal
 from textual.message import Message
+from textual.widget import Widget
 from textual.widgets import Input, Static
 
 from gaugeside.app.charset import shown_text, typed_text
@@ -17,10 +18,17 @@ from gaugeside.app.widgets.lines import Line
 LONGEST_TYPED = 200
 
 
+def move_focus(field: Widget, by: int) -> None:
+    """Go from a field to the next; what stands there is selected, so that the next round's reading replaces it."""
+    found = field.screen.focus_next() if by > 0 else field.screen.focus_previous()
+    if isinstance(found, TextField):
+        found.select_all()
+
+
 class TextField(Input):
     """The typed part of a line; its value is kept as typed."""
 
-    BINDINGS = [("up", "app.focus_previous"), ("down", "app.focus_next")]
+    BINDINGS = [("up,shift+tab", "move(-1)"), ("down,tab", "move(1)")]
 
     def __init__(self, value: str = "", *, id: str | None = None, placeholder: str = "") -> None:
         super().__init__(
@@ -33,6 +41,10 @@ class TextField(Input):
         )
         self.cursor_blink = False
 
+    def action_move(self, by: int) -> None:
+        """Go to the field before or behind, ready to be typed over."""
+        move_focus(self, by)
+
     def validate_value(self, value: str) -> str:
         """Let no character in that a terminal would obey, however it came: pasted, from a draft, a logbook."""
         return typed_text(value)
@@ -42,8 +54,8 @@ class ChoiceField(Static, can_focus=True):
     """One of a few words: Left and Right, Space, or the first letter of a word change it."""
 
     BINDINGS = [
-        ("up", "app.focus_previous"),
-        ("down", "app.focus_next"),
+        ("up,shift+tab", "move(-1)"),
+        ("down,tab", "move(1)"),
         ("left", "step(-1)"),
         ("right,space", "step(1)"),
         ("enter", "submit"),
@@ -82,6 +94,10 @@ class ChoiceField(Static, can_focus=True):
     def value(self, value: str) -> None:
         self._value = value
         self.update(shown_text(f"< {value} >"), layout=False)
+
+    def action_move(self, by: int) -> None:
+        """Go to the field before or behind."""
+        move_focus(self, by)
 
     def action_step(self, by: int) -> None:
         """Choose the next or the previous word."""
