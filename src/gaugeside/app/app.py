@@ -97,6 +97,8 @@ class GaugesideApp(House):
     async def on_mount(self) -> None:
         """Start the helper, the theme and the pane that was open last."""
         self.event_loop = asyncio.get_running_loop()
+        # Not before: the helper's loading would keep the first frame waiting; not later: nor the first answer.
+        self.engine.start()
         pane = self._pane()
         self._follow_scrolling(pane)
         self.head()

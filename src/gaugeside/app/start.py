@@ -62,8 +62,6 @@ def start(logbook: Path | None, ascii_alone: bool = False) -> int:
     app = GaugesideApp(home, settings, draft, themes, messages, dict(os.environ), engine)
     modes = termios.tcgetattr(0)
     threading.Thread(target=_watch, args=(app, modes), name="signals", daemon=True).start()
-    # Not before: on a busy machine the helper's loading would keep the imports for the first frame waiting.
-    engine.start()
     try:
         app.run(mouse=False)
     finally:
