@@ -146,7 +146,6 @@ async def sheet(
     engine = Engine(
         lambda _: None, lambda _: None, log=where.log_file, own_folder=where.settings_folder, command=command
     )
-    engine.start()
     app = GaugesideApp(where, known, draft, themes, [*messages, *more, *faults], shown, engine)
     try:
         async with app.run_test(size=size) as pilot:
