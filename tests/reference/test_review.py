@@ -94,7 +94,7 @@ def test_vacuum_at_the_suction_gauge_is_told_although_the_clamp_is_above_atmosph
 
 def test_suction_above_the_critical_point_is_no_gas_cooler() -> None:
     found = ask("superheat", "R-744", suction_pressure="80 bar g", discharge_pressure="100 bar g")
-    said_of_suction = next(note.text for note in found.notes if note.text.startswith("Suction"))
+    said_of_suction = next(note.text for note in found.cautions if note.text.startswith("Suction"))
     assert "gas cooler" not in said_of_suction
     assert "no superheat" in said_of_suction
 
