@@ -29,9 +29,7 @@ def refrigerant_caution(conditions: Conditions, outcome: Outcome) -> None:
     elif refrigerant.designation == "R-744":
         outcome.caution("R-744 stands at high pressure and displaces air in closed rooms: vent and enter with care.")
     elif not refrigerant.safety_class:
-        outcome.caution(
-            f"No safety class of {refrigerant.designation} is known here: treat it as flammable and toxic."
-        )
+        outcome.caution(f"No safety class of {refrigerant.designation} is known here: treat it as flammable and toxic.")
 
 
 def suction_caution(conditions: Conditions, outcome: Outcome, pressure: float) -> None:
