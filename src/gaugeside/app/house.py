@@ -196,7 +196,10 @@ class House(KeysInTurn):
         self.form_changed()
 
     def _not_kept(self, refusal: Refusal) -> None:
-        self.say(f"NOT KEPT: {refusal.sentence()}", CAUTION)
+        # Its path would fill the two lines, and the reason stands behind it; the site pane shows the path.
+        path = str(self.places.logbook_file)
+        why = refusal.sentence().replace(f"The logbook {path}", "The logbook").replace(path, "the logbook")
+        self.say(f"NOT KEPT: {why}", CAUTION)
 
     async def open_entry(self, entry: Entry) -> None:
         """Bring an entry's readings back into their pane."""
