@@ -117,9 +117,13 @@ def _print_ascii(text: str) -> None:
 
 def _has_unicode(stream: Any) -> bool:
     """Whether every character can be written to an output stream, by its encoding and by the locale."""
-    from gaugeside.app.charset import speaks_utf8
+    from gaugeside.app.charset import first_environ, speaks_utf8
 
-    return speaks_utf8(os.environ, getattr(stream, "encoding", None))
+    environ = dict(os.environ)
+    if "LC_CTYPE" not in first_environ():
+        # The interpreter's own, put in the place of a C locale at its start.
+        environ.pop("LC_CTYPE", None)
+    return speaks_utf8(environ, getattr(stream, "encoding", None))
 
 
 def _printer(arguments: argparse.Namespace) -> Callable[[str], None]:

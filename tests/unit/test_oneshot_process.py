@@ -47,7 +47,7 @@ def test_refusal_as_json_is_the_only_output(tmp_path: Path) -> None:
 
 @pytest.mark.parametrize(
     "changes",
-    [{"LC_ALL": "C"}, {"PYTHONIOENCODING": "ascii"}, {"PYTHONIOENCODING": "latin-1"}],
+    [{"LC_ALL": "C"}, {"LANG": "C"}, {"PYTHONIOENCODING": "ascii"}, {"PYTHONIOENCODING": "latin-1"}],
 )
 @pytest.mark.parametrize(
     "words",
