@@ -298,18 +298,18 @@ def _table(arguments: argparse.Namespace) -> int:
 
 
 def _refrigerants(arguments: argparse.Namespace) -> int:
-    from gaugeside.oneshot import list_refrigerants
+    from gaugeside.listings import list_refrigerants
 
     return list_refrigerants(arguments, _printer(arguments))
 
 
 def _logbook_list(arguments: argparse.Namespace) -> int:
-    from gaugeside.oneshot import list_logbook
+    from gaugeside.listings import list_logbook
 
     return list_logbook(arguments, _printer(arguments))
 
 
 def _logbook_show(arguments: argparse.Namespace) -> int:
-    from gaugeside.oneshot import show_entry
+    from gaugeside.listings import show_entry
 
     return show_entry(arguments, _printer(arguments))

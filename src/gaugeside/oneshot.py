@@ -27,7 +27,6 @@ from gaugeside.checks.view import (
 from gaugeside.drawing import draw
 from gaugeside.errors import Refusal
 from gaugeside.keeping import entry_of, json_findings, with_linked_entries
-from gaugeside.logbook import Entry as LogbookEntry
 from gaugeside.logbook import Logbook
 from gaugeside.preferences import dress_of, overridden, site_of
 from gaugeside.quantities import (
@@ -48,7 +47,7 @@ from gaugeside.quantities import (
     unit,
     write,
 )
-from gaugeside.refrigerants import find, load_own, search
+from gaugeside.refrigerants import find, load_own
 from gaugeside.settings import Places, Settings, load_settings, places
 
 Printer = Callable[[str], None]
@@ -312,101 +311,3 @@ def _kind_of(text: str) -> Kind:
     kind = nearest_kind(unit_text, [kind for kind in Kind if kind is not Kind.WORDS])
     read(text, kind, unit(Kind.PRESSURE, "bar g"), Dress(), Site())
     raise Refusal(f"{quoted(text)} is not understood.", f"Write for example {example(Kind.PRESSURE)}.")
-
-
-def list_refrigerants(arguments: Namespace, say: Printer) -> int:
-    """Print the catalogue, or what of it matches a part of a name."""
-    home = places()
-    troubles = load_own(home.settings_folder)
-    found = search(arguments.part)
-    if not found:
-        find(arguments.part)
-    if arguments.json:
-        documents = [
-            {
-                "designation": r.designation, "names": list(r.names), "nature": r.nature, "modelled": r.modelled,
-                "reason": r.reason, "safety_class": r.safety_class, "gwp": r.gwp, "gwp_source": r.gwp_source,
-                "composition": dict(r.composition),
-                "critical_temperature": {"value": r.critical_temperature, "unit": "K"},
-                "critical_pressure": {"value": r.critical_pressure, "unit": "Pa"},
-                "model_uncertainty": {"value": r.model_uncertainty, "unit": "K"},
-            }
-            for r in found
-        ]  # fmt: skip
-        say(json.dumps({"refrigerants": documents, "notes": troubles}))
-        return 0
-    for r in found:
-        say(refrigerant_line(r))
-    for source in sorted({r.gwp_source for r in found if r.gwp is not None}):
-        say(f"GWP: {source}.")
-    for trouble in troubles:
-        say(f"Note: {trouble}")
-    return 0
-
-
-def refrigerant_line(r: Any) -> str:
-    """Return one line about a refrigerant: designation, class, nature, GWP, composition or names."""
-    gwp = "GWP -" if r.gwp is None else f"GWP {r.gwp:.0f}"
-    mass = " ".join(f"{name.removeprefix('R-')} {100 * fraction:.4g} %" for name, fraction in r.composition)
-    what = ", ".join(r.names) if len(r.composition) < 2 else mass
-    tail = what if r.modelled else f"NOT MODELLED: {r.reason}"
-    return f"{r.designation:<12}{r.safety_class or '-':<5}{r.nature:<10}{gwp:<11}{tail}".rstrip()
-
-
-def list_logbook(arguments: Namespace, say: Printer) -> int:
-    """Print the logbook's entries, newest first."""
-    logbook = Logbook(places(logbook=arguments.logbook).logbook_file)
-    found = logbook.entries(" ".join(arguments.words), limit=max(1, arguments.most))
-    if arguments.json:
-        say(json.dumps({"entries": [entry_json(entry) for entry in found]}))
-        return 0
-    for entry in found:
-        say(entry_line(entry))
-    if not found:
-        say("No entry." if arguments.words else "The logbook is empty.")
-    return 0
-
-
-def show_entry(arguments: Namespace, say: Printer) -> int:
-    """Print one entry whole."""
-    entry = Logbook(places(logbook=arguments.logbook).logbook_file).entry(arguments.number)
-    if arguments.json:
-        say(json.dumps(entry_json(entry)))
-        return 0
-    say(entry_line(entry))
-    for name, text in entry.readings.items():
-        say(f"  {name.replace('_', ' '):<24}{text}")
-    if entry.options.get("site"):
-        say(f"  {'site':<24}{entry.options['site']}")
-    say(f"  {entry.headline}")
-    for text in (*entry.cautions, *entry.notes):
-        say(f"  {text}")
-    return 0
-
-
-def entry_line(entry: LogbookEntry) -> str:
-    """Return one entry as one line."""
-    when = entry.kept_at.astimezone().strftime("%Y-%m-%d %H:%M")
-    parts = (f"{entry.number:>4}", when, entry.check, entry.refrigerant, entry.tag, entry.headline, entry.note)
-    return "  ".join(part for part in parts if part)
-
-
-def entry_json(entry: LogbookEntry) -> dict[str, Any]:
-    """Return one entry as JSON types."""
-    return {
-        "number": entry.number,
-        "kept_at": entry.kept_at.isoformat(),
-        "check": entry.check,
-        "refrigerant": entry.refrigerant,
-        "tag": entry.tag,
-        "note": entry.note,
-        "readings": entry.readings,
-        "options": entry.options,
-        "values": entry.values,
-        "findings": entry.findings,
-        "notes": entry.notes,
-        "cautions": entry.cautions,
-        "headline": entry.headline,
-        "program_version": entry.program_version,
-        "library_version": entry.library_version,
-    }
