@@ -97,9 +97,10 @@ def test_caution_of_the_safety_class(refrigerant: str, words: str) -> None:
     ],
 )
 def test_no_saturation_is_said_in_a_sentence(refrigerant: str, reading: str, words: list[str]) -> None:
-    sentence = refusal("saturation", refrigerant, reading=reading).sentence()
+    refused = refusal("saturation", refrigerant, reading=reading)
+    assert refused.field == "reading"
     for word in words:
-        assert word in sentence
+        assert word in refused.sentence()
 
 
 def test_nothing_typed_is_refused_by_name() -> None:

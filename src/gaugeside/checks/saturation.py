@@ -13,7 +13,7 @@ from gaugeside.errors import OutOfRange, Refusal
 from gaugeside.quantities import Kind
 
 if TYPE_CHECKING:
-    from gaugeside.refrigerants import State
+    from gaugeside.refrigerants import Fluid, State
 
 
 @dataclass(frozen=True)
@@ -60,21 +60,26 @@ def run(conditions: Conditions, readings: Readings) -> Outcome:
     given = readings.reading
     if not given:
         raise Refusal("Nothing is typed.", "Type one pressure or one temperature.", "reading")
-    fluid = conditions.fluid
     outcome = Outcome(Findings())
-    if "pressure" in given:
-        pressure = given["pressure"]
-        bubble, dew = fluid.bubble_at_pressure(pressure), fluid.dew_at_pressure(pressure)
-        bubble_there = bubble
-    else:
-        temperature = given["temperature"]
-        bubble, dew = fluid.bubble_at_temperature(temperature), fluid.dew_at_temperature(temperature)
-        bubble_there = fluid.bubble_at_pressure(dew.pressure)
+    try:
+        bubble, dew, bubble_there = _saturated(conditions.fluid, given)
+    except Refusal as refusal:
+        raise refusal.about("reading") from None
     _fill(outcome, bubble, dew, bubble_there)
     _explain(conditions, outcome, "pressure" in given)
     outcome.tables.append(_neighbours(conditions, dew.temperature))
     refrigerant_caution(conditions, outcome)
     return outcome
+
+
+def _saturated(fluid: Fluid, given: Mapping[str, float]) -> tuple[State, State, State]:
+    """Return bubble and dew point, and the bubble point at the dew point's pressure."""
+    if "pressure" in given:
+        bubble = fluid.bubble_at_pressure(given["pressure"])
+        return bubble, fluid.dew_at_pressure(given["pressure"]), bubble
+    temperature = given["temperature"]
+    bubble, dew = fluid.bubble_at_temperature(temperature), fluid.dew_at_temperature(temperature)
+    return bubble, dew, fluid.bubble_at_pressure(dew.pressure)
 
 
 def _fill(outcome: Outcome, bubble: State, dew: State, bubble_there: State) -> None:
