@@ -205,7 +205,7 @@ def test_convert_shows_every_unit_gauge_and_absolute(run: Any) -> None:
         (["saturation", "R-4544", "5 C"], "refrigerant", "Did you mean R-454"),
         (["saturation", "", "5 C"], "refrigerant", "No refrigerant is named"),
         (["saturation", "R-401A", "5 C"], "refrigerant", "No published mixing model is available"),
-        (["saturation", "R-744", "40 C"], None, "no saturation above its critical point"),
+        (["saturation", "R-744", "40 C"], "reading", "no saturation above its critical point"),
         (["saturation", "R-744", "5 C", "--datum", "nbp"], None, "does not exist for R-744"),
         (["superheat", "R-134a"], "suction_pressure", "No reading is typed"),
         (["superheat", "R-134a", "--suction-temperature", "5 C"], "suction_pressure", "no suction pressure beside it"),
