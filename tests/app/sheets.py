@@ -99,8 +99,10 @@ class Sheet:
         return "\n".join(self.lines())
 
     def line(self, start: str) -> str:
-        """The line that starts so."""
-        found = [line for line in self.lines() if line.strip().startswith(start)]
+        """The line of the sheet that starts so; the help under the sheet has a colon behind the same words."""
+        found = [
+            line for line in self.lines() if line.strip().startswith(start) and not line.strip().startswith(f"{start}:")
+        ]
         assert len(found) == 1, f"{len(found)} lines start with {start!r}:\n{self.text()}"
         return found[0]
 
