@@ -6,6 +6,7 @@ import argparse
 import json
 import os
 import re
+import shutil
 import sys
 from collections.abc import Callable, Sequence
 from pathlib import Path
@@ -274,7 +275,7 @@ def _open_app(arguments: argparse.Namespace) -> int:
 
         with demo_folder() as folder:
             os.environ["GAUGESIDE_HOME"] = str(folder)
-            return start(None, ascii_alone=arguments.ascii)
+            return start(None, arguments.ascii, lambda: shutil.rmtree(folder, ignore_errors=True))
     return start(arguments.logbook, ascii_alone=arguments.ascii)
 
 

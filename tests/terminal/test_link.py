@@ -158,3 +158,12 @@ def test_where_no_screen_can_be_it_points_to_the_commands(tmp_path: Path, stdin:
     assert done.returncode == 2
     assert "gaugeside saturation" in done.stderr
     assert done.stdout == ""
+
+
+def test_a_hangup_takes_the_demo_s_folder_along(tmp_path: Path) -> None:
+    with app(tmp_path, "--demo", environ={"TMPDIR": str(tmp_path)}) as shown:
+        shown.wait_for("demo rack")
+        assert len(list(tmp_path.glob("gaugeside-demo-*"))) == 1
+        shown.hang_up()
+        ends_at_once(shown)
+    assert list(tmp_path.glob("gaugeside-demo-*")) == []

@@ -9,6 +9,7 @@ import signal
 import sys
 import termios
 import threading
+from collections.abc import Callable
 from contextlib import suppress
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
@@ -21,10 +22,11 @@ _RESTORE = b"\x1b[?1049l\x1b[?25h\x1b[?7h\x1b[?2004l\x1b[?1000l\x1b[?1003l\x1b[?
 _SIGNALS = (signal.SIGHUP, signal.SIGTERM)
 
 
-def start(logbook: Path | None, ascii_alone: bool = False) -> int:
+def start(logbook: Path | None, ascii_alone: bool = False, on_hangup: Callable[[], None] | None = None) -> int:
     """Run the app in this terminal until it is left; return the exit status.
 
-    ascii_alone: show no character but ASCII, as on a terminal whose locale is not UTF-8.
+    ascii_alone: show no character but ASCII, as on a terminal whose locale is not UTF-8. on_hangup: called last where
+    the program ends without returning, on SIGHUP, SIGTERM or a terminal that has gone.
     """
     if not os.environ.get("NO_COLOR", "-"):
         # Only a value that is not empty asks for no colour; the screen library takes the name alone for it.
@@ -61,7 +63,7 @@ def start(logbook: Path | None, ascii_alone: bool = False) -> int:
     engine = Engine(lambda _: None, lambda _: None, log=home.log_file, own_folder=home.settings_folder)
     app = GaugesideApp(home, settings, draft, themes, messages, dict(os.environ), engine)
     modes = termios.tcgetattr(0)
-    threading.Thread(target=_watch, args=(app, modes), name="signals", daemon=True).start()
+    threading.Thread(target=_watch, args=(app, modes, on_hangup), name="signals", daemon=True).start()
     try:
         app.run(mouse=False)
     finally:
@@ -71,7 +73,7 @@ def start(logbook: Path | None, ascii_alone: bool = False) -> int:
     return app.return_code or 0
 
 
-def _watch(app: GaugesideApp, modes: list[Any]) -> None:
+def _watch(app: GaugesideApp, modes: list[Any], on_hangup: Callable[[], None] | None) -> None:
     """End the program in good order on SIGHUP, SIGTERM or a terminal that has gone."""
     terminal = select.poll()
     terminal.register(0, select.POLLHUP | select.POLLERR)
@@ -84,6 +86,9 @@ def _watch(app: GaugesideApp, modes: list[Any]) -> None:
             app.saver.flush()
         with suppress(Exception):
             app.engine.close()
+        if on_hangup is not None:
+            with suppress(Exception):
+                on_hangup()
         if taken is not None and taken.si_signo == signal.SIGTERM and not gone:
             _restore(modes)
         os._exit(128 + (taken.si_signo if taken is not None else signal.SIGHUP))
