@@ -197,7 +197,7 @@ class House(KeysInTurn):
         # Its path would fill the two lines, and the reason stands behind it; the site pane shows the path.
         path = str(self.places.logbook_file)
         why = refusal.sentence().replace(f"The logbook {path}", "The logbook").replace(path, "the logbook")
-        self.say(f"NOT KEPT: {why}", CAUTION)
+        self.trouble(f"NOT KEPT: {why}", first=True)
 
     async def open_entry(self, entry: Entry) -> None:
         """Bring an entry's readings back into their pane."""
@@ -256,8 +256,8 @@ class House(KeysInTurn):
         self.engine_word = word
         self.show_word()
 
-    def trouble(self, text: str) -> None:
-        """Tell something that must be read; the help keeps it after that."""
+    def trouble(self, text: str, *, first: bool = False) -> None:
+        """Tell something that must be read, before all else where it answers a key; the help keeps it after that."""
         self.told = [*self.told, text][-_MOST_MESSAGES:]
-        self._messages.append(text)
+        self._messages.insert(0 if first else len(self._messages), text)
         self.show_word()
