@@ -122,7 +122,7 @@ def test_a_calculation_typed_key_by_key_kept_seen_and_reopened(tmp_path: Path) -
         shown.wait_for("as entry 1")
         assert readings_kept(tmp_path)[0]["suction_pressure"] == "38 psig"
         shown.send(KEY[6])
-        shown.wait_for("1 shown")
+        shown.wait_for("> 1")
         assert f"superheat {superheat:.1f} K" in shown.line_with("> ")
         shown.send(KEY[3])
         shown.wait_for("F3 SUPERHEAT")
