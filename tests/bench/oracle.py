@@ -53,6 +53,8 @@ _OTHERS = {
     },
     "pressure difference": {**_PRESSURES, "inH2O": "inh2o inwc", "mH2O": "mh2o"},
 }  # fmt: skip
+# In these a bare number above zero is a vacuum to some and a gauge reading to others.
+_UP_OR_DOWN = ("inHg", "mmHg")
 _SENSES = {"g": "g gauge gage", "abs": "a abs absolute", "vac": "v vac vacuum"}
 # Spellings whose case alone tells a thousand million apart.
 _FORBIDDEN = ("mPa", "Mbar", "mW")
@@ -90,7 +92,7 @@ KINDS = tuple(UNITS)
 
 @dataclass(frozen=True)
 class Written:
-    """A reading as a careful person writes it; value: what it means in SI, None when nothing can have it."""
+    """A reading as a careful person writes it; value: in SI, None when it has no meaning or more than one."""
 
     text: str
     kind: str
@@ -98,10 +100,12 @@ class Written:
 
 
 def value_of(number: Fraction, kind: str, unit: Unit) -> Fraction | None:
-    """Return a number of a unit in SI, None for what nothing can have."""
+    """Return a number of a unit in SI, None for what nothing can have or what has two meanings."""
     factor = FACTORS[kind, unit.label]
     value = number * factor.factor + factor.zero
     if kind == "pressure":
+        if not unit.sense and unit.label in _UP_OR_DOWN and number > 0:
+            return None
         if unit.sense == "vac":
             value = ATMOSPHERE - value if number >= 0 else Fraction(-1)
         elif unit.sense != "abs":

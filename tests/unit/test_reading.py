@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import pytest
 
+from gaugeside.errors import Refusal
 from gaugeside.quantities import (
     SEA_LEVEL,
     Dress,
@@ -105,7 +106,8 @@ def test_every_unit_is_read_by_its_own_label_and_written_back(kind: Kind) -> Non
             continue
         # Small enough to be a possible vacuum and a possible fraction in every unit.
         number = "400" if kind is Kind.TEMPERATURE else "0.05"
-        reading = understand(f"{number} {label}", kind)
+        # Bare, a column of mercury has one meaning only where bare pressures are absolute.
+        reading = understand(f"{number} {label}", kind, ABSOLUTE if kind is Kind.PRESSURE else SI)
         assert reading.unit.definition == one.definition, label
         assert reading.complete().startswith(f"{number} {label}"), label
 
@@ -196,6 +198,40 @@ def test_refusal_says_what_why_and_what_instead(text: str, kind: Kind, words: li
         assert word in sentence
     assert sentence.isprintable()
     assert len(sentence) < 260
+
+
+@pytest.mark.parametrize(
+    "text", ["10 inHg", "10inHg", '10 "Hg', "+10 in Hg", "0.01 inHg", "300 mmHg", "5 torr", "29,92 inHg"]
+)
+def test_bare_mercury_is_a_vacuum_to_some_and_refused_with_the_three_ways_to_say_it(text: str) -> None:
+    sentence = refused(text)
+    assert sentence.startswith(f"'{text}' could be below or above the atmosphere, or absolute. ")
+    offered = sentence.split("Write ")[1].removesuffix(".").replace(" or ", ", ").split(", ")
+    assert len(offered) == 3
+    down, up, absolute = (understand(one).value for one in offered)
+    assert ATMOSPHERE - down == pytest.approx(up - ATMOSPHERE, abs=1e-9)
+    assert up - absolute == pytest.approx(ATMOSPHERE, abs=1e-9)
+    assert understand(text, dress=ABSOLUTE).value == pytest.approx(absolute, rel=1e-12)
+
+
+def test_bare_mercury_with_one_meaning_is_read() -> None:
+    assert understand("0 inHg").value == ATMOSPHERE
+    assert understand("-10 mmHg").value == pytest.approx(ATMOSPHERE - 10 * 133.322387415, rel=1e-12)
+    assert understand("29.92 inHg", Kind.ABSOLUTE_PRESSURE).value == pytest.approx(29.92 * INHG, rel=1e-12)
+    assert understand("2 inHg", Kind.PRESSURE_DIFFERENCE).value == pytest.approx(2 * INHG, rel=1e-12)
+    # A field that says "inHg g" says what its bare numbers are; one that says abs, what a bare unit is.
+    assert read("10", Kind.PRESSURE, unit(Kind.PRESSURE, "inHg g"), SI, SEA_LEVEL).value == ATMOSPHERE + 10 * INHG
+    assert read("10 inHg", Kind.PRESSURE, unit(Kind.PRESSURE, "inHg abs"), SI, SEA_LEVEL).value == 10 * INHG
+
+
+@pytest.mark.parametrize(
+    ("text", "field"), [("10 inHg", "inHg g"), ("10 inHg", "inHg vac"), ("10", "inHg"),
+                      ("\t10\u00a0 inHg", "bar g"), ("1" * 40 + " inHg", "bar g")]
+)  # fmt: skip
+def test_bare_mercury_is_refused_whatever_gauge_unit_the_field_has(text: str, field: str) -> None:
+    with pytest.raises(Refusal, match="could be below or above the atmosphere") as refusal:
+        read(text, Kind.PRESSURE, unit(Kind.PRESSURE, field), SI, SEA_LEVEL)
+    assert refusal.value.hint == "Write 10 inHg vac, 10 inHg g or 10 inHg abs."
 
 
 @pytest.mark.parametrize(

@@ -81,7 +81,9 @@ def well_formed(draw: st.DrawFn) -> tuple[str, Kind, Fraction]:
     exact = Fraction(number) * (-1 if negative else 1)
     value = exact * factor.factor + factor.zero
     sense = one.sense or (Sense.GAUGE if kind is Kind.PRESSURE else None)
-    if sense is Sense.GAUGE:
+    if kind is Kind.PRESSURE and one.label in ("inHg", "mmHg") and exact > 0:
+        value = Fraction(-1)  # a vacuum to some
+    elif sense is Sense.GAUGE:
         value = Fraction(ATMOSPHERE) + value
     elif sense is Sense.VACUUM:
         value = Fraction(ATMOSPHERE) - value if exact >= 0 else Fraction(-1)

@@ -48,7 +48,8 @@ WRITING = (
     "decimals; 1,234 is refused, as it can be read two ways. A number alone takes the unit the field shows; a "
     "unit once typed stays the field's own. Upper and lower case do not matter.",
     "Pressures: g is gauge, abs or a is absolute, vac counts down from the atmosphere. Without one of them the "
-    "field takes it as {bare} (site pane). micron is absolute.",
+    "field takes it as {bare} (site pane). micron is absolute. A bare inHg or mmHg above zero is never taken as "
+    "gauge: some mean a vacuum.",
 )
 
 

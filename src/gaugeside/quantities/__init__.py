@@ -33,6 +33,7 @@ from gaugeside.quantities.units import Kind as Kind
 from gaugeside.quantities.units import Sense as Sense
 from gaugeside.quantities.units import Unit as Unit
 from gaugeside.quantities.units import fold as fold
+from gaugeside.quantities.units import is_vacuum_to_some as is_vacuum_to_some
 from gaugeside.quantities.units import labels as labels
 from gaugeside.quantities.units import spellings as spellings
 from gaugeside.quantities.units import unit as unit

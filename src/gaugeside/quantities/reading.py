@@ -17,7 +17,7 @@ from gaugeside.errors import Refusal
 from gaugeside.quantities.convert import to_si
 from gaugeside.quantities.dress import Dress, gauge_and_absolute, with_sense, write
 from gaugeside.quantities.site import Site
-from gaugeside.quantities.units import Kind, Sense, Unit, ambiguous, fold, spellings
+from gaugeside.quantities.units import Kind, Sense, Unit, ambiguous, fold, is_vacuum_to_some, spellings
 
 LONGEST = 80
 _MINUS = "-−–‒"
@@ -178,6 +178,8 @@ def read(text: str, kind: Kind, default: Unit, dress: Dress, site: Site) -> Read
     if kind is Kind.PRESSURE and unit.sense is None:
         # The field shows its unit with a sense; a bare bar or psi typed there is taken in that sense.
         sense = default.sense if default.sense and default.sense is not Sense.VACUUM else dress.bare
+        if sense is Sense.GAUGE and value > 0 and is_vacuum_to_some(unit):
+            raise _up_or_down(f"{stripped} {unit.label}" if bare_number else stripped, unit)
         unit, bare_sense = with_sense(unit, sense), True
     si = _counted(value, unit, kind, site, stripped)
     return Reading(text, kind, _possible(si, kind, stripped, site), unit, bare_number, bare_sense)
@@ -204,6 +206,15 @@ def _look_up(unit_text: str, kind: Kind, text: str) -> Unit:
     raise Refusal(
         f"{quoted(unit_text)} is not a unit of {kind.value} known here.",
         f"{offer}Write for example {example(kind)}.",
+    )
+
+
+def _up_or_down(text: str, unit: Unit) -> Refusal:
+    written = " ".join(text.split())
+    example = written if len(written) <= 20 and written.isprintable() else f"10 {unit.label}"
+    return Refusal(
+        f"{quoted(text)} could be below or above the atmosphere, or absolute.",
+        f"Write {example} vac, {example} g or {example} abs.",
     )
 
 

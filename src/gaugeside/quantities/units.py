@@ -82,6 +82,8 @@ _SUFFIXES = {
     Sense.VACUUM: ("vac", "vacuum", "v"),
 }
 _SENSE_LABEL = {Sense.GAUGE: "g", Sense.ABSOLUTE: "abs", Sense.VACUUM: "vac"}
+# Bare, these are a vacuum to part of the trade and a gauge pressure to the rest (common practice).
+_MERCURY = frozenset({"inch_of_mercury", "millimetre_of_mercury"})
 _MICRON = ("micron", "micron", 0, "microns mtorr umhg micronhg micronshg")
 # A difference may be typed in every spelling of a temperature.
 _CELSIUS = "c degc degreec degreesc celsius degcelsius degreecelsius degreescelsius centigrade"
@@ -300,6 +302,11 @@ def unit(kind: Kind, label: str) -> Unit:
 def labels(kind: Kind) -> tuple[str, ...]:
     """Return the labels of the units of `kind` in the order in which they are offered."""
     return tuple(dict.fromkeys(u.label for u in spellings(kind).values()))
+
+
+def is_vacuum_to_some(one: Unit) -> bool:
+    """Return whether a bare reading in this unit may be meant as a vacuum as well as above the atmosphere."""
+    return one.sense is None and one.definition in _MERCURY
 
 
 def ambiguous(text: str) -> tuple[str, str] | None:

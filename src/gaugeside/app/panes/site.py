@@ -15,7 +15,7 @@ from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
 from gaugeside.app.widgets.lines import CAUTION, MUTED, RULE, Line
 from gaugeside.errors import Refusal
 from gaugeside.preferences import dress_of, read_site, site_source
-from gaugeside.quantities import CHOOSABLE, Dress, Kind, bare_labels
+from gaugeside.quantities import CHOOSABLE, Dress, Kind, bare_labels, is_vacuum_to_some
 from gaugeside.refrigerants import Datum
 from gaugeside.settings import Settings
 
@@ -129,9 +129,13 @@ class SitePane(VerticalScroll, can_focus=False):
         house = self.house
         where = _FROM[house.settings.site_pressure_from]
         self._site.understood.say(f"{house.site.atmosphere / 1000:.2f} kPa abs, {where}")
+        pressure = house.dress.unit(Kind.PRESSURE)
+        bare = f"12 {pressure.label} is read as {house.settings.bare_pressure}"
+        if house.settings.bare_pressure == "gauge" and is_vacuum_to_some(pressure):
+            bare = f"{pressure.label} is refused without vac, g or abs"
         words = {
             "dress": {"si": "SI: bar, °C, kg/s, kW", "ip": "inch-pound: psi, °F, lb/h, Btu/h"}[house.settings.dress],
-            "bare_pressure": f"12 {house.dress.unit(CHOOSABLE[0]).label} is read as {house.settings.bare_pressure}",
+            "bare_pressure": bare,
             "datum": _ZERO[Datum(house.settings.datum)],
         }
         for name, text in words.items():
