@@ -71,13 +71,25 @@ def read_site(text: str, source: str, dress: Dress) -> Site:
     kind = Kind.LENGTH if source == "altitude" else Kind.ABSOLUTE_PRESSURE
     try:
         reading = read(text, kind, dress.default(kind), dress, SEA_LEVEL)
-        if reading.bare_number and source == "barometer":
-            # 29.92 is the weather in inHg, and a mountain top in kPa.
-            raise Refusal(f"{quoted(text.strip())} has no unit.", f"Type the unit too: {example(kind)}.")
+        if reading.bare_number:
+            raise _without_unit(" ".join(text.split()), source)
         make = site_at_altitude if source == "altitude" else site_with_barometer
         return make(reading.value, reading.complete())
     except Refusal as refusal:
         raise refusal.about(source) from None
+
+
+def _without_unit(text: str, source: str) -> Refusal:
+    if source == "barometer":
+        # 29.92 is the weather in inHg, and a mountain top in kPa.
+        return Refusal(
+            f"{quoted(text)} has no unit: a barometer may show kPa, mbar, mmHg or inHg.",
+            f"Type the unit too: {example(Kind.ABSOLUTE_PRESSURE)}.",
+        )
+    number = text if len(text) <= 20 and text.isprintable() else "2100"
+    return Refusal(
+        f"{quoted(text)} has no unit: an altitude may be in metres or in feet.", f"Write {number} m or {number} ft."
+    )
 
 
 def overridden(settings: Settings, altitude: str | None, barometer: str | None, units: str | None) -> Settings:

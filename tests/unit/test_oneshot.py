@@ -168,7 +168,7 @@ def test_convert_gives_the_si_value_of_each_kind(run: Any, reading: str, kind: K
         (["10 inHg vac"], 101325 - 33863.88640341, -33863.88640341),
         (["-10 inHg", "--barometer", "83 kPa"], 83000 - 33863.88640341, -33863.88640341),
         (["1 bar g", "--altitude", "1600 m"], standard_atmosphere(1600) + 1e5, 1e5),
-        (["1 bar g", "--altitude", "1000", "--units", "ip"], standard_atmosphere(304.8) + 1e5, 1e5),
+        (["1 bar g", "--altitude", "1000 ft", "--units", "ip"], standard_atmosphere(304.8) + 1e5, 1e5),
     ],
 )  # fmt: skip
 def test_convert_gives_a_pressure_absolute_and_gauge(run: Any, words: list[str], absolute: float, gauge: float) -> None:
@@ -217,6 +217,9 @@ def test_convert_shows_every_unit_gauge_and_absolute(run: Any) -> None:
         (["convert", "12"], "reading", "has no unit"), (["convert", "12 xyz"], "reading", "not a unit"),
         (["convert", "12 bar", "--altitude", "20 km"], "altitude", "outside the standard atmosphere"),
         (["convert", "12 bar", "--altitude", ""], "altitude", "given, but empty"),
+        (["convert", "12 bar", "--altitude", "2100"], "altitude", "Write 2100 m or 2100 ft."),
+        (["convert", "12 bar", "--altitude", "2100", "--units", "ip"], "altitude", "may be in metres or in feet"),
+        (["convert", "12 bar", "--barometer", "835"], "barometer", "mmHg or inHg. Type the unit too: 94.1 kPa"),
         (["convert", "12 bar", "--altitude", "5 bar"], "altitude", "takes a length"),
         (["convert", "12 bar", "--barometer", "3 bar"], "barometer", "is not an atmospheric pressure"),
         (["convert", "12 bar", "--barometer", "0 bar g"], "barometer", "a barometer is absolute"),
