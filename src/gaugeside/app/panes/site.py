@@ -15,7 +15,7 @@ from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
 from gaugeside.app.widgets.lines import CAUTION, MUTED, RULE, Line
 from gaugeside.errors import Refusal
 from gaugeside.preferences import dress_of, read_site, site_source
-from gaugeside.quantities import CHOOSABLE, Dress, Kind, bare_labels, is_vacuum_to_some
+from gaugeside.quantities import CHOOSABLE, Dress, Kind, bare_labels, is_vacuum_to_some, quoted
 from gaugeside.refrigerants import Datum
 from gaugeside.settings import Settings
 
@@ -140,12 +140,28 @@ class SitePane(VerticalScroll, can_focus=False):
         }
         for name, text in words.items():
             self._lines[name].understood.say(text)
+        self._explain_theme()
+
+    def _explain_theme(self) -> None:
+        wanted, used = self.house.settings.theme, self.house.theme
+        line = self._lines["theme"]
+        if wanted not in self.house.themes:
+            cast(ChoiceField, line.field).value = used
+            line.understood.say(f"{quoted(wanted)} is not there", CAUTION)
+        else:
+            line.understood.say("" if used == wanted else f"this terminal shows {used}")
 
     def on_descendant_focus(self, event: events.DescendantFocus) -> None:
         """Say what the setting means."""
         name = str(event.widget.id)
         words = _HELP.get(name, "Which unit readings of this kind are shown in.")
-        self.house.say(f"{Datum(self.house.settings.datum).description}. {words}" if name == "datum" else words)
+        settings = self.house.settings
+        if name == "datum":
+            words = f"{Datum(settings.datum).description}. {words}"
+        if name == "theme" and settings.theme not in self.house.themes:
+            used = self.house.theme
+            words = f"The theme {quoted(settings.theme)} named in the settings is not there; {used} is used. {words}"
+        self.house.say(words)
 
     @on(Input.Submitted)
     @on(ChoiceField.Submitted)
