@@ -181,17 +181,18 @@ class House(KeysInTurn):
 
     def _kept(self, kept: Kept) -> None:
         at = kept.entry.kept_at.astimezone().strftime("%H:%M:%S")
+        if not kept.already and self.note == kept.entry.note:
+            self.note = ""
+        # First: an earlier word, such as that it was not kept, must not cover this one.
+        self.form_changed()
         if kept.already:
             self.say(f"Already kept at {at} as entry {kept.entry.number}: the same within ten minutes is one entry.")
             return
-        if self.note == kept.entry.note:
-            self.note = ""
         self.head()
         machine = f" for {kept.entry.tag}" if kept.entry.tag else ""
         self.say(f"Kept at {at} as entry {kept.entry.number}{machine}. F6 shows the logbook.")
         for pane in self.base.query(LogbookPane):
             pane.reload()
-        self.form_changed()
 
     def _not_kept(self, refusal: Refusal) -> None:
         # Its path would fill the two lines, and the reason stands behind it; the site pane shows the path.
