@@ -15,7 +15,7 @@ import stat
 import tempfile
 import tomllib
 import unicodedata
-from collections.abc import Callable, Mapping
+from collections.abc import Mapping
 from dataclasses import dataclass, field
 from pathlib import Path
 from typing import Any, Literal, get_args, get_type_hints
@@ -138,38 +138,37 @@ def is_hidden(character: str) -> bool:
 def load_settings(path: Path) -> tuple[Settings, list[str]]:
     """Return the settings kept in `path` and one sentence for each fault; never raises."""
     found, faults = read_json_file(path)
-    good: dict[str, Any] = {}
-    hints = get_type_hints(Settings)
-    for name, value in found.items():
-        if name not in hints:
-            faults.append(f"{path.name}: {_shown(name)} is not a setting of this version and is not used.")
-            continue
-        try:
-            good[name] = _checked_units(value) if name == "units" else _checked_text(value, hints[name])
-        except ValueError as fault:
-            faults.append(f"{path.name}: the setting {name} {fault}; its default is used.")
+    good, bad, unknown = _sorted_out(found)
+    faults += [f"{path.name}: the setting {name} {words}; its default is used." for name, words in bad.items()]
+    faults += [f"{path.name}: {_shown(name)} is not a setting of this version and is not used." for name in unknown]
     return Settings(**good), faults
 
 
 def save_settings(path: Path, settings: Settings) -> None:
-    """Write `settings` to `path`, whole or not at all.
+    """Write `settings` to `path`, whole or not at all, beside what a newer version has put there.
 
-    Raises Refusal when the file cannot be written; the file that was there is then untouched.
+    Raises Refusal when the file cannot be read or written; the file that was there is then untouched.
     """
-    write_json_file(path, dataclasses.asdict(settings), lambda: bool(load_settings(path)[1]))
+    there = _standing(path)
+    _, bad, unknown = _sorted_out(there or {})
+    write_json_file(path, {**unknown, **dataclasses.asdict(settings)}, keep_aside=there is None or bool(bad))
 
 
 def load_draft(path: Path) -> tuple[dict[str, Any], list[str]]:
     """Return what stood on the forms, as kept in `path`, and one sentence for each fault; never raises."""
-    return read_json_file(path)
+    found, faults = read_json_file(path)
+    if not _is_draft(found):
+        faults.append(f"{path.name} holds something else than forms, which is not used; {_next_save(path)}.")
+    return found, faults
 
 
 def save_draft(path: Path, draft: Mapping[str, Any]) -> None:
     """Write what stands on the forms to `path`, whole or not at all.
 
-    Raises Refusal when the file cannot be written; the file that was there is then untouched.
+    Raises Refusal when the file cannot be read or written; the file that was there is then untouched.
     """
-    write_json_file(path, draft, lambda: bool(read_json_file(path)[1]))
+    there = _standing(path)
+    write_json_file(path, draft, keep_aside=there is None or not _is_draft(there))
 
 
 def read_json_file(path: Path) -> tuple[dict[str, Any], list[str]]:
@@ -178,25 +177,84 @@ def read_json_file(path: Path) -> tuple[dict[str, Any], list[str]]:
     An absent file is an empty object without a fault.
     """
     try:
-        if not stat.S_ISREG(path.stat().st_mode):
-            return {}, [f"{path} is not a file; it is not used."]
-        with path.open("rb") as file:
-            content = file.read(LARGEST_FILE + 1)
+        return _object_in(path), []
     except FileNotFoundError:
         return {}, []
+    except OSError as fault:
+        return {}, [f"{path.name} cannot be read ({reason(fault)}); it is not used and left as it is."]
+    except ValueError as fault:
+        return {}, [f"{path.name} is damaged ({fault}) and not used; {_next_save(path)}."]
+
+
+def folder_fault(folder: Path) -> str:
+    """Return one sentence where nothing in `folder` can be read; an absent folder is no fault."""
+    try:
+        os.scandir(folder).close()
+    except FileNotFoundError:
+        return ""
     except (OSError, ValueError) as fault:
-        return {}, [f"{path} cannot be read ({reason(fault)}); it is not used and left as it is."]
+        return (
+            f"The program's folder cannot be read ({reason(fault)}): it starts without settings and forms. "
+            "F7 shows where it is."
+        )
+    return ""
+
+
+def stands_there(path: Path) -> bool | None:
+    """Return whether there is a file that can be read, damaged or not; None where that cannot be told."""
+    try:
+        _object_in(path)
+    except FileNotFoundError:
+        return False
+    except OSError:
+        return None
+    except ValueError:
+        return True
+    return True
+
+
+def _object_in(path: Path) -> dict[str, Any]:
+    """Return the JSON object in `path`; OSError where it cannot be read, ValueError with words where it is damaged."""
+    if not stat.S_ISREG(path.stat().st_mode):
+        raise OSError("not a file")
+    with path.open("rb") as file:
+        content = file.read(LARGEST_FILE + 1)
     if len(content) > LARGEST_FILE:
-        return {}, [f"{path} is larger than {LARGEST_FILE} bytes; it is not used."]
+        raise ValueError(f"larger than {LARGEST_FILE} bytes")
     try:
         found = json.loads(content.decode("utf-8-sig"), parse_constant=_finite, parse_float=_finite)
-    except (ValueError, RecursionError):
-        return {}, [f"{path} is damaged (not readable as JSON); it is not used."]
+    except (ValueError, RecursionError) as fault:
+        raise ValueError("not readable as JSON") from fault
     if not isinstance(found, dict):
-        return {}, [f"{path} is damaged (not a JSON object); it is not used."]
+        raise ValueError("not a JSON object")
     if not _is_shallow(found):
-        return {}, [f"{path} is nested deeper than {DEEPEST_NESTING} levels; it is not used."]
-    return _made_plain(found), []
+        raise ValueError(f"nested deeper than {DEEPEST_NESTING} levels")
+    plain: dict[str, Any] = _made_plain(found)
+    return plain
+
+
+def _standing(path: Path) -> dict[str, Any] | None:
+    """Return what stands in a file that is about to be replaced; None where it is damaged.
+
+    Raises Refusal where it cannot be read: it may be sound, and is left as it is.
+    """
+    try:
+        return _object_in(path)
+    except FileNotFoundError:
+        return {}
+    except OSError as fault:
+        raise _not_written(path, fault) from fault
+    except ValueError:
+        return None
+
+
+def _not_written(path: Path, fault: OSError) -> Refusal:
+    words = f"{path.name} cannot be written ({reason(fault)})."
+    return Refusal(words, "What is on the screen is not remembered; F7 shows the folder.")
+
+
+def _next_save(path: Path) -> str:
+    return f"the next save keeps it as {path.name}.unreadable"
 
 
 def read_toml_file(path: Path, largest: int) -> dict[str, Any]:
@@ -234,11 +292,10 @@ def parse_toml(text: str) -> dict[str, Any]:
         raise ValueError(f"it is not readable as TOML: {plain_text(str(fault), LONGEST_FAULT)}") from fault
 
 
-def write_json_file(path: Path, content: Mapping[str, Any], is_faulty: Callable[[], bool]) -> None:
+def write_json_file(path: Path, content: Mapping[str, Any], keep_aside: bool) -> None:
     """Write `content` as JSON to `path`, whole or not at all, readable by its owner alone.
 
-    is_faulty: tells whether the file that is there has faults; it is then kept aside
-        as NAME.unreadable.
+    keep_aside: the file that is there gets the name NAME.unreadable first.
 
     Raises Refusal when the file cannot be written; the file that was there is then untouched.
     """
@@ -249,45 +306,48 @@ def write_json_file(path: Path, content: Mapping[str, Any], is_faulty: Callable[
             text = json.dumps(content, ensure_ascii=False, separators=(",", ":"), allow_nan=False)
     except (ValueError, RecursionError) as fault:
         raise Refusal(f"{path.name} cannot hold what was to be kept: {fault}.") from fault
-    make_private_folder(path.parent)
     temporary = ""
     try:
+        _make_private_folder(path.parent)
         handle, temporary = tempfile.mkstemp(prefix=f".{path.name}.", dir=path.parent)
         with os.fdopen(handle, "wb") as file:
             # A lone surrogate becomes its JSON escape, which reads back as the same text.
             file.write(text.encode("utf-8", "backslashreplace") + b"\n")
             file.flush()
             os.fsync(file.fileno())
-        if path.exists() and not path.is_dir() and is_faulty():
+        if keep_aside and path.exists():
             os.replace(path, _name_aside(path))
         os.replace(temporary, path)
     except OSError as fault:
         if temporary:
             with contextlib.suppress(OSError):
                 os.unlink(temporary)
-        raise Refusal(
-            f"{path} cannot be written: {reason(fault)}.", "What is on the screen is not remembered."
-        ) from fault
+        raise _not_written(path, fault) from fault
     sync_folder(path.parent)
 
 
 def make_private_folder(folder: Path) -> None:
-    """Create `folder` for its owner alone unless it exists; one that exists keeps its permissions.
+    """Create `folder`, and each one above it that is missing, for its owner alone; those that exist stay as they are.
 
     Raises Refusal when it cannot be created or no home folder is known.
     """
-    if folder.parts[:1] and folder.parts[0].startswith("~"):
-        raise Refusal("No home folder is known, so nothing can be kept.", "Set GAUGESIDE_HOME to a folder of yours.")
     try:
-        if folder.is_dir():
-            return
-        folder.mkdir(mode=0o700, parents=True, exist_ok=True)
+        _make_private_folder(folder)
     except (OSError, ValueError) as fault:
         raise Refusal(
             f"The folder {folder} cannot be created: {reason(fault)}.",
             "Set GAUGESIDE_HOME to a folder that can be written.",
         ) from fault
-    sync_folder(folder.parent)
+
+
+def _make_private_folder(folder: Path) -> None:
+    if folder.parts[:1] and folder.parts[0].startswith("~"):
+        raise Refusal("No home folder is known, so nothing can be kept.", "Set GAUGESIDE_HOME to a folder of yours.")
+    if folder.is_dir():
+        return
+    for one in reversed([folder, *(parent for parent in folder.parents if not parent.exists())]):
+        one.mkdir(mode=0o700, exist_ok=True)
+        sync_folder(one.parent)
 
 
 def sync_folder(folder: Path) -> None:
@@ -347,6 +407,30 @@ def _made_plain(found: Any) -> Any:
 def _shown(value: object) -> str:
     text = "".join(c if c.isprintable() else "?" for c in json.dumps(value, ensure_ascii=False))
     return text if len(text) <= 40 else text[:37] + "..."
+
+
+def _sorted_out(found: Mapping[str, Any]) -> tuple[dict[str, Any], dict[str, str], dict[str, Any]]:
+    """Return the good settings, what is wrong with the bad ones, and those that this version does not know."""
+    hints = get_type_hints(Settings)
+    good: dict[str, Any] = {}
+    bad: dict[str, str] = {}
+    for name, value in found.items():
+        try:
+            if name in hints:
+                good[name] = _checked_units(value) if name == "units" else _checked_text(value, hints[name])
+        except ValueError as fault:
+            bad[name] = str(fault)
+    return good, bad, {name: value for name, value in found.items() if name not in hints}
+
+
+def _is_draft(found: Mapping[str, Any]) -> bool:
+    forms = found.get("forms", {})
+    if not isinstance(forms, dict) or not all(isinstance(found.get(name, ""), str) for name in ("pane", "note")):
+        return False
+    return all(
+        isinstance(form, dict) and all(isinstance(form.get(part, {}), dict) for part in ("texts", "units"))
+        for form in forms.values()
+    )
 
 
 def _checked_text(value: object, hint: Any) -> str:

@@ -18,6 +18,9 @@ from contextlib import suppress
 from pathlib import Path
 from typing import BinaryIO
 
+from gaugeside.errors import Refusal
+from gaugeside.settings import make_private_folder
+
 _LARGEST_LOG = 200_000
 
 
@@ -41,7 +44,7 @@ def _take_over_outputs(log: str) -> int:
     target = os.open(os.devnull, os.O_WRONLY)
     if log:
         # Without a log the program still works; there is nobody here to tell.
-        with suppress(OSError, ValueError):
+        with suppress(OSError, ValueError, Refusal):
             target = _opened(Path(log))
     os.dup2(target, 1)
     os.dup2(target, 2)
@@ -50,7 +53,7 @@ def _take_over_outputs(log: str) -> int:
 
 def _opened(log: Path) -> int:
     """Open the log to append, emptied when it has grown large; OSError for a link, a pipe, anything but a file."""
-    log.parent.mkdir(parents=True, exist_ok=True, mode=0o700)
+    make_private_folder(log.parent)
     # A pipe that nobody reads would hold the helper up for ever, a link leads into a file of another purpose.
     flags = os.O_WRONLY | os.O_CREAT | os.O_APPEND | os.O_NOFOLLOW | os.O_NONBLOCK
     target = os.open(log, flags, 0o600)
