@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+import errno
 import os
 import sqlite3
 import sys
+import tempfile
 import time
 from collections.abc import Iterator
 from contextlib import closing, contextmanager, suppress
@@ -15,7 +17,7 @@ from pathlib import Path
 from gaugeside.errors import Refusal
 from gaugeside.logbook.entry import UNREADABLE, Entry, from_row
 from gaugeside.logbook.schema import SELECT, guard, is_plain
-from gaugeside.logbook.trouble import LogbookTrouble, locked
+from gaugeside.logbook.trouble import LogbookTrouble, locked, no_locks
 from gaugeside.settings import reason, sync_folder
 
 if sys.platform != "win32":
@@ -48,7 +50,8 @@ def set_aside(path: Path, seen: tuple[int, int], seconds: float) -> Path | None:
     """
     if path.suffix not in LOGBOOK_ENDINGS:
         raise LogbookTrouble(
-            "foreign", f"{path} is damaged or not a logbook; it is left as it is, since its name is not *.sqlite3."
+            "foreign",
+            f"The logbook {path} is damaged or no logbook; it is left as it is, since its name is not *.sqlite3.",
         )
     try:
         with folder_held(path, seconds, alone=True):
@@ -124,19 +127,34 @@ def folder_held(path: Path, seconds: float, alone: bool = False) -> Iterator[Non
 
     seconds: how long to wait for the others [s].
 
-    Raises LogbookTrouble when they take longer. A folder that cannot be held (absent, on some networks) is
-    used without.
+    Raises LogbookTrouble when they take longer, or when no file can be locked there. A folder that cannot be
+    held (absent, on some networks) is used without.
     """
-    handle = -1
+    handle, held = -1, False
     try:
         if sys.platform != "win32":
             with suppress(OSError):
                 handle = os.open(path.parent, os.O_RDONLY)
                 _wait_for(handle, fcntl.LOCK_EX if alone else fcntl.LOCK_SH, path, seconds)
+                held = True
+        if handle >= 0 and not held and refuses_locks(path):
+            raise no_locks(path)
         yield
     finally:
         if handle >= 0:
             os.close(handle)
+
+
+def refuses_locks(path: Path) -> bool:
+    """Whether files beside `path` cannot be locked, which the database library takes for a lock held by others."""
+    if sys.platform != "win32":
+        try:
+            # Never the logbook itself: closing a file gives up every lock that this process holds on it.
+            with tempfile.TemporaryFile(dir=path.parent) as file:
+                fcntl.lockf(file, fcntl.LOCK_EX | fcntl.LOCK_NB)
+        except OSError as fault:
+            return fault.errno == errno.ENOLCK
+    return False
 
 
 def _wait_for(handle: int, lock: int, path: Path, seconds: float) -> None:

@@ -7,6 +7,7 @@ from __future__ import annotations
 
 import sqlite3
 from pathlib import Path
+from typing import Any
 
 from gaugeside.logbook.entry import COLUMNS
 from gaugeside.logbook.trouble import LogbookTrouble
@@ -14,7 +15,7 @@ from gaugeside.logbook.trouble import LogbookTrouble
 VERSION = 1
 APPLICATION = 0x47415547  # marks the file as a logbook of this program
 LONGEST_COLUMN = 500_000  # [characters]; the largest entry that is kept needs half of that
-LARGEST_VALUE = 100_000_000  # [bytes]; a file with a larger one is not read
+LARGEST_VALUE = 20_000_000  # [bytes]; a larger one is left out, so that memory stays bounded whatever a file holds
 
 _COLUMNS = ", ".join(f"{name} {kind}" for name, kind in COLUMNS.items())
 _STATEMENTS = (
@@ -24,10 +25,11 @@ _STATEMENTS = (
 )
 _PLACES = ", ".join("?" * len(_STATEMENTS))
 # Text is cut while it is read, so that no row brings more into memory than an entry can hold.
-_CUT = ", ".join(name if kind.startswith("INTEGER") else f"substr({name}, 1, {LONGEST_COLUMN})"
-                 for name, kind in COLUMNS.items())  # fmt: skip
+_CUT = [name if kind.startswith("INTEGER") else f"substr({name}, 1, {LONGEST_COLUMN})"
+        for name, kind in COLUMNS.items()]  # fmt: skip
 
-SELECT = f"SELECT {_CUT} FROM entries"
+SELECT = f"SELECT {', '.join(_CUT)} FROM entries"
+NEWEST_FIRST = " ORDER BY kept_at DESC, number DESC"
 INSERT = f"INSERT INTO entries ({', '.join(COLUMNS)}) VALUES ({', '.join('?' * len(COLUMNS))})"
 
 
@@ -47,6 +49,22 @@ def guard(connection: sqlite3.Connection) -> None:
     connection.execute("PRAGMA cell_size_check = ON")
 
 
+def read_row(connection: sqlite3.Connection, number: int) -> tuple[Any, ...] | None:
+    """Return the columns of one entry, None in the place of each value too large to read; None without the entry."""
+    try:
+        found: tuple[Any, ...] | None = connection.execute(SELECT + " WHERE number = ?", [number]).fetchone()
+        return found
+    except sqlite3.DataError:
+        return tuple(_read_value(connection, column, number) for column in _CUT)
+
+
+def _read_value(connection: sqlite3.Connection, column: str, number: int) -> Any:
+    try:
+        return connection.execute(f"SELECT {column} FROM entries WHERE number = ?", [number]).fetchone()[0]
+    except sqlite3.DataError:
+        return None
+
+
 def is_begun(connection: sqlite3.Connection, path: Path) -> bool:
     """Tell a logbook from an empty file, inside a transaction: all marks must be of the same moment.
 
@@ -58,7 +76,7 @@ def is_begun(connection: sqlite3.Connection, path: Path) -> bool:
     if (version, application, tables) == (0, 0, 0):
         return False
     if application != APPLICATION:
-        raise LogbookTrouble("foreign", f"{path} is the database of another program, not a logbook.")
+        raise LogbookTrouble("foreign", f"The logbook {path} is the database of another program and left as it is.")
     if version > VERSION:
         raise LogbookTrouble(
             "newer",

@@ -9,23 +9,27 @@ from __future__ import annotations
 import os
 import sqlite3
 import stat
+import sys
 import tempfile
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from contextlib import AbstractContextManager, contextmanager, suppress
 from dataclasses import dataclass, replace
 from datetime import timedelta
+from itertools import islice
 from pathlib import Path
 
 from gaugeside.errors import Refusal
 from gaugeside.logbook import damage
-from gaugeside.logbook.entry import COLUMNS, Entry, cleaned, from_row, to_row
-from gaugeside.logbook.schema import INSERT, SELECT, begin, guard, is_begun
-from gaugeside.logbook.trouble import LogbookTrouble, NoSuchEntry, trouble_from
+from gaugeside.logbook.entry import COLUMNS, Entry, cleaned, from_row, search_text, to_row
+from gaugeside.logbook.schema import INSERT, LARGEST_VALUE, NEWEST_FIRST, SELECT, begin, guard, is_begun, read_row
+from gaugeside.logbook.trouble import LogbookTrouble, NoSuchEntry, no_locks, trouble_from
 from gaugeside.settings import make_private_folder, plain_text, reason
 
 SAME_WITHIN = timedelta(minutes=10)
 MOST_WORDS = 20
+READ_AT_ONCE = 50
 LARGEST_NUMBER = 2**63 - 1
+_TOO_LARGE = f"a part of it is larger than {LARGEST_VALUE // 1_000_000} MB"
 
 
 @dataclass(frozen=True)
@@ -34,6 +38,18 @@ class Kept:
 
     entry: Entry
     already: bool
+
+
+@dataclass(frozen=True)
+class OldestFirst:
+    """Entries of one moment's look, read a few at a time: no lock is held while their reader takes its time."""
+
+    logbook: Logbook
+    numbers: list[int]
+
+    def __iter__(self) -> Iterator[Entry]:
+        for start in range(0, len(self.numbers), READ_AT_ONCE):
+            yield from self.logbook.numbered(self.numbers[start : start + READ_AT_ONCE])
 
 
 class Logbook:
@@ -71,13 +87,16 @@ class Logbook:
     def entries(self, filter_text: str = "", limit: int = 200, offset: int = 0) -> list[Entry]:
         """Return entries, newest first, that contain every word of `filter_text` in any case."""
         where, words = _condition(filter_text)
-        order = " ORDER BY kept_at DESC, number DESC LIMIT ? OFFSET ?"
+        asked = SELECT + where + NEWEST_FIRST + " LIMIT ? OFFSET ?"
         with self._reading() as connection:
             if connection is None:
                 return []
             most = min(limit, LARGEST_NUMBER)
-            # Row by row: a hundred rows of another hand's text need not be in memory at once.
-            return [from_row(row) for row in connection.execute(SELECT + where + order, [*words, most, offset])]
+            try:
+                # Row by row: a hundred rows of another hand's text need not be in memory at once.
+                return [from_row(row) for row in connection.execute(asked, [*words, most, offset])]
+            except sqlite3.DataError:
+                return list(islice(_one_by_one(connection, where, words), offset, min(offset + most, sys.maxsize)))
 
     def count(self, filter_text: str = "") -> int:
         """Return how many entries contain every word of `filter_text`."""
@@ -85,7 +104,10 @@ class Logbook:
         with self._reading() as connection:
             if connection is None:
                 return 0
-            return int(connection.execute("SELECT count(*) FROM entries" + where, words).fetchone()[0])
+            try:
+                return int(connection.execute("SELECT count(*) FROM entries" + where, words).fetchone()[0])
+            except sqlite3.DataError:
+                return sum(1 for _ in _one_by_one(connection, where, words))
 
     def entry(self, number: int) -> Entry:
         """Return one entry; raises NoSuchEntry when there is none of that number."""
@@ -106,17 +128,26 @@ class Logbook:
                 )
             )
             row = dict(zip(COLUMNS, to_row(after), strict=True))
-            connection.execute(
-                "UPDATE entries SET tag = ?, note = ?, likeness = ?, search = ? WHERE number = ?",
-                [row["tag"], row["note"], row["likeness"], row["search"], number],
-            )
+            # A part that stays may be longer on the disk than what of it could be read.
+            new = [name for name in ("tag", "note") if getattr(after, name) != getattr(before, name)]
+            columns = [*new, "likeness", "search"]
+            try:
+                connection.execute(
+                    f"UPDATE entries SET {', '.join(f'{name} = ?' for name in columns)} WHERE number = ?",
+                    [*(row[name] for name in columns), number],
+                )
+            except sqlite3.DataError as fault:
+                raise Refusal(f"Entry {number} cannot be changed: {_TOO_LARGE}.") from fault
         return after
 
     def delete(self, number: int) -> Entry:
         """Take one entry out and return it, fit for `restore`; raises NoSuchEntry when there is none."""
         with self._changing(number) as connection:
             entry = _one(connection, number)
-            connection.execute("DELETE FROM entries WHERE number = ?", [number])
+            try:
+                connection.execute("DELETE FROM entries WHERE number = ?", [number])
+            except sqlite3.DataError as fault:
+                raise Refusal(f"Entry {number} cannot be deleted: {_TOO_LARGE}.") from fault
         return entry
 
     def restore(self, entry: Entry) -> None:
@@ -132,14 +163,67 @@ class Logbook:
         except sqlite3.IntegrityError as fault:
             raise Refusal(f"Entry {entry.number} is in the logbook already.") from fault
 
+    def oldest_first(self, filter_text: str = "") -> OldestFirst:
+        """Return the entries that contain every word of `filter_text` in any case, oldest first, as often as asked."""
+        where, words = _condition(filter_text)
+        with self._reading() as connection:
+            if connection is None:
+                return OldestFirst(self, [])
+            try:
+                query = "SELECT number FROM entries" + where + " ORDER BY kept_at, number"
+                return OldestFirst(self, [number for (number,) in connection.execute(query, words)])
+            except sqlite3.DataError:
+                newest_first = [entry.number for entry in _one_by_one(connection, words) if entry.number is not None]
+                return OldestFirst(self, newest_first[::-1])
+
+    def numbered(self, numbers: Sequence[int]) -> list[Entry]:
+        """Return the entries of these numbers, in their order, as far as there are any."""
+        with self._reading() as connection:
+            if connection is None:
+                return []
+            rows = (read_row(connection, number) for number in numbers)
+            return [from_row(row) for row in rows if row is not None]
+
+    def take(self, entries: Sequence[Entry], relinked: Callable[[Entry, Mapping[int, int]], Entry]) -> int:
+        """Take entries of another logbook in under new numbers, all or none of them; return how many were new.
+
+        One that is there already, of the same moment and the same in all that counts, is not taken twice.
+
+        relinked: gives an entry the new numbers of the entries before it, by their numbers in `entries`.
+        """
+        self._set_damaged_aside()
+        try:
+            return self._take(entries, relinked)
+        except LogbookTrouble as trouble:
+            if trouble.kind != "damaged":
+                raise
+        self._set_damaged_aside()
+        return self._take(entries, relinked)
+
+    def _take(self, entries: Sequence[Entry], relinked: Callable[[Entry, Mapping[int, int]], Entry]) -> int:
+        taken = 0
+        numbers: dict[int, int] = {}
+        with self._writing() as connection:
+            for entry in entries:
+                number = _number_of(connection, entry)
+                if number is None:
+                    here = cleaned(replace(relinked(entry, numbers), number=None))
+                    number = _number_of(connection, here)
+                    if number is None:
+                        number = connection.execute(INSERT, to_row(here)).lastrowid
+                        taken += 1
+                if entry.number is not None and number is not None:
+                    numbers[entry.number] = number
+        return taken
+
     def _keep(self, entry: Entry) -> Kept:
         row = dict(zip(COLUMNS, to_row(entry), strict=True))
         with self._writing() as connection:
             found = connection.execute(
-                SELECT + " WHERE likeness = ? ORDER BY kept_at DESC LIMIT 1", [row["likeness"]]
+                "SELECT number FROM entries WHERE likeness = ? ORDER BY kept_at DESC LIMIT 1", [row["likeness"]]
             ).fetchone()
             if found is not None:
-                earlier = from_row(found)
+                earlier = _one(connection, *found)
                 if abs(entry.kept_at - earlier.kept_at) <= SAME_WITHIN:
                     return Kept(earlier, already=True)
             number = connection.execute(INSERT, list(row.values())).lastrowid
@@ -181,7 +265,7 @@ class Logbook:
         try:
             make_private_folder(self.path.parent)
         except Refusal as fault:
-            raise LogbookTrouble("cannot open", fault.message, fault.hint) from fault
+            raise self._no_folder(fault) from fault
         with self._held():
             if not self._exists():
                 self._create()
@@ -220,6 +304,8 @@ class Logbook:
             raise
         except sqlite3.Error as fault:
             trouble = trouble_from(fault, self.path, self._busy_seconds)
+            if trouble.kind == "locked" and damage.refuses_locks(self.path):
+                raise no_locks(self.path) from fault
             if trouble.kind == "damaged":
                 self._damaged = damage.identity(self.path)
             raise trouble from fault
@@ -228,6 +314,13 @@ class Logbook:
                 # Closing takes back whatever was not committed.
                 with suppress(sqlite3.Error):
                     connection.close()
+
+    def _no_folder(self, fault: Refusal) -> LogbookTrouble:
+        why = fault.__cause__
+        if why is None:
+            return LogbookTrouble("cannot open", fault.message, fault.hint)
+        words = f"The logbook {self.path} and its folder cannot be created: {reason(why)}."
+        return LogbookTrouble("cannot open", words)
 
     def _create(self) -> None:
         try:
@@ -279,9 +372,33 @@ def _condition(filter_text: str) -> tuple[str, list[str]]:
 
 
 def _one(connection: sqlite3.Connection, number: int) -> Entry:
-    if not 0 <= number <= LARGEST_NUMBER:
-        raise NoSuchEntry(number)
-    row = connection.execute(SELECT + " WHERE number = ?", [number]).fetchone()
+    row = read_row(connection, number) if 0 <= number <= LARGEST_NUMBER else None
     if row is None:
         raise NoSuchEntry(number)
     return from_row(row)
+
+
+def _one_by_one(connection: sqlite3.Connection, where: str, words: list[str]) -> Iterator[Entry]:
+    """Yield the entries with these words, newest first, of a file with a value too large for one question to all."""
+    for (number,) in connection.execute("SELECT number FROM entries" + NEWEST_FIRST):
+        row = read_row(connection, number)
+        entry = None if row is None else from_row(row)
+        if entry is not None and (not words or _has(connection, number, entry, where, words)):
+            yield entry
+
+
+def _has(connection: sqlite3.Connection, number: int, entry: Entry, where: str, words: list[str]) -> bool:
+    try:
+        query = f"SELECT 1 FROM entries{where} AND number = ?"
+        return connection.execute(query, [*words, number]).fetchone() is not None
+    except sqlite3.DataError:
+        searched = search_text(entry)
+        return all(word in searched for word in words)
+
+
+def _number_of(connection: sqlite3.Connection, entry: Entry) -> int | None:
+    """Return the number of an entry of the same moment that is the same in all that counts; None without one."""
+    row = dict(zip(COLUMNS, to_row(entry), strict=True))
+    same = "SELECT number FROM entries WHERE likeness = ? AND kept_at = ? LIMIT 1"
+    found = connection.execute(same, [row["likeness"], row["kept_at"]]).fetchone()
+    return None if found is None else int(found[0])

@@ -9,9 +9,11 @@ from typing import Literal
 from gaugeside.errors import Refusal
 from gaugeside.settings import plain_text
 
-Kind = Literal["locked", "read-only", "cannot open", "full", "disk error", "damaged", "newer", "foreign", "other"]
+Kind = Literal[
+    "locked", "no locks", "read-only", "cannot open", "full", "disk error", "damaged", "newer", "foreign", "other"
+]
 
-ELSEWHERE = "Name another file with --logbook PATH, or another folder with GAUGESIDE_HOME."
+ELSEWHERE = "Use another --logbook PATH or GAUGESIDE_HOME."
 SET_ASIDE = "A damaged logbook (*.sqlite3) is set aside untouched when the next entry is kept."
 
 _KINDS: dict[int, tuple[Kind, str, str]] = {
@@ -28,12 +30,12 @@ _KINDS: dict[int, tuple[Kind, str, str]] = {
     ),
     sqlite3.SQLITE_FULL: (
         "full",
-        "The disk of the logbook {path} is full.",
+        "The logbook {path} cannot grow: its disk is full.",
         "Free some space, then try again.",
     ),
     sqlite3.SQLITE_IOERR: (
         "disk error",
-        "The disk reports an error at the logbook {path} ({words}).",
+        "The logbook {path} meets a failing disk or network ({words}).",
         ELSEWHERE,
     ),
     sqlite3.SQLITE_CORRUPT: (
@@ -43,12 +45,22 @@ _KINDS: dict[int, tuple[Kind, str, str]] = {
     ),
     sqlite3.SQLITE_NOTADB: (
         "damaged",
-        "The file {path} is damaged or not a logbook.",
+        "The logbook {path} is damaged or not a logbook at all.",
         SET_ASIDE,
     ),
 }
 _KINDS[sqlite3.SQLITE_LOCKED] = _KINDS[sqlite3.SQLITE_BUSY]
 _KINDS[sqlite3.SQLITE_PERM] = _KINDS[sqlite3.SQLITE_CANTOPEN]
+
+_NO_LOCKS = "The logbook {path} cannot be locked: its disk or network refuses."
+# By the end of the library's name for the fault; the first one that fits.
+_DISK_ERRORS = (
+    ("LOCK", _NO_LOCKS),
+    ("FSYNC", "The logbook {path} is not written safely: its disk or network does not confirm."),
+    ("READ", "The logbook {path} cannot be read: its disk or network fails."),
+    ("WRITE", "The logbook {path} cannot be written: its disk is full, over its quota or failing."),
+    ("TRUNCATE", "The logbook {path} cannot be written: its disk or network fails."),
+)
 
 
 class LogbookTrouble(Refusal):
@@ -75,7 +87,15 @@ def trouble_from(fault: sqlite3.Error, path: Path, seconds: float) -> LogbookTro
     # The low byte is the cause; the rest tells where in the library it was met.
     cause = getattr(fault, "sqlite_errorcode", 0) & 0xFF
     kind, message, hint = _KINDS.get(cause, ("other", "The logbook {path} cannot be used ({words}).", ELSEWHERE))
+    if kind == "disk error":
+        name = getattr(fault, "sqlite_errorname", "")
+        message = next((words for ending, words in _DISK_ERRORS if name.endswith(ending)), message)
     return LogbookTrouble(kind, message.format(path=path, seconds=seconds, words=fault), hint)
+
+
+def no_locks(path: Path) -> LogbookTrouble:
+    """Return what to say of a logbook in a place where no file can be locked."""
+    return LogbookTrouble("no locks", _NO_LOCKS.format(path=path))
 
 
 def locked(path: Path, seconds: float) -> LogbookTrouble:
