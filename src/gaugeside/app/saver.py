@@ -4,61 +4,55 @@ from __future__ import annotations
 
 import threading
 from collections.abc import Callable, Mapping
+from pathlib import Path
 from typing import Any
 
 from gaugeside.errors import Refusal
-from gaugeside.settings import Places, Settings, save_draft, save_settings
+from gaugeside.settings import Places, Settings, save_draft, save_settings, stands_there
 
 _PAUSE = 0.3
+# Seconds without a change after which trouble is told: the next key would take the word off the screen unread.
+_REST = 2.0
+# Seconds after which what could not be saved is tried again, though nothing changes.
+_AGAIN = 5.0
+_BACK = "Saved again: settings and forms are on the disk."
 
 
 class Saver:
-    """Saves what it was last given, a moment after the last change."""
+    """Saves what it was last given, a moment after the last change, and tries again what could not be saved.
+
+    on_trouble: is told once that saving fails, and once that it works again.
+    """
 
     def __init__(self, places: Places, on_trouble: Callable[[str], None]) -> None:
-        self._places = places
         self._on_trouble = on_trouble
+        self._save: dict[Path, Callable[[Any], None]] = {
+            places.settings_file: lambda settings: save_settings(places.settings_file, settings),
+            places.draft_file: lambda draft: save_draft(places.draft_file, draft),
+        }
+        self._settings_file, self._draft_file = places.settings_file, places.draft_file
+        self._unread = {path for path in self._save if stands_there(path) is None}
         self._wake = threading.Condition()
         self._writing = threading.Lock()
-        self._draft: Mapping[str, Any] | None = None
-        self._settings: Settings | None = None
+        self._waiting: dict[Path, Any] = {}
+        self._changed = False
         self._closed = False
-        self._told = ""
+        self._fault = self._told = ""
         self._thread = threading.Thread(target=self._run, name="saver", daemon=True)
         self._thread.start()
 
     def draft(self, draft: Mapping[str, Any]) -> None:
         """Save this draft soon."""
-        with self._wake:
-            self._draft = draft
-            self._wake.notify()
+        self._take(self._draft_file, draft)
 
     def settings(self, settings: Settings) -> None:
         """Save these settings soon."""
-        with self._wake:
-            self._settings = settings
-            self._wake.notify()
+        self._take(self._settings_file, settings)
 
     def flush(self) -> None:
         """Save what is waiting now, from the calling thread, after what is being saved already."""
         with self._writing:
             self._flush()
-
-    def _flush(self) -> None:
-        with self._wake:
-            draft, settings = self._draft, self._settings
-            self._draft = self._settings = None
-        try:
-            if settings is not None:
-                save_settings(self._places.settings_file, settings)
-            if draft is not None:
-                save_draft(self._places.draft_file, draft)
-            self._told = ""
-        except Refusal as refusal:
-            # Said once, not at every key.
-            if refusal.message != self._told:
-                self._told = refusal.message
-                self._on_trouble(f"NOT SAVED: {refusal.sentence()}")
 
     def close(self) -> None:
         """Save what is waiting and stop."""
@@ -68,12 +62,51 @@ class Saver:
         self._thread.join(timeout=2)
         self.flush()
 
+    def _take(self, path: Path, content: Any) -> None:
+        with self._wake:
+            self._waiting[path] = content
+            self._changed = True
+            self._wake.notify()
+
+    def _flush(self) -> None:
+        with self._wake:
+            waiting, self._waiting, self._changed = self._waiting, {}, False
+        faults = []
+        for path, content in waiting.items():
+            try:
+                if path in self._unread and stands_there(path):
+                    raise Refusal(
+                        f"{path.name} could not be read at the start and is left as it is.",
+                        "Leave and start again to use it.",
+                    )
+                self._save[path](content)
+                self._unread.discard(path)
+            except Refusal as refusal:
+                faults.append(f"NOT SAVED: {refusal.sentence()}")
+                with self._wake:
+                    # What came meanwhile is newer.
+                    self._waiting.setdefault(path, content)
+        # One fault of the disk meets both files, and one word is enough.
+        self._fault = faults[0] if faults else ""
+
     def _run(self) -> None:
         while True:
             with self._wake:
-                while not self._closed and self._draft is None and self._settings is None:
-                    self._wake.wait()
+                if not self._wake.wait_for(lambda: self._closed or self._changed, self._patience()):
+                    self._tell()
                 if self._closed:
                     return
-                self._wake.wait(_PAUSE)
-            self.flush()
+                if self._changed:
+                    self._wake.wait(_PAUSE)
+            if self._waiting:
+                self.flush()
+
+    def _patience(self) -> float | None:
+        if bool(self._fault) != bool(self._told):
+            return _REST
+        return _AGAIN if self._waiting else None
+
+    def _tell(self) -> None:
+        if bool(self._fault) != bool(self._told):
+            self._on_trouble(self._fault or _BACK)
+        self._told = self._fault

@@ -15,7 +15,10 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
+    from textual.theme import Theme
+
     from gaugeside.app.app import GaugesideApp
+    from gaugeside.settings import Places, Settings
 
 # Leave the other screen, show the cursor, wrap lines, end reports of paste, mouse, focus and keys, plain colours.
 _RESTORE = b"\x1b[?1049l\x1b[?25h\x1b[?7h\x1b[?2004l\x1b[?1000l\x1b[?1003l\x1b[?1006l\x1b[?1004l\x1b[<u\x1b[0m\r\n"
@@ -48,18 +51,13 @@ def start(logbook: Path | None, ascii_alone: bool = False, on_hangup: Callable[[
     gc.disable()
     from gaugeside.app.app import GaugesideApp
     from gaugeside.app.charset import first_environ, speaks_utf8, use_ascii
-    from gaugeside.app.themes import load_themes
     from gaugeside.engine import Engine
-    from gaugeside.refrigerants import load_own
-    from gaugeside.settings import load_draft, load_settings, places
+    from gaugeside.settings import places
 
     home = places(logbook=logbook)
     if ascii_alone or not speaks_utf8(first_environ(), sys.stderr.encoding):
         use_ascii()
-    settings, messages = load_settings(home.settings_file)
-    draft, more = load_draft(home.draft_file)
-    themes, bad_themes = load_themes(home.themes_folder)
-    messages += [*more, *bad_themes, *load_own(home.settings_folder)]
+    settings, draft, themes, messages = _remembered(home)
     engine = Engine(lambda _: None, lambda _: None, log=home.log_file, own_folder=home.settings_folder)
     app = GaugesideApp(home, settings, draft, themes, messages, dict(os.environ), engine)
     modes = termios.tcgetattr(0)
@@ -71,6 +69,23 @@ def start(logbook: Path | None, ascii_alone: bool = False, on_hangup: Callable[[
         app.engine.close()
         app.book.close()
     return app.return_code or 0
+
+
+def _remembered(home: Places) -> tuple[Settings, dict[str, Any], dict[str, Theme], list[str]]:
+    """Return settings, forms and themes, and one sentence for each fault; one alone for a folder that is shut."""
+    from gaugeside.app.themes import load_themes
+    from gaugeside.refrigerants import load_own
+    from gaugeside.settings import folder_fault, load_draft, load_settings
+
+    settings, bad_settings = load_settings(home.settings_file)
+    draft, bad_draft = load_draft(home.draft_file)
+    themes, bad_themes = load_themes(home.themes_folder)
+    bad_settings += [*bad_themes, *load_own(home.settings_folder)]
+    messages = []
+    for folder, faults in ((home.settings_folder, bad_settings), (home.data_folder, bad_draft)):
+        shut = folder_fault(folder)
+        messages += [shut] if shut else faults
+    return settings, draft, themes, list(dict.fromkeys(messages))
 
 
 def _watch(app: GaugesideApp, modes: list[Any], on_hangup: Callable[[], None] | None) -> None:
