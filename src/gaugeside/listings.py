@@ -9,6 +9,7 @@ from typing import Any
 
 from gaugeside.logbook import Entry as LogbookEntry
 from gaugeside.logbook import Logbook
+from gaugeside.logbook.exchange import entry_json
 from gaugeside.refrigerants import find, load_own, search
 from gaugeside.settings import places
 
@@ -90,24 +91,3 @@ def entry_line(entry: LogbookEntry) -> str:
     when = entry.kept_at.astimezone().strftime("%Y-%m-%d %H:%M")
     parts = (f"{entry.number:>4}", when, entry.check, entry.refrigerant, entry.tag, entry.headline, entry.note)
     return "  ".join(part for part in parts if part)
-
-
-def entry_json(entry: LogbookEntry) -> dict[str, Any]:
-    """Return one entry as JSON types."""
-    return {
-        "number": entry.number,
-        "kept_at": entry.kept_at.isoformat(),
-        "check": entry.check,
-        "refrigerant": entry.refrigerant,
-        "tag": entry.tag,
-        "note": entry.note,
-        "readings": entry.readings,
-        "options": entry.options,
-        "values": entry.values,
-        "findings": entry.findings,
-        "notes": entry.notes,
-        "cautions": entry.cautions,
-        "headline": entry.headline,
-        "program_version": entry.program_version,
-        "library_version": entry.library_version,
-    }

@@ -9,10 +9,9 @@ from collections.abc import Callable, Mapping
 from dataclasses import replace
 from typing import Any
 
-from gaugeside.checks.compressor_map import CompressorMap, load_maps
-from gaugeside.checks.perform import perform, request
+from gaugeside.answering import answer_json, answered, terms
 from gaugeside.checks.picture import Picture
-from gaugeside.checks.sheet import Answer, Check, Entry, Remark
+from gaugeside.checks.sheet import Answer, Check, Remark
 from gaugeside.checks.typed import TypedLine, read_form
 from gaugeside.checks.view import (
     FOOTNOTE,
@@ -26,11 +25,10 @@ from gaugeside.checks.view import (
 )
 from gaugeside.drawing import draw
 from gaugeside.errors import Refusal
-from gaugeside.keeping import entry_of, json_findings, with_linked_entries
+from gaugeside.keeping import entry_of
 from gaugeside.logbook import Logbook
 from gaugeside.preferences import dress_of, overridden, site_of
 from gaugeside.quantities import (
-    PROPERTIES,
     SI_UNIT,
     Dress,
     Kind,
@@ -47,8 +45,8 @@ from gaugeside.quantities import (
     unit,
     write,
 )
-from gaugeside.refrigerants import find, load_own
-from gaugeside.settings import Places, Settings, load_settings, places
+from gaugeside.refrigerants import find
+from gaugeside.settings import load_settings, places
 
 Printer = Callable[[str], None]
 _WIDTH = 100
@@ -58,48 +56,23 @@ _PICTURE = (80, 18)
 def run_check(arguments: Namespace, say: Printer) -> int:
     """Run one check on what the command line gives, print its sheet or its JSON, keep it when asked."""
     check: Check = arguments.check
-    home = places(logbook=arguments.logbook)
-    remembered, troubles = load_settings(home.settings_file)
-    settings = overridden(remembered, arguments.altitude, arguments.barometer, arguments.units)
-    settings = replace(settings, datum=arguments.datum or settings.datum)
-    if arguments.tag is not None:
-        settings = replace(settings, tag=arguments.tag)
-    troubles += load_own(home.settings_folder)
-    dress, site = dress_of(settings), site_of(settings)
-    refrigerant = _named(arguments.refrigerant) if check.needs_refrigerant else ""
+    under = terms(check, arguments)
+    settings, dress, site = under.settings, under.dress, under.site
+    logbook = Logbook(under.home.logbook_file)
     typed = read_form(check, _texts(check, arguments), {}, dress, site)
-    for line in typed.values():
-        if line.refusal is not None:
-            raise line.refusal
-    asked = request(
-        check.name,
-        refrigerant,
-        with_linked_entries(
-            {name: line.value for name, line in typed.items() if line.value is not None}, Logbook(home.logbook_file)
-        ),
-        site=site,
-        datum=settings.datum,
-        dress=dress,
-        compressor=_compressor(home, settings, refrigerant, troubles) if check.name == "machine" else None,
-        drawn=getattr(arguments, "picture", False),
-    )
-    reply = perform(asked)
-    _raise_refused(reply.get("error"))
-    answer = Answer.from_plain(reply["answer"])
-    _raise_refused(answer.unresolved)
+    answer, reply = answered(check, typed, under, logbook, drawn=getattr(arguments, "picture", False))
     kept = not_kept = ""
     if arguments.keep:
         entry = entry_of(check, answer, typed, settings, dress, site, arguments.note)
         try:
-            result = Logbook(home.logbook_file).keep(entry)
+            result = logbook.keep(entry)
             kept = f"{'already kept' if result.already else 'kept'} as entry {result.entry.number}"
         except Refusal as refusal:
             not_kept = refusal.sentence()
-    answer = replace(answer, notes=(*answer.notes, *map(Remark, troubles)))
+    answer = replace(answer, notes=(*answer.notes, *map(Remark, under.troubles)))
     if arguments.json:
-        document = _as_json(check, answer, typed, settings, dress, site, kept)
-        if not_kept:
-            document["not_kept"] = not_kept
+        document = answer_json(check, answer, typed, under)
+        document |= {name: said for name, said in (("kept", kept), ("not_kept", not_kept)) if said}
         say(json.dumps(document | {name: reply[name] for name in ("picture",) if name in reply}))
     else:
         say("\n".join(_as_text(check, answer, typed, dress, site)))
@@ -120,29 +93,6 @@ def _drawn(plain: Mapping[str, Any] | None, dress: Dress, site: Site, ascii_alon
     return ["", *draw(Picture.from_plain(plain), *_PICTURE, dress, site, ascii_alone=ascii_alone).lines()]
 
 
-def _compressor(home: Places, settings: Settings, refrigerant: str, troubles: list[str]) -> CompressorMap | None:
-    """Return the polynomials kept for the machine named, where they are for this refrigerant."""
-    maps, more = load_maps(home.settings_folder)
-    troubles += more
-    found = maps.get(settings.tag.casefold())
-    if found is not None and find(found.refrigerant).designation != refrigerant:
-        troubles.append(f"The polynomials of {found.tag} are for {found.refrigerant} and are left out.")
-        return None
-    return found
-
-
-def _named(text: str) -> str:
-    try:
-        return find(text).designation
-    except Refusal as refusal:
-        raise refusal.about("refrigerant") from None
-
-
-def _raise_refused(error: Mapping[str, Any] | None) -> None:
-    if error is not None:
-        raise Refusal(error["message"], error["hint"] or "", error["field"])
-
-
 def _texts(check: Check, arguments: Namespace) -> dict[str, str]:
     """Return what was typed for every reading; an option that is given but empty is refused."""
     given = {line.name: getattr(arguments, line.name) for line in check.reading_lines()}
@@ -150,59 +100,6 @@ def _texts(check: Check, arguments: Namespace) -> dict[str, str]:
         if text is not None and not text.strip():
             raise Refusal("It is given, but empty.", "Write a reading, or leave it out.", name)
     return {name: text or "" for name, text in given.items()}
-
-
-def _as_json(
-    check: Check,
-    answer: Answer,
-    typed: Mapping[str, TypedLine],
-    settings: Settings,
-    dress: Dress,
-    site: Site,
-    kept: str,
-) -> dict[str, Any]:
-    document: dict[str, Any] = {
-        "check": check.name,
-        "refrigerant": answer.refrigerant,
-        "site": {"atmosphere": {"value": site.atmosphere, "unit": "Pa"}, "source": site.source},
-        "datum": settings.datum,
-        "readings": {
-            line.name: _reading_json(line.entry, line.kind, typed[line.name])
-            for line in check.reading_lines()
-            if typed[line.name].value is not None
-        },
-        "findings": json_findings(check, answer),
-        "tables": [
-            {
-                "title": raw.title,
-                "columns": [{"name": label, "unit": SI_UNIT[kind]} for label, kind in raw.columns],
-                "rows": [list(row) for row in raw.rows],
-            }
-            for raw in answer.tables
-        ],
-        "notes": [sentence(remark, dress, site) for remark in answer.notes],
-        "cautions": [sentence(remark, dress, site) for remark in answer.cautions],
-        "library_version": answer.library_version,
-    }
-    if kept:
-        document["kept"] = kept
-    return document
-
-
-def _reading_json(entry: Entry, kind: Kind, line: TypedLine) -> dict[str, Any]:
-    if entry is Entry.QUANTITY:
-        return {"value": line.value, "unit": SI_UNIT[kind], "typed": line.text.strip()}
-    if entry is Entry.CHOICE:
-        return {"value": line.value, "unit": "", "typed": line.text.strip()}
-    if entry is Entry.STATE:
-        values = {name: {"value": value, "unit": SI_UNIT[PROPERTIES[name]]} for name, value in line.value.items()}
-        return {"values": values, "typed": line.text.strip()}
-    if entry is Entry.LOGBOOK_ENTRY:
-        return {"value": int(line.value["entry"]), "unit": "", "typed": line.text.strip()}
-    if entry is Entry.WORDS:
-        return {"value": line.value, "unit": "", "typed": line.text.strip()}
-    ((name, value),) = line.value.items()
-    return {"value": value, "unit": SI_UNIT[Kind(name)], "kind": name, "typed": line.text.strip()}
 
 
 def _as_text(check: Check, answer: Answer, typed: Mapping[str, TypedLine], dress: Dress, site: Site) -> list[str]:

@@ -1,0 +1,240 @@
+"""Files of other hands, read with limits, and for other hands, written whole or not at all and without formulas."""
+
+from __future__ import annotations
+
+import codecs
+import os
+import re
+import stat
+import sys
+import tempfile
+from collections.abc import Iterator
+from contextlib import contextmanager, suppress
+from pathlib import Path
+from typing import BinaryIO
+
+from gaugeside.errors import Refusal
+from gaugeside.quantities import SEA_LEVEL, Dress, Kind, fold, guard, read_state, spellings, split_number
+from gaugeside.quantities.state_text import PROPERTIES
+from gaugeside.settings import plain_text, reason, sync_folder
+
+STANDARD = "-"  # in the place of a file's name: standard input, standard output
+_AT_ONCE = 65_536  # [bytes]
+_LONGEST_NAME = 200  # [characters], of a file in a sentence
+_LINE_END = re.compile(rb"\r\n|\n|\r")
+# The last four are the wide forms, which some spreadsheets take for the narrow ones.
+_FORMULA = frozenset("=+-@＝＋－＠")
+_NEVER_IN_A_READING = frozenset("*^_=[]{}|!&<>:@#$\\")
+_STATE_UNITS = {name: Dress().default(kind) for name, kind in PROPERTIES.items()}
+
+
+@contextmanager
+def opened(name: str) -> Iterator[BinaryIO]:
+    """Open a file, or standard input for "-", to read its bytes.
+
+    Raises Refusal when it cannot be read or is no file: a pipe would be waited for, a device may have no end.
+    """
+    if name == STANDARD:
+        if sys.stdin is None:
+            raise Refusal("Standard input is closed.", "Name a file, or pipe one in.")
+        yield sys.stdin.buffer
+        return
+    try:
+        # Looked at first, because the opening alone of a device may do something.
+        is_file = stat.S_ISREG(os.stat(name).st_mode)
+        flags = os.O_RDONLY | getattr(os, "O_NONBLOCK", 0) | getattr(os, "O_BINARY", 0)
+        file = os.fdopen(os.open(name, flags), "rb") if is_file else None
+    except (OSError, ValueError) as fault:
+        raise Refusal(
+            f"{_told(name)} cannot be read: {reason(fault)}.", "Check the name, or use - for standard input."
+        ) from fault
+    if file is None:
+        raise Refusal(f"{_told(name)} is not a file.", "Name a file, or use - for standard input.")
+    with file:
+        yield file
+
+
+def chunks(file: BinaryIO, name: str) -> Iterator[bytes]:
+    """Yield what a file holds, as it comes; Refusal when it cannot be read to its end."""
+    read = getattr(file, "read1", file.read)
+    while True:
+        try:
+            chunk = read(_AT_ONCE)
+        except (OSError, ValueError) as fault:
+            raise Refusal(
+                f"{_told(name)} cannot be read on: {reason(fault)}.", "Check the disk or the link."
+            ) from fault
+        if not chunk:
+            return
+        yield chunk
+
+
+def content(name: str, largest: int) -> bytes:
+    """Return all that a file, or standard input for "-", holds; Refusal when that is more than `largest` [bytes]."""
+    found = bytearray()
+    with opened(name) as file:
+        for chunk in chunks(file, name):
+            found += chunk
+            if len(found) > largest:
+                raise Refusal(f"{_told(name)} is larger than {largest // 1_000_000} MB.", "Take it in in parts.")
+    return bytes(found)
+
+
+@contextmanager
+def written_whole(name: str, replace: bool) -> Iterator[BinaryIO]:
+    """Yield a file whose bytes stand under `name`, for its owner alone, once the block has ended well.
+
+    replace: whether a file that is there may go. A link, a folder, a device or a pipe there is always refused.
+
+    Raises Refusal when the file cannot be written; what was there is then untouched.
+    """
+    path = Path(name)
+    _refuse_what_is_there(path, replace)
+    temporary = ""
+    try:
+        handle, temporary = tempfile.mkstemp(prefix=".gaugeside-", dir=path.parent)
+        with os.fdopen(handle, "wb") as file:
+            yield file
+            file.flush()
+            os.fsync(file.fileno())
+        _put(temporary, path, replace)
+    except BrokenPipeError:
+        raise
+    except OSError as fault:
+        raise Refusal(
+            f"{_told(name)} cannot be written: {reason(fault)}.", "Nothing was changed there; name another file."
+        ) from fault
+    finally:
+        with suppress(OSError):
+            if temporary:
+                os.unlink(temporary)
+    sync_folder(path.parent)
+
+
+def _refuse_what_is_there(path: Path, replace: bool) -> None:
+    try:
+        mode = os.lstat(path).st_mode
+    except FileNotFoundError:
+        return
+    except (OSError, ValueError) as fault:
+        raise Refusal(f"{_told(str(path))} cannot be written: {reason(fault)}.", "Name another file.") from fault
+    if not stat.S_ISREG(mode):
+        what = "a link to another place" if stat.S_ISLNK(mode) else "a folder" if stat.S_ISDIR(mode) else "no file"
+        raise Refusal(
+            f"{_told(str(path))} is {what} and is left as it is.",
+            "Name a file that is none yet, or leave --to out for standard output.",
+        )
+    if not replace:
+        raise Refusal(f"{_told(str(path))} is there already.", "Name another file, or add --replace.")
+
+
+def _put(temporary: str, path: Path, replace: bool) -> None:
+    _refuse_what_is_there(path, replace)
+    if replace:
+        os.replace(temporary, path)
+        return
+    try:
+        os.link(temporary, path)
+    except FileExistsError:
+        _refuse_what_is_there(path, replace)
+        raise
+    except OSError:
+        # Some file systems have no second names for a file; there the moment since the look has to do.
+        os.rename(temporary, path)
+
+
+def _told(name: str) -> str:
+    return "Standard input" if name == STANDARD else plain_text(name, _LONGEST_NAME)
+
+
+class Lines:
+    """The lines of a text file, one by one: UTF-8, UTF-16 with its mark, or else Windows-1252.
+
+    A line that cannot be taken comes as the Refusal that says why; the next one is read all the same.
+
+    longest: of a line [bytes]. marked: the file began with a byte order mark. windows: some line was read as
+    Windows-1252.
+    """
+
+    def __init__(self, file: BinaryIO, name: str, longest: int) -> None:
+        self.marked = False
+        self.windows = False
+        self._longest = longest
+        self._chunks = chunks(file, name)
+
+    def __iter__(self) -> Iterator[str | Refusal]:
+        for line in self._whole_lines():
+            if line is None:
+                yield Refusal(f"This line is longer than {self._longest} bytes.", "Check that the file is a table.")
+            else:
+                yield self._decoded(line)
+
+    def _bytes(self) -> Iterator[bytes]:
+        """Yield the file's bytes without a mark, UTF-16 as UTF-8."""
+        start = b""
+        for chunk in self._chunks:
+            start += chunk
+            if len(start) > len(codecs.BOM_UTF8):
+                break
+        wide = start.startswith((codecs.BOM_UTF16_LE, codecs.BOM_UTF16_BE))
+        self.marked = wide or start.startswith(codecs.BOM_UTF8)
+        if not wide:
+            yield start.removeprefix(codecs.BOM_UTF8)
+            yield from self._chunks
+            return
+        decoder = codecs.getincrementaldecoder("utf-16")("replace")
+        yield decoder.decode(start).encode()
+        for chunk in self._chunks:
+            yield decoder.decode(chunk).encode()
+
+    def _whole_lines(self) -> Iterator[bytes | None]:
+        held, skipping = b"", False
+        for chunk in self._bytes():
+            held += chunk
+            # The other half of a line end may still come.
+            half = held[-1:] if held.endswith(b"\r") else b""
+            *whole, held = _LINE_END.split(held[: len(held) - len(half)])
+            held += half
+            for line in whole:
+                yield None if skipping or len(line) > self._longest else line
+                skipping = False
+            if len(held) > self._longest:
+                skipping, held = True, half
+        if skipping or held:
+            yield None if skipping else held.removesuffix(b"\r")
+
+    def _decoded(self, line: bytes) -> str | Refusal:
+        if b"\x00" in line:
+            return Refusal("There is a NUL byte in this line.", "Save the file as UTF-8 text.")
+        with suppress(UnicodeDecodeError):
+            return line.decode()
+        if not self.marked:
+            with suppress(UnicodeDecodeError):
+                text = line.decode("cp1252")
+                self.windows = True
+                return text
+        return Refusal("There are bytes in this line that are no text.", "Save the file as UTF-8 text.")
+
+
+def cell(text: str) -> str:
+    """Return a text as a cell that no spreadsheet runs as a formula and no terminal obeys.
+
+    What begins like a formula gets an apostrophe before it, unless it is a number, a reading or a state: those are
+    made of digits and of units of a closed list.
+    """
+    text = plain_text(text)
+    return f"'{text}" if text.lstrip()[:1] in _FORMULA and not _is_reading(text) else text
+
+
+def _is_reading(text: str) -> bool:
+    if not _NEVER_IN_A_READING.isdisjoint(text):
+        return False
+    with suppress(Refusal):
+        unit = split_number(guard(text))[1]
+        kinds = (kind for kind in Kind if kind not in (Kind.WORDS, Kind.RATIO))
+        if not unit or any(fold(unit) in spellings(kind) for kind in kinds):
+            return True
+    with suppress(Refusal):
+        read_state(text, _STATE_UNITS, Dress(), SEA_LEVEL)
+        return True
+    return False
