@@ -120,6 +120,11 @@ class Sheet:
         """A check's pane."""
         return self.app.base.query_one(f"#pane-{name}", SheetPane)
 
+    @property
+    def rule(self) -> str:
+        """What the rule over the findings says, empty for a rule alone."""
+        return self.app.base.query_one(f"#pane-{self.app.now} > .rule", Line).text.rstrip("- ")
+
     def findings(self) -> list[str]:
         """The lines under the form of the pane that is shown."""
         return self.app.base.query_one(f"#pane-{self.app.now}").query_one("#findings", Lines).texts()

@@ -20,6 +20,8 @@ STYLES = [
     "4;7",
     "38;5;110;48;5;234",
     "1;38;5;110;48;5;234",
+    "4;38;5;110;48;5;234",
+    "1;3;7;38;5;110;48;5;234",
     "48;5;234",
     "2;39;49",
     "30;47",
@@ -80,7 +82,7 @@ def looks(screen: pyte.Screen) -> list[list[tuple[object, ...]]]:
         row = []
         for x in range(WIDTH):
             cell = screen.buffer[y][x]
-            letters = (cell.fg, cell.bold) if cell.data.strip() or cell.underscore or cell.reverse else ()
+            letters = (cell.fg, cell.bold, cell.italics) if cell.data.strip() or cell.underscore or cell.reverse else ()
             row.append((cell.data, cell.bg, cell.underscore, cell.reverse, *letters))
         rows.append(row)
     return rows

@@ -5,10 +5,11 @@ from __future__ import annotations
 from app.sheets import sheet
 from gaugeside.app.frame import PANES
 from gaugeside.app.help_text import help_lines
-from gaugeside.app.panes.answer_lines import side_by_side
+from gaugeside.app.panes.answer_lines import answer_lines, side_by_side
 from gaugeside.checks import CHECKS
+from gaugeside.checks.sheet import Answer, Remark
 from gaugeside.checks.view import TableText
-from gaugeside.quantities import Dress
+from gaugeside.quantities import SEA_LEVEL, Dress
 
 
 def test_tables_that_do_not_fit_beside_each_other_stand_below_each_other() -> None:
@@ -19,7 +20,7 @@ def test_tables_that_do_not_fit_beside_each_other_stand_below_each_other() -> No
 
 def test_help_names_every_pane_and_gives_no_unit_for_words() -> None:
     for name, check in CHECKS.items():
-        text = "\n".join(line for line, _ in help_lines(check, {}, Dress(), [], 80))
+        text = "\n".join(line for line, _ in help_lines(check, {}, Dress(), [], ["R-454C: its harm"], 80))
         assert all(key in text for key in (*PANES.values(), "Ctrl+G")), name
         assert not [line for line in text.splitlines() if line.endswith("alone:")], name
 
@@ -37,3 +38,33 @@ async def test_a_cleared_sheet_has_the_cursor_in_its_first_field() -> None:
         await shown.press("down", "down")
         await shown.press("ctrl+o", "c")
         await shown.wait(lambda: shown.focus == "suction_pressure", "the first field")
+
+
+async def test_what_a_refrigerant_asks_stands_on_the_screen_once() -> None:
+    harm = "R-454C: mildly flammable (A2L). Ventilate, no ignition, follow local code."
+    model = "The model itself is uncertain by about 0.6 K"
+    async with sheet("R-454C") as shown:
+        await shown.type("38 psig\t28 F")
+        await shown.see("superheat  ")
+        assert shown.text().count("mildly flammable") == 1
+        assert harm in shown.lines()
+        assert "Estimates (the model alone ±0.6 K); maker's figures and local rules come first." in shown.lines()
+        assert model not in shown.text()
+        await shown.press("f1")
+        await shown.see(model)
+        assert harm in shown.text()
+        await shown.press("f1")
+        assert shown.app.stands_already() == [harm, f"{model}: HFO blend, older tables differ."]
+        # Where the window has no room beside the sheet it goes onto the sheet.
+        await shown.pilot.resize_terminal(60, 16)
+        await shown.wait(lambda: harm not in shown.lines())
+        assert shown.app.stands_already() == []
+
+
+def test_what_stands_around_the_sheet_is_not_on_it() -> None:
+    remarks = (Remark("harm"), Remark("leak"))
+    answer = Answer("superheat", "R-454C", {"superheat": 5.0}, {}, (Remark("model"),), remarks, (), None, "")
+    whole = [text for text, _ in answer_lines(CHECKS["superheat"], answer, Dress(), SEA_LEVEL, 79, [])]
+    assert whole[1:] == ["harm", "leak", "model"]
+    rest = [text for text, _ in answer_lines(CHECKS["superheat"], answer, Dress(), SEA_LEVEL, 79, ["harm", "model"])]
+    assert rest == [whole[0], "leak"]

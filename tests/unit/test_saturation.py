@@ -6,8 +6,10 @@ from itertools import pairwise
 
 import pytest
 
+from gaugeside.checks.caution import standing_caution
 from gaugeside.checks.view import every_pressure
 from gaugeside.quantities import SEA_LEVEL, Dress, Site, standard_atmosphere
+from gaugeside.refrigerants import search
 from unit.check_tools import ask, number, refusal, said
 
 ZERO = 273.15
@@ -74,8 +76,8 @@ def test_zeotrope_says_which_point_is_for_what_and_where_glide_is_counted() -> N
 @pytest.mark.parametrize(
     ("refrigerant", "words"),
     [
-        ("R-454C", "R-454C is mildly flammable (A2L): ventilate"), ("R-290", "R-290 is highly flammable (A3)"),
-        ("R-717", "R-717 is toxic and mildly flammable (B2L)"), ("R-123", "R-123 is toxic (B1)"),
+        ("R-454C", "R-454C: mildly flammable (A2L). Ventilate"), ("R-290", "R-290: highly flammable (A3)"),
+        ("R-717", "R-717: toxic, mildly flammable (B2L)"), ("R-123", "R-123: toxic (B1)"),
         ("R-744", "displaces air in closed rooms"),
     ],
 )  # fmt: skip
@@ -83,6 +85,14 @@ def test_caution_of_the_safety_class(refrigerant: str, words: str) -> None:
     answer = ask("saturation", refrigerant, reading="-5 C")
     assert [words in caution.text for caution in answer.cautions] == [True]
     assert ask("saturation", "R-134a", reading="-5 C").cautions == ()
+
+
+def test_what_every_refrigerant_asks_of_a_person_fits_a_line() -> None:
+    for refrigerant in search(""):
+        text, is_urgent = standing_caution(refrigerant)
+        assert text.startswith(f"{refrigerant.designation}: ")
+        assert len(text) <= 80, text
+        assert is_urgent == (refrigerant.safety_class != "A1" or refrigerant.designation == "R-744")
 
 
 @pytest.mark.parametrize(

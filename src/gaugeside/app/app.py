@@ -89,6 +89,7 @@ class GaugesideApp(House):
         self.now = wanted if wanted in PANES else "superheat"
         with Container(id="panes"):
             yield self._build(self.now)
+        yield Line(id="standing")
         with Container(id="word"):
             yield Line()
             yield Line()
@@ -131,6 +132,8 @@ class GaugesideApp(House):
     def _frame(self) -> None:
         if self.now:
             self.head()
+            for pane in self.base.query(SheetPane):
+                pane.lay_out()
             self._show_more()
             self.show_word()
 
@@ -143,10 +146,13 @@ class GaugesideApp(House):
             "#head": (head_line(self.refrigerant or wanted, self.site, self.settings.tag, width),
                       "bold" if self.refrigerant or wanted else CAUTION),
             "#tabs": (tabs_line(self.now, width), ""),
+            "#standing": self.standing(),
             "#keys": (keys_line(self.now, width, height), CAUTION if small else MUTED),
         }  # fmt: skip
         for name, (text, style) in lines.items():
             self.base.query_one(name, Line).say(text, style)
+        standing = self.base.query_one("#standing", Line)
+        standing.display = bool(standing.text)
 
     def _follow_scrolling(self, pane: Pane) -> None:
         for attribute in ("virtual_size", "scroll_y", "size"):
@@ -256,7 +262,7 @@ class GaugesideApp(House):
         """Show help for the pane."""
         pane = self._pane()
         check, units = (pane.check, pane.units) if isinstance(pane, SheetPane) else (None, {})
-        await self._open(Help(help_lines(check, units, self.dress, self.told, self.size.width)), None)
+        await self._open(Help(help_lines(check, units, self.dress, self.told, self.care(), self.size.width)), None)
 
     def action_help_quit(self) -> None:
         """Ctrl+C, where it copies nothing."""

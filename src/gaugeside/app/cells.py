@@ -21,6 +21,8 @@ _SILENT = re.compile(r"(?:\x1b\[\?[0-9;]+(?:[hl]|\$p)|\x1b\[[<>=][0-9;]*u|\x1b\]
 _CODE = re.compile(r"(?:(38|48);(?:5;\d+|2;\d+;\d+;\d+)|(\d+))(?:;|$)")
 # Sending a few unchanged cells is shorter than moving over them.
 _BRIDGE = 5
+# What ends bold, dim, italic, underlined, reversed (ECMA-48, SGR); bold and dim end together.
+_ENDS = {"1": "22", "2": "22", "3": "23", "4": "24", "7": "27"}
 _ERASE_FROM = 5
 
 
@@ -189,9 +191,12 @@ def _change(before: str, after: str) -> str:
     if not after:
         return "\x1b[0m"
     afresh = f"\x1b[0;{after}m" if before else f"\x1b[{after}m"
-    if not old[2] <= new[2]:
+    gone = old[2] - new[2]
+    # Terminals of few colours are also those that may not know how to end bold alone.
+    if gone and not (gone <= _ENDS.keys() and ";5;" in before):
         return afresh
-    codes = sorted(new[2] - old[2])
+    ends = {_ENDS[code] for code in gone}
+    codes = sorted(ends) + sorted(code for code in new[2] if code not in old[2] or _ENDS.get(code) in ends)
     codes += [
         (colour or plain) for colour, was, plain in ((new[0], old[0], "39"), (new[1], old[1], "49")) if colour != was
     ]

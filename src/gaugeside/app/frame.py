@@ -91,9 +91,13 @@ def rule_line(width: int, above: bool, below: bool) -> str:
     return f"{'-' * max(0, width - len(mark) - 5)} {mark} ---"[-width:]
 
 
-def word_lines(text: str, width: int) -> list[str]:
-    """Return a sentence in at most two lines."""
+def word_lines(text: str, standing: str, width: int) -> list[str]:
+    """Return a sentence in at most two lines; what stands there without it keeps the second where one is enough."""
     lines = textwrap.wrap(text, max(10, width - 1))
     if len(lines) > 2:
         lines = [lines[0], f"{lines[1][: max(1, width - 5)]} ..."]
-    return [*lines, "", ""][:2]
+    if not lines and len(standing) > width:
+        lines = textwrap.wrap(standing, width)
+    if len(lines) > 1:
+        return lines[:2]
+    return [*lines, *[""] * (1 - len(lines)), standing if len(standing) <= width else ""]

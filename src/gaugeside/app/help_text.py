@@ -54,11 +54,17 @@ WRITING = (
 
 
 def help_lines(
-    check: Check | None, units: dict[str, dict[str, str]], dress: Dress, messages: Sequence[str], width: int
+    check: Check | None,
+    units: dict[str, dict[str, str]],
+    dress: Dress,
+    messages: Sequence[str],
+    care: Sequence[str],
+    width: int,
 ) -> list[Styled]:
     """Return the help for a pane; `check` is None for the logbook and the site.
 
-    messages: what the program had to tell since its start. width: of the window [characters].
+    messages: what the program had to tell since its start. care: what there is to know of the refrigerant picked.
+    width: of the window [characters].
     """
     width = min(width, _WIDEST) - 2
     back = "F1, Enter or Space goes back. Up, Down, PageUp, PageDown scroll."
@@ -77,7 +83,7 @@ def help_lines(
     for kind in _KINDS:
         lines += _wrapped(kind.value, " · ".join(bare_labels(kind)), 25, width)
     lines += [("", ""), ("Care", MAIN)]
-    for text in CAUTIONS:
+    for text in (*care, *CAUTIONS):
         lines += _wrapped("", text, 2, width)
     return lines
 

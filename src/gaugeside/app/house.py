@@ -15,16 +15,17 @@ from textual.theme import Theme
 
 from gaugeside.app.book import Book
 from gaugeside.app.driver import TerminalDriver
-from gaugeside.app.frame import word_lines
+from gaugeside.app.frame import HIGH, word_lines
 from gaugeside.app.keys import KeysInTurn
 from gaugeside.app.panes.logbook import LogbookPane
 from gaugeside.app.panes.sheet import SheetPane
 from gaugeside.app.saver import Saver
 from gaugeside.app.themes import pick_theme, without_colour
-from gaugeside.app.widgets.lines import CAUTION, MUTED, Line
+from gaugeside.app.widgets.lines import CAUTION, MUTED, Line, Styled
 from gaugeside.checks import CHECKS
+from gaugeside.checks.caution import model_remark, standing_caution
 from gaugeside.checks.compressor_map import CompressorMap, load_maps
-from gaugeside.checks.view import FOOTNOTE
+from gaugeside.checks.view import footnote, sentence
 from gaugeside.engine import Engine, Reply
 from gaugeside.errors import Refusal
 from gaugeside.keeping import entry_of
@@ -139,10 +140,38 @@ class House(KeysInTurn):
         if self._messages:
             more = len(self._messages) - 1
             text, style = self._messages[0] + (f" ({more} more: F1)" if more else ""), CAUTION
-        shown = word_lines(text or (FOOTNOTE if self.now in CHECKS else ""), self.size.width)
+        standing = self._footnote() if self.now in CHECKS else ""
+        shown = word_lines(text, standing, self.size.width)
         # While the app ends its lines go one by one, and a thread may still have something to say.
         for line, part in zip(self.base.query("#word > Line").results(Line), shown, strict=False):
-            line.say(part, style)
+            line.say(part, MUTED if part == standing else style)
+
+    def _footnote(self) -> str:
+        refrigerant = self.refrigerant
+        is_said = refrigerant is not None and model_remark(refrigerant) is not None
+        return footnote(refrigerant.model_uncertainty if refrigerant and is_said else 0.0, self.dress, self.site)
+
+    def care(self) -> list[str]:
+        """Return what there is to know of the refrigerant whatever is read: its harm, how far its model may be off."""
+        if self.refrigerant is None:
+            return []
+        model = model_remark(self.refrigerant)
+        harm = standing_caution(self.refrigerant)[0]
+        return [harm] if model is None else [harm, sentence(model, self.dress, self.site)]
+
+    def stands_already(self) -> list[str]:
+        """Return the remarks that need not be on a sheet, since they stand around it."""
+        has_room = bool(self.standing()[0]) and len(self._footnote()) <= self.size.width
+        return self.care() if has_room else []
+
+    def standing(self) -> Styled:
+        """Return what the refrigerant asks of a person whatever is read; empty where there is no room for it."""
+        check = CHECKS.get(self.now)
+        width, height = self.size
+        if self.refrigerant is None or check is None or not check.needs_refrigerant or height < HIGH:
+            return "", MUTED
+        text, is_urgent = standing_caution(self.refrigerant)
+        return (text if len(text) <= width else "", CAUTION if is_urgent else MUTED)
 
     @property
     def base(self) -> Screen[Any]:

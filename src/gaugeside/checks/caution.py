@@ -2,34 +2,46 @@
 
 from __future__ import annotations
 
-from gaugeside.checks.sheet import Conditions, Outcome
+from gaugeside.checks.sheet import Conditions, Outcome, Remark
 from gaugeside.quantities import Kind
+from gaugeside.refrigerants import Refrigerant
 
 # Common practice for single-stage machines; the maker's figures take precedence.
 DISCHARGE_CAUTION, DISCHARGE_ALARM = 378.15, 393.15
 PRESSURE_RATIO_CAUTION = 8.0
 
-_FLAMMABLE = {
-    "A2L": "mildly flammable (A2L)",
-    "A2": "flammable (A2)",
-    "A3": "highly flammable (A3)",
-    "B2L": "toxic and mildly flammable (B2L)",
-    "B2": "toxic and flammable (B2)",
-    "B3": "toxic and highly flammable (B3)",
-    "B1": "toxic (B1)",
+_HARM = {
+    "A2L": "mildly flammable (A2L). Ventilate, no ignition",
+    "A2": "flammable (A2). Ventilate, no ignition",
+    "A3": "highly flammable (A3). Ventilate, no ignition",
+    "B2L": "toxic, mildly flammable (B2L). Ventilate, no ignition",
+    "B2": "toxic, flammable (B2). Ventilate, no ignition",
+    "B3": "toxic, highly flammable (B3). Ventilate, no ignition",
+    "B1": "toxic (B1). Ventilate",
 }
 
 
 def refrigerant_caution(conditions: Conditions, outcome: Outcome) -> None:
-    """Say once what the safety class asks of a person (ASHRAE 34, ISO 817)."""
-    refrigerant = conditions.refrigerant
-    words = _FLAMMABLE.get(refrigerant.safety_class)
-    if words:
-        outcome.caution(f"{refrigerant.designation} is {words}: ventilate, no ignition source, follow local code.")
-    elif refrigerant.designation == "R-744":
-        outcome.caution("R-744 stands at high pressure and displaces air in closed rooms: vent and enter with care.")
-    elif not refrigerant.safety_class:
-        outcome.caution(f"No safety class of {refrigerant.designation} is known here: treat it as flammable and toxic.")
+    """Say once what the refrigerant itself asks of a person."""
+    text, is_urgent = standing_caution(conditions.refrigerant)
+    if is_urgent:
+        outcome.caution(text)
+
+
+def standing_caution(refrigerant: Refrigerant) -> tuple[str, bool]:
+    """Return what a refrigerant asks of a person whatever is read, and whether that is more than of every one.
+
+    By its safety class (ASHRAE 34, ISO 817); a published designation leaves it within 80 characters.
+    """
+    name = refrigerant.designation
+    harm = _HARM.get(refrigerant.safety_class)
+    if harm:
+        return f"{name}: {harm}, follow local code.", True
+    if name == "R-744":
+        return "R-744: very high pressure; displaces air in closed rooms. Enter with care.", True
+    if not refrigerant.safety_class:
+        return f"{name}: no safety class is known here. Treat it as flammable and toxic.", True
+    return f"{name}: displaces air in closed rooms; its liquid freezes skin and eyes.", False
 
 
 def suction_caution(conditions: Conditions, outcome: Outcome, pressure: float) -> None:
@@ -55,10 +67,17 @@ def discharge_cautions(outcome: Outcome, temperature: float | None, ratio: float
 
 
 def model_note(conditions: Conditions, outcome: Outcome) -> None:
-    """Say how far the property model itself may be off, where that is worth knowing (0.1 K and more)."""
-    refrigerant = conditions.refrigerant
-    if refrigerant.model_uncertainty >= 0.1:
-        outcome.note(
-            f"The property model itself is uncertain by about {{model}}: {refrigerant.model_uncertainty_reason}.",
-            model=(refrigerant.model_uncertainty, Kind.TEMPERATURE_DIFFERENCE),
-        )
+    """Say how far the property model itself may be off, where that is worth knowing."""
+    remark = model_remark(conditions.refrigerant)
+    if remark is not None:
+        outcome.notes.append(remark)
+
+
+def model_remark(refrigerant: Refrigerant) -> Remark | None:
+    """Return how far the property model of a refrigerant may be off, from 0.1 K on."""
+    if refrigerant.model_uncertainty < 0.1:
+        return None
+    return Remark(
+        f"The model itself is uncertain by about {{model}}: {refrigerant.model_uncertainty_reason}.",
+        {"model": (refrigerant.model_uncertainty, Kind.TEMPERATURE_DIFFERENCE)},
+    )

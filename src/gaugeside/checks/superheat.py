@@ -25,7 +25,7 @@ class Readings:
 
     suction_pressure: float | None = reading("suction pressure", Kind.PRESSURE, "At the suction gauge.")
     suction_temperature: float | None = reading(
-        "suction pipe", Kind.TEMPERATURE, "Pipe at the evaporator outlet, or at the compressor for total superheat."
+        "suction pipe", Kind.TEMPERATURE, "At the evaporator outlet; at the compressor for total superheat."
     )
     liquid_pressure: float | None = reading("liquid pressure", Kind.PRESSURE, "At the liquid line or receiver gauge.")
     liquid_temperature: float | None = reading(
@@ -49,10 +49,10 @@ class Findings:
 
     superheat: float | None = finding("superheat", Kind.TEMPERATURE_DIFFERENCE, main=True)
     subcooling: float | None = finding("subcooling", Kind.TEMPERATURE_DIFFERENCE, main=True)
-    discharge_superheat: float | None = finding("discharge superheat", Kind.TEMPERATURE_DIFFERENCE)
     saturated_suction_temperature: float | None = finding("saturated suction", Kind.TEMPERATURE)
     saturated_liquid_temperature: float | None = finding("saturated liquid", Kind.TEMPERATURE)
     saturated_discharge_temperature: float | None = finding("saturated discharge", Kind.TEMPERATURE)
+    discharge_superheat: float | None = finding("discharge superheat", Kind.TEMPERATURE_DIFFERENCE)
     pressure_ratio: float | None = finding("pressure ratio", Kind.RATIO)
 
 
@@ -70,7 +70,7 @@ def run(conditions: Conditions, readings: Readings) -> Outcome:
         found.pressure_ratio = readings.discharge_pressure / readings.suction_pressure
         outcome.remark("pressure_ratio", "absolute, at the gauges")
         if found.pressure_ratio < 1:
-            outcome.note("Discharge pressure is below suction pressure: the two may be swapped.")
+            outcome.note("Discharge pressure is below suction: swapped?")
     discharge_cautions(outcome, readings.discharge_temperature, found.pressure_ratio)
     refrigerant_caution(conditions, outcome)
     model_note(conditions, outcome)

@@ -133,6 +133,15 @@ class TableText:
     marked: int | None
 
 
+def footnote(model_uncertainty: float, dress: Dress, site: Site) -> str:
+    """Return the line under every sheet; with how far the property model [K] may be off, where that is said."""
+    if not model_uncertainty:
+        return FOOTNOTE
+    kind = Kind.TEMPERATURE_DIFFERENCE
+    model = write(model_uncertainty, dress.default(kind), kind, site)
+    return FOOTNOTE.replace("from the readings typed", f"(the model alone ±{model})")
+
+
 def table(raw: Table, dress: Dress, site: Site) -> TableText:
     """Return a table of SI numbers in the reader's units; pressures in the reader's sense."""
     units = [_column_unit(kind, dress) for _, kind in raw.columns]

@@ -3,12 +3,15 @@
 from __future__ import annotations
 
 import textwrap
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from typing import Any
 
+from gaugeside.app.charset import is_ascii
 from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, Styled
+from gaugeside.checks.picture import Picture
 from gaugeside.checks.sheet import Answer, Check, Remark
 from gaugeside.checks.view import FindingText, TableText, every_pressure, findings, sentence, table
+from gaugeside.drawing import draw
 from gaugeside.engine import Reply
 from gaugeside.errors import Refusal
 from gaugeside.quantities import Dress, Site
@@ -29,14 +32,19 @@ def answer_of(reply: Reply) -> tuple[Answer | None, Refusal | None]:
         return None, Refusal("The property helper's answer makes no sense.", "Change a reading to try again.")
 
 
-def answer_lines(check: Check, answer: Answer, dress: Dress, site: Site, width: int) -> list[Styled]:
-    """Return findings, cautions, tables and notes, each line with its style."""
+def answer_lines(
+    check: Check, answer: Answer, dress: Dress, site: Site, width: int, standing: Sequence[str] = ()
+) -> list[Styled]:
+    """Return findings, cautions, tables and notes, each line with its style.
+
+    standing: remarks that stand on the screen already.
+    """
     lines: list[Styled] = []
     for found in findings(check, answer, dress, site):
         style = MAIN if found.main else MUTED if found.heading else ""
         lines += [(text, style) for text in finding_lines(found, width)]
     # Cautions stand before the tables: what can hurt somebody is not left below the window's end.
-    lines += _remarks(answer.cautions, dress, site, width, CAUTION)
+    lines += _remarks(answer.cautions, dress, site, width, CAUTION, standing)
     tables = [table(raw, dress, site) for raw in answer.tables]
     pressures = every_pressure(answer, dress, site) if check.name == "saturation" else None
     if pressures is not None:
@@ -45,11 +53,30 @@ def answer_lines(check: Check, answer: Answer, dress: Dress, site: Site, width: 
         # Alone it stands under its title, which says the units.
         lines += [(text, MUTED) for text in textwrap.wrap(tables[0].title, width)]
     lines += [(text, "") for text in side_by_side(tables, width)]
-    return lines + _remarks(answer.notes, dress, site, width, MUTED)
+    return lines + _remarks(answer.notes, dress, site, width, MUTED, standing)
 
 
-def _remarks(remarks: Sequence[Remark], dress: Dress, site: Site, width: int, style: str) -> list[Styled]:
-    texts = [sentence(remark, dress, site) for remark in remarks]
+def picture_lines(plain: Mapping[str, Any] | None, dress: Dress, site: Site, width: int, height: int) -> list[Styled]:
+    """Return the picture that came with an answer as lines; a sentence where there is none."""
+    if plain is None:
+        return [("There is nothing to draw for these readings. Ctrl+G shows the numbers.", MUTED)]
+    drawing = draw(Picture.from_plain(plain), width, height, dress, site, ascii_alone=is_ascii())
+    return [(line, "") for line in drawing.lines()]
+
+
+def refusal_words(check: Check, refusal: Refusal | None) -> str:
+    """Return a refusal with the label of its field before it, empty without one."""
+    if refusal is None:
+        return ""
+    labels = {line.name: line.label for line in check.reading_lines()}
+    field = labels.get(refusal.field or "")
+    return f"{field}: {refusal.sentence()}" if field else refusal.sentence()
+
+
+def _remarks(
+    remarks: Sequence[Remark], dress: Dress, site: Site, width: int, style: str, standing: Sequence[str]
+) -> list[Styled]:
+    texts = [text for remark in remarks if (text := sentence(remark, dress, site)) not in standing]
     return [(line, style) for text in texts for line in textwrap.wrap(text, width, subsequent_indent="  ")]
 
 

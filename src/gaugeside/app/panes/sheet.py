@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import textwrap
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from typing import TYPE_CHECKING, Any, cast
 
 from textual import events, on
@@ -13,15 +13,13 @@ from textual.timer import Timer
 from textual.widget import Widget
 from textual.widgets import Input
 
-from gaugeside.app.charset import is_ascii
-from gaugeside.app.panes.answer_lines import answer_lines, answer_of
+from gaugeside.app.panes.answer_lines import answer_lines, answer_of, picture_lines, refusal_words
 from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
 from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, RULE, Line, Lines, Styled
 from gaugeside.checks.perform import request
-from gaugeside.checks.picture import DRAWN, Picture
+from gaugeside.checks.picture import DRAWN
 from gaugeside.checks.sheet import Answer, Check, Entry, ReadingLine
 from gaugeside.checks.typed import TypedLine, first_choice, read_line, takes
-from gaugeside.drawing import draw
 from gaugeside.engine import Reply
 from gaugeside.errors import Refusal
 from gaugeside.keeping import headline, with_linked_entries
@@ -35,6 +33,11 @@ _SETTLE = 0.7
 # Seconds after which findings of older readings are taken off the screen while an answer is awaited or a unit is
 # half typed; at once would paint the sheet twice for every unit.
 _PATIENCE = 0.3
+# Seconds after that in which a unit may still be half typed.
+_HALF_TYPED = 1.7
+# In the rule over the findings while a reading is half typed: to take them away and paint them again at the end of
+# every unit would cost a slow line more than all else.
+_BEFORE = f"-- STILL OF THE READINGS BEFORE {RULE}"
 
 
 class SheetPane(VerticalScroll, can_focus=False):
@@ -54,7 +57,9 @@ class SheetPane(VerticalScroll, can_focus=False):
                 if isinstance(known, dict):
                     self.units[str(name)] = {str(kind): str(label) for kind, label in known.items()}
         self._lines: dict[str, FieldLine] = {}
+        self._rule = Line(RULE, MUTED, classes="rule")
         self._findings = Lines(id="findings")
+        self._has_findings = False
         self.typed: dict[str, TypedLine] = {}
         self.answer: Answer | None = None
         self.refusal: Refusal | None = None
@@ -84,7 +89,7 @@ class SheetPane(VerticalScroll, can_focus=False):
                 field = TextField(text, id=line.name)
             self._lines[line.name] = FieldLine(line.name, line.label, field)
             yield self._lines[line.name]
-        yield Line(RULE, MUTED, classes="rule")
+        yield self._rule
         yield self._findings
 
     def on_mount(self) -> None:
@@ -120,7 +125,7 @@ class SheetPane(VerticalScroll, can_focus=False):
                     line.field.value = text
                     line.field.cursor_position = len(text)
             self.units.pop(name, None)
-        self._findings.show([])
+        self._show([])
         self.read_all()
 
     def clear(self) -> None:
@@ -201,6 +206,8 @@ class SheetPane(VerticalScroll, can_focus=False):
         """A field is left: its unit is settled, what was said has been read."""
         self.house.word_stays = False
         self.settle_units()
+        if self._rule.text == _BEFORE:
+            self._show_without_answer()
 
     def on_descendant_focus(self, event: events.DescendantFocus) -> None:
         """A field is entered: say what belongs in it."""
@@ -228,8 +235,11 @@ class SheetPane(VerticalScroll, can_focus=False):
             )
             if self.refusal is None or not self._is_being_typed(self.refusal.field):
                 self._show_without_answer()
-            elif self._patience is None:
-                self._patience = self.set_timer(_PATIENCE, self._out_of_patience)
+            else:
+                if self._has_findings and not self.has_class("-picture"):
+                    self._rule.say(_BEFORE, MUTED)
+                if self._patience is None:
+                    self._patience = self.set_timer(_PATIENCE, self._out_of_patience)
             return
         if any(isinstance(value, Mapping) and "entry" in value for value in values.values()):
             self._link(values)
@@ -285,25 +295,30 @@ class SheetPane(VerticalScroll, can_focus=False):
         self._patience = None
         if self._asked:
             self._show_nothing(self.house.engine_word or "Working.", "")
+        elif self._rule.text == _BEFORE and not self._long_refusal():
+            self.say_word()
+            self._patience = self.set_timer(_HALF_TYPED, self._no_longer_half_typed)
         elif self.answer is None:
+            self._show_without_answer()
+
+    def _no_longer_half_typed(self) -> None:
+        self._patience = None
+        if self._rule.text == _BEFORE:
             self._show_without_answer()
 
     def _show_nothing(self, *words: str) -> None:
         width = self._width
         lines = [(text, MUTED) for word in words for text in textwrap.wrap(word, width)]
-        self._findings.show([*self._long_refusal(), *lines])
+        self._show([*self._long_refusal(), *lines])
 
-    def _refusal_words(self) -> str:
-        """Return the refusal with the label of its field before it, empty without one."""
-        if self.refusal is None:
-            return ""
-        labels = {line.name: line.label for line in self.check.reading_lines()}
-        field = labels.get(self.refusal.field or "")
-        return f"{field}: {self.refusal.sentence()}" if field else self.refusal.sentence()
+    def _show(self, lines: Sequence[Styled], *, has_findings: bool = False) -> None:
+        self._has_findings = has_findings
+        self._rule.say(RULE, MUTED)
+        self._findings.show(lines)
 
     def _long_refusal(self) -> list[Styled]:
         """Return the refusal whole where the two lines under the sheet cannot hold it."""
-        lines = textwrap.wrap(self._refusal_words(), self._width)
+        lines = textwrap.wrap(refusal_words(self.check, self.refusal), self._width)
         return [(line, CAUTION) for line in lines] if len(lines) > 2 else []
 
     @property
@@ -331,21 +346,19 @@ class SheetPane(VerticalScroll, can_focus=False):
         house, lines = self.house, list[Styled]()
         if self.answer is not None:
             if self.has_class("-picture"):
-                lines = self._picture_lines()
+                # The field being typed in and three lines of the legend stay in sight.
+                height = max(8, self.size.height - 4)
+                lines = picture_lines(self._picture, house.dress, house.site, self._width + 1, height)
             else:
-                lines = answer_lines(self.check, self.answer, house.dress, house.site, self._width)
-        self._findings.show([*self._long_refusal(), *lines])
+                lines = answer_lines(
+                    self.check, self.answer, house.dress, house.site, self._width, house.stands_already()
+                )
+        self._show([*self._long_refusal(), *lines], has_findings=self.answer is not None)
 
-    def _picture_lines(self) -> list[Styled]:
-        """Draw what the helper sent; the field being typed in and three lines of the legend stay in sight."""
-        if self._picture is None:
-            return [("There is nothing to draw for these readings. Ctrl+G shows the numbers.", MUTED)]
-        house = self.house
-        height = max(8, self.size.height - 4)
-        drawing = draw(
-            Picture.from_plain(self._picture), self._width + 1, height, house.dress, house.site, ascii_alone=is_ascii()
-        )
-        return [(line, "") for line in drawing.lines()]
+    def lay_out(self) -> None:
+        """Show the answer anew, as after a change of the window's size."""
+        if self.answer is not None:
+            self._show_answer()
 
     def turn_picture(self) -> None:
         """Show the picture in place of form and numbers, or the other way round."""
@@ -361,20 +374,17 @@ class SheetPane(VerticalScroll, can_focus=False):
         if not self.display:
             return
         if self.refusal is not None:
-            self.house.say(self._refusal_words(), CAUTION)
+            self.house.say(refusal_words(self.check, self.refusal), CAUTION)
             return
         focused = self.screen.focused
         line = next(
             (line for line in self.check.reading_lines() if focused is not None and line.name == focused.id), None
         )
-        # Where the field is filled and answered its help gives way to the word that stands under every answer.
-        done = line is None or (self.answer is not None and self._lines[line.name].field.value.strip())
-        if line is not None and not done:
-            self.house.say(f"{line.label}: {line.help}", MUTED)
-        elif self.answer is not None and self._findings_out_of_sight():
+        filled = line is None or bool(self._lines[line.name].field.value.strip())
+        if filled and self.answer is not None and self._findings_out_of_sight():
             self.house.say(headline(self.check, self.answer, self.house.dress, self.house.site), MAIN)
         else:
-            self.house.say("", MUTED)
+            self.house.say(f"{line.label}: {line.help}" if line is not None else "", MUTED)
 
     def _findings_out_of_sight(self) -> bool:
         """Whether the form is so long that what it tells stands below the window."""
