@@ -17,7 +17,9 @@ import pytest
 from app.sheets import sheet
 from gaugeside.checks import CHECKS
 from gaugeside.cli import main
-from gaugeside.logbook import Entry, Logbook, LogbookTrouble
+from gaugeside.errors import Refusal
+from gaugeside.logbook import Entry, Logbook, LogbookTrouble, schema
+from gaugeside.logbook.entry import UNREADABLE
 from terminal.harness import Terminal, app_command
 from unit.hostile import EVIL, HOSTILE, TOML_FILES, obeyed
 
@@ -134,6 +136,51 @@ def test_rows_of_another_hand_are_shown_harmless(book: Logbook, capfd: pytest.Ca
     for number in (2, 3, 4):
         book.restore(book.delete(number))
     assert book.keep(replace(ENTRY, note="mine")).entry.number == 2**63 - 1
+
+
+@pytest.mark.parametrize("column", COLUMNS)
+def test_a_value_too_large_to_read_is_left_out_and_the_rest_is_there(
+    column: str, book: Logbook, capfd: pytest.CaptureFixture[str], monkeypatch: pytest.MonkeyPatch
+) -> None:
+    for note in ("first round", "second round"):
+        book.keep(replace(ENTRY, tag="rack 2", note=note))
+    before = book.entries()
+    monkeypatch.setattr(schema, "LARGEST_VALUE", 100_000)
+    with closing(sqlite3.connect(book.path)) as connection, connection:
+        connection.execute(f"UPDATE entries SET {column} = ? WHERE number = 2", ["x" * 150_000])
+    found = {entry.number: entry for entry in book.entries()}
+    assert book.count() == len(found) == 3
+    assert [found[3], found[1]] == [before[0], before[2]]
+    # What search and likeness hold is not shown, so nothing of the entry is missing without them.
+    assert (UNREADABLE in found[2].cautions) == (column not in ("likeness", "search"))
+    assert replace(found[2], **{"cautions": [], **whole(before[1], column)}) == before[1]
+    assert book.entry(2) == found[2]
+    assert [entry.number for entry in book.entries(limit=1, offset=1)] == [3 if column == "kept_at" else 2]
+    assert {entry.number for entry in book.entries("rack round")} == {2, 3}
+    assert (book.count("rack round"), book.count("rack second")) == (2, 1)
+    assert main(["logbook", "list"]) == 0
+    assert main(["logbook", "show", "2"]) == 0
+    assert (UNREADABLE in capfd.readouterr().out) == (column not in ("likeness", "search"))
+    assert book.keep(replace(ENTRY, note="mine")).entry.number == 4
+
+
+def whole(entry: Entry, column: str) -> dict[str, Any]:
+    """Return what an entry has of the one column, under the name of its part."""
+    name = {"check_name": "check", "si_values": "values"}.get(column, column)
+    return {name: getattr(entry, name)} if hasattr(entry, name) else {}
+
+
+@pytest.mark.parametrize("column", ["note", "headline", "kept_at"])
+def test_what_is_too_large_to_read_is_not_lost_by_a_change(
+    column: str, book: Logbook, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    monkeypatch.setattr(schema, "LARGEST_VALUE", 100_000)
+    with closing(sqlite3.connect(book.path)) as connection, connection:
+        connection.execute(f"UPDATE entries SET {column} = ?", ["x" * 150_000])
+    before = book.path.read_bytes()
+    with pytest.raises(Refusal, match="Entry 1 cannot be changed: a part of it is larger"):
+        book.change(1, tag="rack 2", note=book.entry(1).note)
+    assert book.path.read_bytes() == before
 
 
 # The screen

@@ -20,13 +20,13 @@ from pathlib import Path
 
 from gaugeside.errors import Refusal
 from gaugeside.logbook import damage
-from gaugeside.logbook.entry import COLUMNS, Entry, cleaned, from_row, search_text, to_row
+from gaugeside.logbook.entry import COLUMNS, Entry, cleaned, from_row, to_row
+from gaugeside.logbook.filter import condition, one_by_one
 from gaugeside.logbook.schema import INSERT, LARGEST_VALUE, NEWEST_FIRST, SELECT, begin, guard, is_begun, read_row
 from gaugeside.logbook.trouble import LogbookTrouble, NoSuchEntry, no_locks, trouble_from
-from gaugeside.settings import make_private_folder, plain_text, reason
+from gaugeside.settings import make_private_folder, reason
 
 SAME_WITHIN = timedelta(minutes=10)
-MOST_WORDS = 20
 READ_AT_ONCE = 50
 LARGEST_NUMBER = 2**63 - 1
 _TOO_LARGE = f"a part of it is larger than {LARGEST_VALUE // 1_000_000} MB"
@@ -86,7 +86,7 @@ class Logbook:
 
     def entries(self, filter_text: str = "", limit: int = 200, offset: int = 0) -> list[Entry]:
         """Return entries, newest first, that contain every word of `filter_text` in any case."""
-        where, words = _condition(filter_text)
+        where, words = condition(filter_text)
         asked = SELECT + where + NEWEST_FIRST + " LIMIT ? OFFSET ?"
         with self._reading() as connection:
             if connection is None:
@@ -96,18 +96,18 @@ class Logbook:
                 # Row by row: a hundred rows of another hand's text need not be in memory at once.
                 return [from_row(row) for row in connection.execute(asked, [*words, most, offset])]
             except sqlite3.DataError:
-                return list(islice(_one_by_one(connection, where, words), offset, min(offset + most, sys.maxsize)))
+                return list(islice(one_by_one(connection, words), offset, min(offset + most, sys.maxsize)))
 
     def count(self, filter_text: str = "") -> int:
         """Return how many entries contain every word of `filter_text`."""
-        where, words = _condition(filter_text)
+        where, words = condition(filter_text)
         with self._reading() as connection:
             if connection is None:
                 return 0
             try:
                 return int(connection.execute("SELECT count(*) FROM entries" + where, words).fetchone()[0])
             except sqlite3.DataError:
-                return sum(1 for _ in _one_by_one(connection, where, words))
+                return sum(1 for _ in one_by_one(connection, words))
 
     def entry(self, number: int) -> Entry:
         """Return one entry; raises NoSuchEntry when there is none of that number."""
@@ -165,7 +165,7 @@ class Logbook:
 
     def oldest_first(self, filter_text: str = "") -> OldestFirst:
         """Return the entries that contain every word of `filter_text` in any case, oldest first, as often as asked."""
-        where, words = _condition(filter_text)
+        where, words = condition(filter_text)
         with self._reading() as connection:
             if connection is None:
                 return OldestFirst(self, [])
@@ -173,7 +173,7 @@ class Logbook:
                 query = "SELECT number FROM entries" + where + " ORDER BY kept_at, number"
                 return OldestFirst(self, [number for (number,) in connection.execute(query, words)])
             except sqlite3.DataError:
-                newest_first = [entry.number for entry in _one_by_one(connection, words) if entry.number is not None]
+                newest_first = [entry.number for entry in one_by_one(connection, words) if entry.number is not None]
                 return OldestFirst(self, newest_first[::-1])
 
     def numbered(self, numbers: Sequence[int]) -> list[Entry]:
@@ -366,34 +366,11 @@ def _create_private_file(path: Path) -> None:
         os.unlink(temporary)
 
 
-def _condition(filter_text: str) -> tuple[str, list[str]]:
-    words = plain_text(filter_text, 500).casefold().split()[:MOST_WORDS]
-    return (" WHERE " + " AND ".join(["instr(search, ?) > 0"] * len(words)) if words else ""), words
-
-
 def _one(connection: sqlite3.Connection, number: int) -> Entry:
     row = read_row(connection, number) if 0 <= number <= LARGEST_NUMBER else None
     if row is None:
         raise NoSuchEntry(number)
     return from_row(row)
-
-
-def _one_by_one(connection: sqlite3.Connection, where: str, words: list[str]) -> Iterator[Entry]:
-    """Yield the entries with these words, newest first, of a file with a value too large for one question to all."""
-    for (number,) in connection.execute("SELECT number FROM entries" + NEWEST_FIRST):
-        row = read_row(connection, number)
-        entry = None if row is None else from_row(row)
-        if entry is not None and (not words or _has(connection, number, entry, where, words)):
-            yield entry
-
-
-def _has(connection: sqlite3.Connection, number: int, entry: Entry, where: str, words: list[str]) -> bool:
-    try:
-        query = f"SELECT 1 FROM entries{where} AND number = ?"
-        return connection.execute(query, [*words, number]).fetchone() is not None
-    except sqlite3.DataError:
-        searched = search_text(entry)
-        return all(word in searched for word in words)
 
 
 def _number_of(connection: sqlite3.Connection, entry: Entry) -> int | None:
