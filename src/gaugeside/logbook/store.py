@@ -77,12 +77,15 @@ class Logbook:
         entry = replace(cleaned(entry), number=None)
         self._set_damaged_aside()
         try:
-            return self._keep(entry)
+            kept = self._keep(entry)
         except LogbookTrouble as trouble:
             if trouble.kind != "damaged":
                 raise
-        self._set_damaged_aside()
-        return self._keep(entry)
+            self._set_damaged_aside()
+            kept = self._keep(entry)
+        # Whoever reads what became of the damaged one need not look elsewhere for what became of this entry.
+        self.messages[:] = [f"{message} Kept there as entry {kept.entry.number}." for message in self.messages]
+        return kept
 
     def entries(self, filter_text: str = "", limit: int = 200, offset: int = 0) -> list[Entry]:
         """Return entries, newest first, that contain every word of `filter_text` in any case."""
@@ -337,13 +340,14 @@ class Logbook:
         aside = damage.set_aside(self.path, seen, self._busy_seconds)
         if aside is None:
             return
-        self.messages.append(f"The logbook was damaged and is set aside untouched as {aside}; a new one is begun.")
+        where = f"Damaged logbook set aside untouched as {aside.name};"
+        self.messages.append(f"{where} a new one is begun.")
         saved = damage.readable_entries(aside)
         if saved:
             with self._writing() as connection:
                 insert = INSERT.replace("INSERT", "INSERT OR IGNORE", 1)
                 added = connection.executemany(insert, [to_row(cleaned(entry)) for entry in saved]).rowcount
-            self.messages.append(f"{added} of its entries could be read and are in the new logbook.")
+            self.messages[-1] = f"{where} {added} entries read from it are in a new one."
 
 
 def _create_private_file(path: Path) -> None:
