@@ -346,7 +346,9 @@ def test_a_garbage_file_is_set_aside_by_the_next_keep(path: Path) -> None:
     assert book.keep(entry("after")).entry.number == 1
     (aside,) = path.parent.glob("logbook-damaged-*.sqlite3")
     assert aside.read_bytes() == b"these are not the readings" * 400
-    assert book.messages == [f"The logbook was damaged and is set aside untouched as {aside}; a new one is begun."]
+    assert book.messages == [
+        f"Damaged logbook set aside untouched as {aside.name}; a new one is begun. Kept there as entry 1."
+    ]
     assert [found.note for found in Logbook(path).entries()] == ["after"]
 
 
@@ -395,9 +397,10 @@ def test_what_a_truncated_file_still_holds_is_carried_over(path: Path) -> None:
         book.entries()
     assert trouble.value.kind == "damaged"
     fresh = book.keep(entry("after")).entry
-    assert len(book.messages) == 2
     found = {kept.number: kept.note for kept in book.entries(limit=-1)}
     assert found.pop(fresh.number) == "after"
+    (message,) = book.messages
+    assert f"{len(found)} entries read from it" in message
     assert len(found) >= 30
     assert all(number and note == f"{number - 1} " + "n" * 600 for number, note in found.items())
 
