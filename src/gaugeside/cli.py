@@ -110,6 +110,19 @@ def _print(text: str, stream: Any = None) -> None:
     print(text if _has_unicode(stream) else ascii_only(text), file=stream)
 
 
+def _tell(text: str) -> None:
+    _print(text, sys.stderr)
+
+
+def _row_printer(arguments: argparse.Namespace) -> Callable[[str], None]:
+    """Return what prints the lines of a table, whose cells are plain already and whose delimiter may be a tab."""
+    from gaugeside.checks.view import ascii_only
+
+    ascii_alone = arguments.ascii or not _has_unicode(sys.stdout)
+    # Whoever follows a growing table reads each row when it is answered.
+    return lambda line: print(ascii_only(line) if ascii_alone else line, flush=True)
+
+
 def _print_ascii(text: str) -> None:
     from gaugeside.checks.view import ascii_only
 
@@ -164,6 +177,7 @@ def _parser() -> argparse.ArgumentParser:
     refrigerants.add_argument("--json", action="store_true", help="the same as JSON")
     refrigerants.set_defaults(run=_refrigerants)
     _add_table(commands)
+    _add_batch(commands)
     _add_logbook(commands)
     return parser
 
@@ -184,6 +198,9 @@ EXAMPLES = {
         "--liquid-temperature '32 C' --electrical-power '6.2 kW' --drive hermetic",
     ),
     "convert": ("convert '12.4 bar g'",),
+    "batch": ("batch superheat R-134a readings.csv --to superheats.csv",),
+    "logbook export": ("logbook export --to logbook.json",),
+    "logbook import": ("logbook import logbook.json",),
 }
 
 
@@ -248,16 +265,65 @@ def _add_table(commands: Any) -> None:
     command.set_defaults(run=_table)
 
 
+def _add_batch(commands: Any) -> None:
+    from gaugeside.checks import CHECKS
+
+    summary = "one check on every row of a table of readings"
+    command = commands.add_parser("batch", help=summary, **_with_example("batch"), description=_BATCH)
+    checks = command.add_subparsers(title="checks", metavar="CHECK", required=True)
+    for check in CHECKS.values():
+        rows = checks.add_parser(check.name, help=_plain(check.summary), description=_BATCH)
+        words = [line for line in check.reading_lines() if line.positional and not line.kinds]
+        for line in (line for line in words if line.choices):
+            rows.add_argument(line.name, nargs="?", help=_plain(f"{line.help} Unless a column says it."))
+        if check.needs_refrigerant:
+            rows.add_argument("refrigerant", help="designation or common name: R-134a, 134a, CO2")
+        for line in (line for line in words if not line.choices):
+            rows.add_argument(line.name, nargs="?", help=_plain(f"{line.help} Unless a column says it."))
+        rows.add_argument("file", metavar="FILE", help="a table with a header, as CSV; - for standard input")
+        _add_target(rows)
+        _add_common(rows)
+        rows.add_argument("--datum", choices=("iir", "ashrae", "nbp"), help="zero of the enthalpies")
+        rows.add_argument("--tag", default=None, help="which machine, for its compressor's polynomials")
+        rows.set_defaults(run=_batch, check=check)
+
+
+_BATCH = (
+    "The first line names the columns after the readings, with the unit of their bare numbers in brackets: "
+    "suction pressure [psig]. The answer has the same columns, then one for each finding, then cautions and refused. "
+    "A text that a spreadsheet would run as a formula gets an apostrophe before it."
+)
+_EXPORT = (
+    "Oldest first, as JSON, which gaugeside logbook import takes in again, or as CSV for a spreadsheet. In the CSV a "
+    "text that a spreadsheet would run as a formula gets an apostrophe before it."
+)
+
+
+def _add_target(command: argparse.ArgumentParser) -> None:
+    command.add_argument("--to", metavar="FILE", help="write into this file, whole or not at all, for you alone")
+    command.add_argument("--replace", action="store_true", help="replace the file when it is there already")
+
+
 def _add_logbook(commands: Any) -> None:
-    command = commands.add_parser("logbook", help="what was kept")
+    command = commands.add_parser("logbook", help="what was kept, out and in")
     actions = command.add_subparsers(title="actions", metavar="ACTION", required=True)
     listing = actions.add_parser("list", help="entries, newest first")
     listing.add_argument("words", nargs="*", help="only entries that hold all these words")
     listing.add_argument("--most", type=int, default=200, help="how many at the most (200)")
     showing = actions.add_parser("show", help="one entry whole")
     showing.add_argument("number", type=int, help="of the entry, as the list shows it")
-    for action, run in ((listing, _logbook_list), (showing, _logbook_show)):
+    export = actions.add_parser(
+        "export", help="entries into a file or a pipe", description=_EXPORT, **_with_example("logbook export")
+    )
+    export.add_argument("words", nargs="*", help="only entries that hold all these words")
+    export.add_argument("--csv", action="store_true", help="comma-separated values, which cannot be taken in again")
+    _add_target(export)
+    taking = actions.add_parser("import", help="entries that export wrote", **_with_example("logbook import"))
+    taking.add_argument("file", metavar="FILE", help="JSON that export wrote; - for standard input")
+    for action in (listing, showing, taking):
         action.add_argument("--json", action="store_true", help="the same as JSON")
+    runs = (listing, _logbook_list), (showing, _logbook_show), (export, _logbook_export), (taking, _logbook_import)
+    for action, run in runs:
         action.add_argument("--logbook", type=Path, metavar="PATH", default=argparse.SUPPRESS, help=argparse.SUPPRESS)
         action.set_defaults(run=run)
 
@@ -314,3 +380,21 @@ def _logbook_show(arguments: argparse.Namespace) -> int:
     from gaugeside.listings import show_entry
 
     return show_entry(arguments, _printer(arguments))
+
+
+def _logbook_export(arguments: argparse.Namespace) -> int:
+    from gaugeside.listings import export_logbook
+
+    return export_logbook(arguments, _row_printer(arguments))
+
+
+def _logbook_import(arguments: argparse.Namespace) -> int:
+    from gaugeside.listings import import_logbook
+
+    return import_logbook(arguments, _printer(arguments), _tell)
+
+
+def _batch(arguments: argparse.Namespace) -> int:
+    from gaugeside.batch import run_batch
+
+    return run_batch(arguments, _row_printer(arguments), _tell)

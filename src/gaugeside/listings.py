@@ -1,15 +1,19 @@
-"""The commands that list: refrigerants of the catalogue, entries of the logbook."""
+"""The commands that list, and that carry lists out and in: refrigerants of the catalogue, entries of the logbook."""
 
 from __future__ import annotations
 
 import json
+import os
 from argparse import Namespace
 from collections.abc import Callable
 from typing import Any
 
+from gaugeside.errors import Refusal
+from gaugeside.files import STANDARD, content, written_whole
 from gaugeside.logbook import Entry as LogbookEntry
 from gaugeside.logbook import Logbook
-from gaugeside.logbook.exchange import entry_json
+from gaugeside.logbook.exchange import LARGEST, csv_lines, entry_json, json_lines, read_document
+from gaugeside.logbook.links import linked_first, relinked
 from gaugeside.refrigerants import find, load_own, search
 from gaugeside.settings import places
 
@@ -91,3 +95,49 @@ def entry_line(entry: LogbookEntry) -> str:
     when = entry.kept_at.astimezone().strftime("%Y-%m-%d %H:%M")
     parts = (f"{entry.number:>4}", when, entry.check, entry.refrigerant, entry.tag, entry.headline, entry.note)
     return "  ".join(part for part in parts if part)
+
+
+def export_logbook(arguments: Namespace, put: Printer) -> int:
+    """Put the logbook's entries, oldest first, out as JSON or CSV: to `put` line by line, or into a file."""
+    logbook = Logbook(places(logbook=arguments.logbook).logbook_file)
+    if arguments.to not in (None, STANDARD) and _is_same(arguments.to, logbook):
+        raise Refusal("That file is the logbook itself.", "Name another file behind --to.")
+    entries = logbook.oldest_first(" ".join(arguments.words))
+    lines = csv_lines(lambda: entries) if arguments.csv else json_lines(entries)
+    if arguments.to in (None, STANDARD):
+        for line in lines:
+            put(line)
+        return 0
+    with written_whole(arguments.to, arguments.replace) as file:
+        for line in lines:
+            file.write(f"{line}\n".encode())
+    return 0
+
+
+def _is_same(name: str, logbook: Logbook) -> bool:
+    try:
+        return os.path.samefile(name, logbook.path)
+    except (OSError, ValueError):
+        return False
+
+
+def import_logbook(arguments: Namespace, say: Printer, tell: Printer) -> int:
+    """Take in the entries that a file holds; return 0 when none was refused, else 2.
+
+    say: takes the answer. tell: takes the reasons of those refused.
+    """
+    document = read_document(content(arguments.file, LARGEST))
+    logbook = Logbook(places(logbook=arguments.logbook).logbook_file)
+    taken = logbook.take(linked_first(document.entries), relinked) if document.entries else 0
+    already = len(document.entries) - taken
+    if arguments.json:
+        counts = {"taken": taken, "already": already, "refused": document.refused}
+        say(json.dumps({**counts, "reasons": document.reasons, "notes": logbook.messages}))
+    else:
+        for words in (*logbook.messages, *document.reasons):
+            tell(words[:1].upper() + words[1:])
+        if document.refused > len(document.reasons):
+            tell(f"And {document.refused - len(document.reasons)} more.")
+        entries = "entry" if taken == 1 else "entries"
+        say(f"{taken} {entries} taken, {already} were there already, {document.refused} refused.")
+    return 2 if document.refused else 0

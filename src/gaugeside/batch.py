@@ -1,0 +1,273 @@
+"""`gaugeside batch`: one check on every row of a table of readings, answered row by row."""
+
+from __future__ import annotations
+
+import csv
+import io
+import json
+import os
+from argparse import Namespace
+from collections.abc import Callable, Iterator, Sequence
+from contextlib import nullcontext
+from dataclasses import dataclass, field
+from typing import Any, BinaryIO
+
+from gaugeside.answering import Terms, answer_json, answered, terms
+from gaugeside.checks.sheet import Answer, Check, Entry, FindingLine
+from gaugeside.checks.typed import TypedLine, read_line
+from gaugeside.checks.view import FOOTNOTE, sentence, site_line
+from gaugeside.columns import Header, fitted, parsed, read_header
+from gaugeside.errors import Refusal
+from gaugeside.files import STANDARD, Lines, cell, opened, written_whole
+from gaugeside.logbook import Logbook
+from gaugeside.quantities import Kind, Sense, Unit, with_sense, write
+from gaugeside.refrigerants import find
+from gaugeside.settings import plain_text
+
+Printer = Callable[[str], None]
+LONGEST_LINE = 60_000  # [bytes]
+MOST_NAMED = 10  # columns, notes
+_LAST = ("cautions", "refused")
+
+
+def run_batch(arguments: Namespace, put: Printer, tell: Printer) -> int:
+    """Answer every row of a table of readings; return 0 when none was refused, else 2.
+
+    put: takes each line of the answer. tell: takes each sentence about it.
+    """
+    check: Check = arguments.check
+    under = terms(check, arguments)
+    _open_refrigerant(check, under)
+    words = _words(check, arguments, under)
+    target = None if arguments.to in (None, STANDARD) else arguments.to
+    with opened(arguments.file) as file:
+        _refuse_same(file, target)
+        lines = Lines(file, arguments.file, LONGEST_LINE)
+        numbered = enumerate(lines, 1)
+        header = read_header(check, _first(numbered), words, under.dress, under.site)
+        batch = _Batch(header, under, Logbook(under.home.logbook_file), tell)
+        with nullcontext() if target is None else written_whole(target, arguments.replace) as out:
+            if out is not None:
+                put = _into(out, lines.marked and not arguments.json)
+            for line in batch.json_lines(numbered) if arguments.json else batch.csv_lines(numbered):
+                put(line)
+        batch.say_the_end(lines.windows)
+    return 2 if batch.refused else 0
+
+
+def _open_refrigerant(check: Check, under: Terms) -> None:
+    """Raise Refusal where no row at all could be answered for this refrigerant."""
+    if check.needs_refrigerant:
+        # Imported here: it brings the property library.
+        from gaugeside.refrigerants import Datum, open_fluid
+
+        try:
+            open_fluid(find(under.refrigerant), Datum(under.settings.datum))
+        except Refusal as refusal:
+            raise refusal.about("refrigerant") from None
+
+
+def _words(check: Check, arguments: Namespace, under: Terms) -> dict[str, str]:
+    """Return the readings that the command line says for every row; Refusal for one that is not understood."""
+    found = {}
+    for line in check.reading_lines():
+        text = getattr(arguments, line.name, None) if line.positional and line.entry is not Entry.EITHER else None
+        if text is not None:
+            refusal = read_line(line, text, {}, under.dress, under.site).refusal
+            if refusal is not None:
+                raise refusal
+            found[line.name] = text
+    return found
+
+
+def _refuse_same(file: BinaryIO, target: str | None) -> None:
+    try:
+        same = target is not None and os.path.samestat(os.fstat(file.fileno()), os.stat(target))
+    except (OSError, ValueError):
+        return
+    if same:
+        raise Refusal("The answer would replace the readings it comes from.", "Name another file behind --to.")
+
+
+def _first(numbered: Iterator[tuple[int, str | Refusal]]) -> str:
+    """Return the header: the first line that is not empty."""
+    for _, line in numbered:
+        if isinstance(line, Refusal):
+            raise Refusal(f"The header cannot be read: {line.message}", line.hint)
+        if line.strip():
+            return line
+    raise Refusal("The table is empty.", "Its first line names the columns.")
+
+
+def _into(out: BinaryIO, marked: bool) -> Printer:
+    """Return what writes lines into a file as UTF-8, with a byte order mark where the readings had one."""
+    if marked:
+        out.write(b"\xef\xbb\xbf")
+    return lambda line: (out.write(f"{line}\n".encode()), None)[1]
+
+
+@dataclass
+class _Row:
+    """One row: its cells as they stand, what was understood, and the answer or why there is none."""
+
+    number: int
+    cells: Sequence[str] = ()
+    typed: dict[str, TypedLine] = field(default_factory=dict)
+    answer: Answer | None = None
+    refusal: Refusal | None = None
+
+
+class _Batch:
+    """The rows under one header; nothing of a row is kept when the next one is read."""
+
+    def __init__(self, header: Header, under: Terms, logbook: Logbook, tell: Printer) -> None:
+        self.refused = 0
+        self._answered = 0
+        self._header = header
+        self._under = under
+        self._logbook = logbook
+        self._tell = tell
+        self._told: set[str] = set()
+        self._say_the_beginning()
+
+    def _say_the_beginning(self) -> None:
+        settings = self._under.settings
+        for trouble in self._under.troubles:
+            self._tell(f"Note: {trouble}")
+        self._tell(
+            f"Note: site {site_line(self._under.site)}; units {settings.dress.upper()}, a pressure without gauge or "
+            f"absolute is taken for {settings.bare_pressure}; datum of enthalpies {settings.datum.upper()}. {FOOTNOTE}"
+        )
+        for words in self._header.said:
+            self._tell(words)
+        carried = self._header.carried
+        if carried:
+            more = f" and {len(carried) - MOST_NAMED} more" if len(carried) > MOST_NAMED else ""
+            self._tell(f"Not read, only carried along: {', '.join(carried[:MOST_NAMED])}{more}.")
+
+    def say_the_end(self, windows: bool) -> None:
+        """Say how many rows there were, and how their text was read."""
+        if windows:
+            self._tell("The file is not UTF-8 throughout; the rest was read as Windows-1252.")
+        rows = self._answered + self.refused
+        self._tell(f"{rows} {'row' if rows == 1 else 'rows'}: {self._answered} answered, {self.refused} refused.")
+
+    def _rows(self, numbered: Iterator[tuple[int, str | Refusal]]) -> Iterator[_Row]:
+        for number, line in numbered:
+            row = _Row(number)
+            try:
+                if isinstance(line, Refusal):
+                    raise line
+                if not line.strip():
+                    continue
+                row.cells = parsed(line, self._header.delimiter)
+                if not any(text.strip() for text in row.cells):
+                    continue
+                row.cells = fitted(self._header, row.cells)
+                self._answer(row)
+            except Refusal as refusal:
+                row.refusal = refusal
+            self.refused += row.answer is None
+            self._answered += row.answer is not None
+            yield row
+
+    def _answer(self, row: _Row) -> None:
+        dress, site = self._under.dress, self._under.site
+        row.typed = self._header.read(self._header.texts(row.cells), dress, site)
+        try:
+            row.answer, _ = answered(self._header.check, row.typed, self._under, self._logbook)
+        except Refusal:
+            raise
+        except Exception as fault:
+            # The rows behind it are not to go down with one on which the program fails.
+            words = f"The program met a fault on these readings ({type(fault).__name__})."
+            raise Refusal(words, "The other rows are answered all the same.") from fault
+        for name, words in self._header.assumed(row.typed, dress).items():
+            self._tell_once(name, words)
+        for remark in row.answer.notes:
+            self._tell_once(remark.text, f"Note, first in row {row.number}: {sentence(remark, dress, site)}")
+
+    def _tell_once(self, what: str, words: str) -> None:
+        if what not in self._told and len(self._told) < MOST_NAMED + len(self._header.columns):
+            self._told.add(what)
+            self._tell(words)
+
+    def csv_lines(self, numbered: Iterator[tuple[int, str | Refusal]]) -> Iterator[str]:
+        """Yield the lines of the answer as a table: the columns that came, the findings, cautions and refusals."""
+        columns = self._finding_columns()
+        headings = [*self._header.names, *(heading for _, _, heading in columns), *_LAST]
+        yield self._csv_line([cell(name) for name in headings])
+        for row in self._rows(numbered):
+            cells = [self._carried(row, place) for place in range(len(self._header.names))]
+            cells += [self._found(row.answer, line, to) for line, to, _ in columns]
+            cautions = row.answer.cautions if row.answer is not None else ()
+            cells.append(cell(" ".join(sentence(one, self._under.dress, self._under.site) for one in cautions)))
+            yield self._csv_line([*cells, cell(_told(row.refusal))])
+
+    def _finding_columns(self) -> list[tuple[FindingLine, Unit | None, str]]:
+        """Return every finding with the unit and the heading of its column."""
+        there = {name.strip() for name in self._header.names}
+        for name in _LAST:
+            if name in there:
+                raise Refusal(f"The answer has a column {name} of its own.", "Give yours another name.")
+        columns = []
+        for line in self._header.check.finding_lines():
+            to = self._unit(line.kind)
+            unit = f" [{to.label}]" if to is not None and to.label else ""
+            heading = f"{line.name.replace('_', ' ')}{unit}"
+            if heading in there:
+                heading = f"{line.name.replace('_', ' ')} found{unit}"
+            if heading in there:
+                raise Refusal(f"The answer has a column {heading} of its own.", "Give yours another name.")
+            columns.append((line, to, heading))
+        return columns
+
+    def _unit(self, kind: Kind) -> Unit | None:
+        if kind is Kind.WORDS:
+            return None
+        unit = self._under.dress.unit(kind)
+        return with_sense(unit, Sense.ABSOLUTE) if kind is Kind.PRESSURE else unit
+
+    def _found(self, answer: Answer | None, line: FindingLine, to: Unit | None) -> str:
+        value = None if answer is None else answer.findings.get(line.name)
+        if value is None:
+            return ""
+        if to is None or isinstance(value, str):
+            return cell(str(value))
+        text = write(value, to, line.kind, self._under.site)
+        return text.removesuffix(to.label).strip().removesuffix("-")
+
+    def _carried(self, row: _Row, place: int) -> str:
+        text = row.cells[place] if place < len(row.cells) else ""
+        column = next((column for column in self._header.columns if column.place == place), None)
+        typed = None if column is None else row.typed.get(column.line.name)
+        is_number = typed is not None and typed.value is not None and not isinstance(typed.value, str)
+        return plain_text(text) if is_number else cell(text)
+
+    def _csv_line(self, cells: Sequence[str]) -> str:
+        text = io.StringIO()
+        csv.writer(text, delimiter=self._header.delimiter, lineterminator="").writerow(cells)
+        return text.getvalue()
+
+    def json_lines(self, numbered: Iterator[tuple[int, str | Refusal]]) -> Iterator[str]:
+        """Yield one JSON object a row."""
+        read = {column.place for column in self._header.columns}
+        for row in self._rows(numbered):
+            found: dict[str, Any] = {"row": row.number}
+            if row.answer is not None:
+                found |= answer_json(self._header.check, row.answer, row.typed, self._under)
+            elif row.refusal is not None:
+                refusal = row.refusal
+                found["error"] = {"field": refusal.field, "message": refusal.message, "hint": refusal.hint}
+            carried = {
+                plain_text(name.strip()): plain_text(text)
+                for place, (name, text) in enumerate(zip(self._header.names, row.cells, strict=False))
+                if place not in read
+            }
+            yield json.dumps(found | ({"carried": carried} if carried else {}))
+
+
+def _told(refusal: Refusal | None) -> str:
+    if refusal is None:
+        return ""
+    return f"{refusal.field.replace('_', ' ')}: {refusal.sentence()}" if refusal.field else refusal.sentence()

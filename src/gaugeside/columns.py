@@ -1,0 +1,278 @@
+"""The header of a table of readings: which column is which reading of a check, and in what unit its numbers are."""
+
+from __future__ import annotations
+
+import csv
+import difflib
+import re
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass
+
+from gaugeside.checks.sheet import Check, Entry, ReadingLine
+from gaugeside.checks.typed import FieldUnits, TypedLine, read_form, takes
+from gaugeside.errors import Refusal
+from gaugeside.quantities import Dress, Kind, Site, fold, quoted, read, spellings, split_number
+from gaugeside.settings import plain_text
+
+MOST_COLUMNS = 1000
+DELIMITERS = {",": "comma", ";": "semicolon", "\t": "tab"}
+_NEAR = 0.75  # of difflib's measure, 1 for the same
+_LONGEST_NAME = 80  # [characters], of a column that can be a reading
+_UNIT = re.compile(r"(?P<name>[^\[(]*)[\[(](?P<unit>.*)[\])]\s*\Z", re.DOTALL)
+_STATE_KINDS = (Kind.PRESSURE, Kind.TEMPERATURE, Kind.SPECIFIC_ENTHALPY, Kind.FRACTION)
+_SPLIT_READING = "A reading with a comma in it needs double quotes around it."
+_SPLIT_HEADING = "Write the unit in brackets behind the name; double quotes hold a heading with a comma together."
+
+
+@dataclass(frozen=True)
+class Column:
+    """One column that is a reading.
+
+    units: what a number alone in it takes. told: the heading says that unit. kind: what it must be, where the name
+    says more than the reading's.
+    """
+
+    place: int
+    line: ReadingLine
+    units: FieldUnits
+    told: bool
+    kind: Kind | None
+
+
+@dataclass
+class Header:
+    """What the header of a table says.
+
+    names: as they stand there. carried: columns that are no reading. words: readings said beside the table, the same
+    for every row. said: what was understood otherwise than it stands there.
+    """
+
+    check: Check
+    delimiter: str
+    names: list[str]
+    columns: list[Column]
+    carried: list[str]
+    words: Mapping[str, str]
+    said: list[str]
+
+    def texts(self, cells: Sequence[str]) -> dict[str, str]:
+        """Return what is typed for every reading in a row."""
+        typed = {column.line.name: cells[column.place] for column in self.columns if column.place < len(cells)}
+        return {**typed, **self.words}
+
+    def read(self, texts: Mapping[str, str], dress: Dress, site: Site) -> dict[str, TypedLine]:
+        """Return a row's readings as understood."""
+        units = {column.line.name: column.units for column in self.columns}
+        typed = read_form(self.check, texts, units, dress, site)
+        for column in self.columns:
+            line = typed[column.line.name]
+            if column.kind is not None and line.value is not None and column.kind.value not in line.value:
+                name = self.names[column.place]
+                refusal = Refusal(
+                    f"{quoted(line.text.strip())} is no {column.kind.value}, as its column {quoted(name)} says.",
+                    "Give it a column of its own.",
+                    column.line.name,
+                )
+                typed[column.line.name] = TypedLine(line.text, refusal=refusal)
+        return typed
+
+    def assumed(self, typed: Mapping[str, TypedLine], dress: Dress) -> dict[str, str]:
+        """Return, by reading, how the reading of a row was understood where neither it nor its column says so."""
+        found = {}
+        for column in self.columns:
+            line, text = typed[column.line.name], typed[column.line.name].text.strip()
+            is_measured = column.line.entry in (Entry.QUANTITY, Entry.EITHER, Entry.STATE)
+            if column.told or not is_measured or line.value is None or line.complete == text:
+                continue
+            if column.line.entry is not Entry.STATE and split_number(text)[1]:
+                words = f"{text} is read as {line.complete}"
+            elif column.kind is not None:
+                words = f"a number alone is read as {dress.default(column.kind).label}"
+            else:
+                words = f"a number alone is read as {takes(column.line, {}, dress)}"
+            found[column.line.name] = f"{self.names[column.place].strip()}: {words}."
+        return found
+
+
+def parsed(line: str, delimiter: str) -> list[str]:
+    """Return the cells of one line; Refusal where its quotes do not fit."""
+    try:
+        return next(csv.reader([line], delimiter=delimiter, strict=True), [])
+    except csv.Error as fault:
+        raise Refusal(
+            f"The quotes in this line do not fit ({plain_text(str(fault), 80)}).",
+            "Put a cell with a quote in it into quotes, and write the quote twice; a cell ends on its line.",
+        ) from fault
+
+
+def read_header(check: Check, line: str, words: Mapping[str, str], dress: Dress, site: Site) -> Header:
+    """Return what the first line of a table says.
+
+    words: readings that are given beside the table. Raises Refusal when the line is not clear.
+    """
+    delimiter, names = _split(check, line)
+    if len(names) > MOST_COLUMNS:
+        raise Refusal(f"The header has more than {MOST_COLUMNS} columns.", "Leave out those that are no readings.")
+    header = Header(check, delimiter, names, [], [], words, [])
+    for place, heading in enumerate(names):
+        name, unit_text = _parted(heading)
+        found = _matched(check, name)
+        if found is None:
+            _refuse_near(check, heading, name)
+            header.carried.append(plain_text(heading.strip(), _LONGEST_NAME))
+            continue
+        reading, kind = found
+        _refuse_twice(header, reading, heading)
+        units = _units(reading, kind, unit_text, dress, site, header.said)
+        header.columns.append(Column(place, reading, units, bool(unit_text), kind))
+    if not header.columns:
+        raise Refusal(
+            f"The first line names no reading of {check.name}.",
+            f"Name columns in it: {', '.join(line.name for line in check.reading_lines())}.",
+        )
+    for reading in check.reading_lines():
+        if reading.positional and reading.name not in header.texts([""] * len(names)):
+            raise Refusal(
+                f"No column says the {reading.label}.",
+                f"Name one {reading.name}, or say it before the file.",
+                reading.name,
+            )
+    return header
+
+
+def fitted(header: Header, cells: Sequence[str]) -> list[str]:
+    """Return the cells of a row with blank ones for those that are missing; Refusal when that is not clear."""
+    wanted = len(header.names)
+    if any(cell.strip() for cell in cells[wanted:]) or (len(cells) < wanted and header.delimiter == ","):
+        # With too few cells, too, a decimal comma may have made two of one.
+        hint = f" {_SPLIT_READING}" if header.delimiter == "," else ""
+        raise Refusal(f"This row has {len(cells)} cells, the header {wanted}.", f"Give every column its cell.{hint}")
+    return [*cells[:wanted], *[""] * (wanted - len(cells))]
+
+
+def _split(check: Check, line: str) -> tuple[str, list[str]]:
+    """Return the delimiter of a header and its names: the one delimiter that parts it into names of readings."""
+    found = {}
+    trouble = None
+    present = [delimiter for delimiter in DELIMITERS if delimiter in line]
+    for delimiter in present or [","]:
+        try:
+            names = parsed(line, delimiter)
+        except Refusal as refusal:
+            trouble = refusal
+            continue
+        # Within brackets it may part the units of a state.
+        if len(names) > 1 and any(_matched(check, _parted(name)[0]) for name in names[:MOST_COLUMNS]):
+            found[delimiter] = names
+    if len(found) > 1:
+        raise Refusal(
+            f"The header can be parted at {' or '.join(DELIMITERS[delimiter] for delimiter in found)}.",
+            "Put a name with one of them in it into double quotes.",
+        )
+    if found:
+        return next(iter(found.items()))
+    if trouble is not None and len(present) < 2:
+        raise trouble
+    # One column, or none that is a reading; of several delimiters the first then parts the names that are told.
+    return (present or [","])[0], parsed(line, (present or [","])[0])
+
+
+def _parted(heading: str) -> tuple[str, str]:
+    """Return the name of a column and the unit in brackets behind it."""
+    found = _UNIT.match(heading) if len(heading) <= 2 * _LONGEST_NAME else None
+    return (found["name"], found["unit"].strip()) if found is not None else (heading, "")
+
+
+def _heard(name: str) -> str:
+    """Return a name without what people vary: case, dashes, underscores, dots."""
+    words = re.sub(r"[-_.\s]+", " ", name.strip().removeprefix("--").casefold())
+    return words.strip()
+
+
+def _matched(check: Check, name: str) -> tuple[ReadingLine, Kind | None] | None:
+    """Return the reading a column's name names, and the kind where it names one of several that the reading takes."""
+    if len(name) > _LONGEST_NAME:
+        return None
+    heard = _heard(name)
+    for line in check.reading_lines():
+        if heard in (_heard(line.name), _heard(line.label)):
+            return line, None
+    for line in check.reading_lines():
+        for kind in line.kinds if line.entry is Entry.EITHER else ():
+            if heard == kind.value:
+                return line, kind
+    return None
+
+
+def _refuse_near(check: Check, heading: str, name: str) -> None:
+    """Raise Refusal when a name that is no reading's comes near one, so that no reading is left out by a slip."""
+    if len(heading) > 2 * _LONGEST_NAME:
+        return
+    if any(heading.count(opening) != heading.count(closing) for opening, closing in ("[]", "()")):
+        raise Refusal(f"A bracket stands alone in the column {quoted(heading.strip())}.", _SPLIT_HEADING)
+    heard, lines = _heard(name), check.reading_lines()
+    known = {_heard(text): line.name for line in lines for text in (line.name, line.label)}
+    known |= {kind.value: kind.value for line in lines if line.entry is Entry.EITHER for kind in line.kinds}
+    near = difflib.get_close_matches(heard, known, n=1, cutoff=_NEAR)
+    # "Inlet temperature" is the inlet of a stream, and half of a state.
+    near = near or [one for one in known if heard.startswith(f"{one} ") and not _without_kinds(heard[len(one) :])]
+    if near:
+        raise Refusal(
+            f"The column {quoted(heading.strip())} is no reading of {check.name}, but comes near one.",
+            f"Name it {known[near[0]]} if that is meant, else give it a name further off or leave it out.",
+        )
+
+
+def _without_kinds(text: str) -> list[str]:
+    """Return the words of a text that are no part of any kind's name."""
+    kinds = {word for kind in Kind for word in kind.value.split()}
+    return [word for word in text.split() if word not in kinds]
+
+
+def _refuse_twice(header: Header, reading: ReadingLine, heading: str) -> None:
+    first = next((column for column in header.columns if column.line.name == reading.name), None)
+    if first is not None:
+        raise Refusal(
+            f"The columns {quoted(header.names[first.place].strip())} and {quoted(heading.strip())} "
+            f"are both the {reading.label}.",
+            "Leave one of them out.",
+            reading.name,
+        )
+    if reading.name in header.words:
+        raise Refusal(
+            f"The {reading.label} is said twice: by the column {quoted(heading.strip())} and before the file.",
+            "Leave one of them out.",
+            reading.name,
+        )
+
+
+def _units(reading: ReadingLine, kind: Kind | None, text: str, dress: Dress, site: Site, said: list[str]) -> FieldUnits:
+    """Return what a number alone takes in a column with a unit in its heading."""
+    if not text:
+        return {} if kind is None else {kind.value: dress.default(kind).label}
+    if reading.entry is Entry.STATE:
+        return dict(_unit_of(part, _STATE_KINDS, reading, dress, site, said) for part in re.split("[,;]", text))
+    if reading.entry is Entry.EITHER:
+        kinds: Iterable[Kind] = reading.kinds if kind is None else (kind,)
+    elif reading.entry is Entry.QUANTITY:
+        kinds = (reading.kind,)
+    else:
+        raise Refusal(f"The {reading.label} takes no unit: {quoted(text)}.", "Leave the brackets out.", reading.name)
+    return dict([_unit_of(text, tuple(kinds), reading, dress, site, said)])
+
+
+def _unit_of(
+    text: str, kinds: tuple[Kind, ...], reading: ReadingLine, dress: Dress, site: Site, said: list[str]
+) -> tuple[str, str]:
+    """Return the kind and the label of a unit in a heading; Refusal where it names no single unit."""
+    kind = next((kind for kind in kinds if fold(text) in spellings(kind)), kinds[0])
+    if text.strip()[:1].isdigit():
+        raise Refusal(f"{quoted(text)} is no unit.", "Write a unit alone into the brackets.", reading.name)
+    try:
+        # Read as a number of it is: what is ambiguous there is ambiguous here.
+        unit = read(f"1 {text}", kind, dress.default(kind), dress, site).unit
+    except Refusal as refusal:
+        raise refusal.about(reading.name) from None
+    if unit.sense is not None and spellings(kind)[fold(text)].sense is None:
+        said.append(f"{reading.label} [{plain_text(text, 20)}]: a number alone is read as {unit.label}.")
+    return kind.value, unit.label
