@@ -135,7 +135,54 @@ def test_rows_of_another_hand_are_shown_harmless(book: Logbook, capfd: pytest.Ca
     assert err == ""
     for number in (2, 3, 4):
         book.restore(book.delete(number))
-    assert book.keep(replace(ENTRY, note="mine")).entry.number == 2**63 - 1
+    assert book.keep(replace(ENTRY, note="mine")).entry.number == 40
+
+
+@pytest.mark.parametrize(
+    ("numbers", "given"),
+    [
+        ([2**63 - 1], [2, 3, 4]),
+        ([2**63 - 1, 7], [8, 9, 10]),
+        ([-5, 10**9], [2, 3, 4]),
+        ([999_999_997], [999_999_998, 999_999_999, 999_999_996]),
+        ([999_999_999, 999_999_998], [999_999_997, 999_999_996, 999_999_995]),
+    ],
+)
+@pytest.mark.parametrize("stays", [True, False])
+def test_a_large_number_of_another_hand_leaves_numbers_for_mine(
+    numbers: list[int], given: list[int], stays: bool, book: Logbook
+) -> None:
+    """One that was taken out again still counts as given, but for those beyond the numbers given here."""
+    with closing(sqlite3.connect(book.path)) as connection, connection:
+        for number in numbers:
+            connection.execute(f"INSERT INTO entries SELECT {number}, {', '.join(COLUMNS)} FROM entries LIMIT 1")
+        if not stays:
+            connection.execute("DELETE FROM entries WHERE number <> 1")
+    before = book.entries()
+    mine = [book.keep(replace(ENTRY, note=f"round {place}")).entry for place in range(3)]
+    fresh = [entry.number for entry in mine]
+    assert len({1, *fresh}) == 4
+    if stays:
+        assert fresh == given
+    assert sorted(map(repr, book.entries())) == sorted(map(repr, [*before, *mine]))
+
+
+def test_the_number_of_a_deleted_entry_is_not_given_again_beside_a_large_one(book: Logbook) -> None:
+    with closing(sqlite3.connect(book.path)) as connection, connection:
+        connection.execute(f"INSERT INTO entries SELECT {2**63 - 1}, {', '.join(COLUMNS)} FROM entries LIMIT 1")
+    deleted = book.keep(replace(ENTRY, note="deleted")).entry
+    assert deleted.number == 2
+    book.delete(2)
+    assert book.keep(replace(ENTRY, note="after")).entry.number == 3
+    book.restore(deleted)
+    assert book.entry(2) == deleted
+
+
+@pytest.mark.parametrize("spoilt", ["'many'", "NULL", "-3", "x'00'", "1e300"])
+def test_a_spoilt_count_of_numbers_is_made_good(spoilt: str, book: Logbook) -> None:
+    with closing(sqlite3.connect(book.path)) as connection, connection:
+        connection.execute(f"UPDATE sqlite_sequence SET seq = {spoilt}")
+    assert [book.keep(replace(ENTRY, note=note)).entry.number for note in "ab"] == [2, 3]
 
 
 @pytest.mark.parametrize("column", COLUMNS)

@@ -16,6 +16,7 @@ VERSION = 1
 APPLICATION = 0x47415547  # marks the file as a logbook of this program
 LONGEST_COLUMN = 500_000  # [characters]; the largest entry that is kept needs half of that
 LARGEST_VALUE = 20_000_000  # [bytes]; a larger one is left out, so that memory stays bounded whatever a file holds
+LARGEST_NUMBER_GIVEN = 999_999_999  # a reading that names an entry takes nine digits
 
 _COLUMNS = ", ".join(f"{name} {kind}" for name, kind in COLUMNS.items())
 _STATEMENTS = (
@@ -47,6 +48,39 @@ def guard(connection: sqlite3.Connection) -> None:
     connection.setlimit(sqlite3.SQLITE_LIMIT_LENGTH, LARGEST_VALUE)
     connection.execute("PRAGMA trusted_schema = OFF")
     connection.execute("PRAGMA cell_size_check = ON")
+
+
+def add(connection: sqlite3.Connection, row: list[str | int | None]) -> int:
+    """Add a row under a number that no entry had before, and return the number.
+
+    The database library's own count ends for good at the largest number another hand has put in.
+    """
+    number = _free_number(connection)
+    connection.execute(
+        "UPDATE sqlite_sequence SET seq = ? WHERE name = 'entries' AND (typeof(seq) <> 'integer' OR seq > ?)",
+        [number, LARGEST_NUMBER_GIVEN],
+    )
+    connection.execute(INSERT, [number, *row[1:]])
+    return number
+
+
+def _free_number(connection: sqlite3.Connection) -> int:
+    most = LARGEST_NUMBER_GIVEN
+    given = _largest(connection, "seq", "sqlite_sequence WHERE name = 'entries' AND typeof(seq) = 'integer' AND seq")
+    there = _largest(connection, "number", "entries WHERE number")
+    for number in (max(given, there) + 1, there + 1):
+        if number <= most:
+            return number
+    below_a_gap = (
+        "SELECT number - 1 FROM entries AS one WHERE number BETWEEN 1 AND ? "
+        "AND NOT EXISTS (SELECT 1 FROM entries WHERE number = one.number - 1) ORDER BY number DESC LIMIT 1"
+    )
+    return int(connection.execute(below_a_gap, [most]).fetchone()[0])
+
+
+def _largest(connection: sqlite3.Connection, column: str, where: str) -> int:
+    query = f"SELECT max({column}) FROM {where} BETWEEN 0 AND ?"
+    return int(connection.execute(query, [LARGEST_NUMBER_GIVEN]).fetchone()[0] or 0)
 
 
 def read_row(connection: sqlite3.Connection, number: int) -> tuple[Any, ...] | None:

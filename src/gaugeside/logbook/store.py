@@ -22,7 +22,7 @@ from gaugeside.errors import Refusal
 from gaugeside.logbook import damage
 from gaugeside.logbook.entry import COLUMNS, Entry, cleaned, from_row, to_row
 from gaugeside.logbook.filter import condition, one_by_one
-from gaugeside.logbook.schema import INSERT, LARGEST_VALUE, NEWEST_FIRST, SELECT, begin, guard, is_begun, read_row
+from gaugeside.logbook.schema import INSERT, LARGEST_VALUE, NEWEST_FIRST, SELECT, add, begin, guard, is_begun, read_row
 from gaugeside.logbook.trouble import LogbookTrouble, NoSuchEntry, no_locks, trouble_from
 from gaugeside.settings import make_private_folder, reason
 
@@ -213,7 +213,7 @@ class Logbook:
                     here = cleaned(replace(relinked(entry, numbers), number=None))
                     number = _number_of(connection, here)
                     if number is None:
-                        number = connection.execute(INSERT, to_row(here)).lastrowid
+                        number = add(connection, to_row(here))
                         taken += 1
                 if entry.number is not None and number is not None:
                     numbers[entry.number] = number
@@ -229,7 +229,7 @@ class Logbook:
                 earlier = _one(connection, *found)
                 if abs(entry.kept_at - earlier.kept_at) <= SAME_WITHIN:
                     return Kept(earlier, already=True)
-            number = connection.execute(INSERT, list(row.values())).lastrowid
+            number = add(connection, to_row(entry))
         return Kept(replace(entry, number=number), already=False)
 
     def _exists(self) -> bool:
