@@ -272,6 +272,46 @@ def test_a_killed_helper_is_survived_with_a_word_and_the_next_key_works(tmp_path
         assert "5 C" in shown.line_with("suction pipe")
 
 
+def test_a_helper_that_hangs_is_survived_with_a_word_and_the_next_key_works(tmp_path: Path) -> None:
+    with app(tmp_path) as shown:
+        shown.wait_for(READY)
+        typed(shown, "2 bar g\t5 C")
+        shown.wait_for("superheat  ")
+        hanging = helper_of(shown)
+        os.kill(hanging, signal.SIGSTOP)
+        typed(shown, "\t9 bar g")
+        # No figure of the readings before stands beside the new reading.
+        shown.wait_for("Working.")
+        assert "superheat  " not in shown.screen_text()
+        shown.wait_for("The property helper did not answer in time; it is started again.")
+        typed(shown, "\t30 C")
+        shown.wait_for("subcooling  ")
+        assert helper_of(shown) != hanging
+        assert "9 bar g" in shown.line_with("liquid pressure")
+
+
+def test_garbage_on_the_helpers_pipe_is_survived_and_not_shown(tmp_path: Path) -> None:
+    now = tmp_path / "now"
+    speak = (
+        "import os, threading, time\nanswers = os.dup(1)\ndef speak():\n"
+        f"    while not os.path.exists({str(now)!r}): time.sleep(0.02)\n"
+        f"    os.unlink({str(now)!r})\n"
+        "    os.write(answers, b'\\x1b[2J{\"number\": 1, \"answer\": GARBAGE\\n')\n"
+        "threading.Thread(target=speak, daemon=True).start()"
+    )
+    with app(tmp_path, environ=with_helper(tmp_path, speak)) as shown:
+        shown.wait_for(READY)
+        typed(shown, "2 bar g\t5 C")
+        shown.wait_for("superheat  ")
+        first = helper_of(shown)
+        now.touch()
+        shown.wait_for("The property helper spoke unasked; it is started again.")
+        typed(shown, "\t9 bar g\t30 C")
+        shown.wait_for("subcooling  ")
+        assert helper_of(shown) != first
+        assert b"GARBAGE" not in shown.raw
+
+
 def test_the_helpers_noise_never_reaches_the_screen(tmp_path: Path) -> None:
     noise = "def cry():\n    while True: time.sleep(0.1); os.write(2, b'NOISE')"
     start = "threading.Thread(target=cry, daemon=True).start()"
