@@ -5,6 +5,7 @@ from __future__ import annotations
 import pytest
 
 from gaugeside.checks.sheet import Answer
+from gaugeside.checks.view import sentence
 from gaugeside.quantities import SEA_LEVEL, Dress, Site
 from unit.check_tools import ask, number, refusal, said
 
@@ -226,6 +227,29 @@ def test_cautions_stand_where_they_apply(texts: dict[str, str], words: list[str]
     assert len(found.cautions) == len(words)
     for word in words:
         assert word in said(found)
+
+
+@pytest.mark.parametrize(("refrigerant", "pressure"), [("R-717", "12 bar g"), ("R-744", "60 bar g")])
+@pytest.mark.parametrize(("pipe", "limit"), [("104 C", ""), ("106 C", "105.0 °C"), ("121 C", "120.0 °C")])
+def test_for_machines_built_for_a_hot_discharge_the_maker_has_the_word(
+    refrigerant: str, pressure: str, pipe: str, limit: str
+) -> None:
+    found = [
+        sentence(remark, Dress(), SEA_LEVEL)
+        for remark in superheat(refrigerant, discharge_pressure=pressure, discharge_temperature=pipe).cautions
+    ]
+    hot = f"Discharge at {limit} or more (common practice). {refrigerant}: maker's limit counts."
+    assert [text for text in found if "ischarge" in text] == ([hot] if limit else [])
+    assert len(hot) < 79
+
+
+def test_the_maker_has_the_word_for_a_compressor_and_a_machine_too() -> None:
+    hot = "R-717: maker's limit counts"
+    ends = {"inlet": "3 bar g, -2 C", "outlet": "12 bar g, 125 C"}
+    assert hot in said(ask("component", "R-717", component="compressor", mass_flow="0.1 kg/s", **ends))
+    readings = {"suction_pressure": "3 bar g", "suction_temperature": "-2 C", "discharge_pressure": "12 bar g"}
+    machine = ask("machine", "R-717", discharge_temperature="125 C", liquid_temperature="30 C", **readings)
+    assert hot in said(machine)
 
 
 def test_differences_are_given_in_kelvin_and_fahrenheit() -> None:

@@ -9,6 +9,8 @@ from gaugeside.refrigerants import Refrigerant
 # Common practice for single-stage machines; the maker's figures take precedence.
 DISCHARGE_CAUTION, DISCHARGE_ALARM = 378.15, 393.15
 PRESSURE_RATIO_CAUTION = 8.0
+# Machines for these are often built for a hotter discharge (common practice).
+_RUNS_HOT = ("R-717", "R-744")
 
 _HARM = {
     "A2L": "mildly flammable (A2L). Ventilate, no ignition",
@@ -53,15 +55,18 @@ def suction_caution(conditions: Conditions, outcome: Outcome, pressure: float) -
         )
 
 
-def discharge_cautions(outcome: Outcome, temperature: float | None, ratio: float | None) -> None:
+def discharge_cautions(
+    conditions: Conditions, outcome: Outcome, temperature: float | None, ratio: float | None
+) -> None:
     """Say when a discharge pipe [K] is hot or a single stage's pressure ratio high (common practice)."""
     if temperature is not None and temperature >= DISCHARGE_CAUTION:
         word = "alarm" if temperature >= DISCHARGE_ALARM else "caution"
         limit = DISCHARGE_ALARM if temperature >= DISCHARGE_ALARM else DISCHARGE_CAUTION
-        outcome.caution(
-            f"Discharge pipe is at or above the usual {word} of {{limit}} (common practice): oil and valves suffer.",
-            limit=(limit, Kind.TEMPERATURE),
-        )
+        text = f"Discharge pipe is at or above the usual {word} of {{limit}} (common practice): oil and valves suffer."
+        if conditions.refrigerant.designation in _RUNS_HOT:
+            name = conditions.refrigerant.designation
+            text = f"Discharge at {{limit}} or more (common practice). {name}: maker's limit counts."
+        outcome.caution(text, limit=(limit, Kind.TEMPERATURE))
     if ratio is not None and ratio > PRESSURE_RATIO_CAUTION:
         outcome.caution("Pressure ratio above 8 is high for a single stage (common practice).")
 

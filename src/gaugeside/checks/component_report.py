@@ -114,7 +114,7 @@ def _report_machine(conditions: Conditions, setup: Setup, outcome: Outcome) -> N
             outcome.note("Vapour enters the pump: it cavitates.")
         return
     suction_caution(conditions, outcome, inlet.pressure)
-    discharge_cautions(outcome, outlet.temperature, ratio)
+    discharge_cautions(conditions, outcome, outlet.temperature, ratio)
     if inlet.region in (Region.SUBCOOLED, Region.LIQUID_ABOVE_CRITICAL_PRESSURE):
         outcome.note("Liquid enters the compressor: it breaks. Check the component chosen and the inlet.")
     elif inlet.vapour_fraction is not None and inlet.vapour_fraction < 1:

@@ -168,7 +168,7 @@ def _report_circuit(conditions: Conditions, circuit: Circuit, shell_loss: float,
     if suction is not None and discharge is not None:
         found.pressure_ratio = discharge / suction
     at_discharge = circuit.states.get("discharge")
-    discharge_cautions(outcome, at_discharge.temperature if at_discharge else None, found.pressure_ratio)
+    discharge_cautions(conditions, outcome, at_discharge.temperature if at_discharge else None, found.pressure_ratio)
     after_valve = circuit.states.get("after valve")
     if after_valve is not None and after_valve.vapour_fraction is not None:
         found.flash_fraction = after_valve.vapour_fraction

@@ -71,7 +71,7 @@ def run(conditions: Conditions, readings: Readings) -> Outcome:
         outcome.remark("pressure_ratio", "absolute, at the gauges")
         if found.pressure_ratio < 1:
             outcome.note("Discharge pressure is below suction: swapped?")
-    discharge_cautions(outcome, readings.discharge_temperature, found.pressure_ratio)
+    discharge_cautions(conditions, outcome, readings.discharge_temperature, found.pressure_ratio)
     refrigerant_caution(conditions, outcome)
     model_note(conditions, outcome)
     return outcome
