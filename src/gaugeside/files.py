@@ -76,7 +76,7 @@ def content(name: str, largest: int) -> bytes:
         for chunk in chunks(file, name):
             found += chunk
             if len(found) > largest:
-                raise Refusal(f"{_told(name)} is larger than {largest // 1_000_000} MB.", "Take it in in parts.")
+                raise Refusal(f"{_told(name)} is larger than {largest // 1_000_000} MB.", "Part it first.")
     return bytes(found)
 
 

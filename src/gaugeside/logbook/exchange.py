@@ -33,7 +33,7 @@ MOST_ENTRIES = 100_000
 MOST_COLUMNS = 2_000
 TOLD = 5  # refused entries that are told one by one
 # An entry is read out of a window that grows until it holds it, so that no value of a file's size is ever built.
-_WINDOW, _LARGEST_WINDOW = 16_384, 8_000_000  # [characters]
+_WINDOW, _LARGEST_WINDOW = 16_384, 16_384 * 4**4  # [characters]
 _BLANK = re.compile(r"[ \t\r\n]*")
 _HEAD = ("number", "kept_at", "check", "refrigerant", "tag", "note", "headline")
 _NAMES = ("check", "refrigerant", "tag", "program_version", "library_version")
@@ -150,7 +150,7 @@ def read_document(content: bytes) -> Document:
         raise Refusal(
             "The exported logbook is of a newer version of gaugeside, so nothing of it is taken.", "Use that version."
         )
-    if "entries" not in head:
+    if not isinstance(head.get("entries"), list):
         raise Refusal("The exported logbook has no list of entries.", _ONLY_JSON)
     return document
 
@@ -172,7 +172,7 @@ def _members(text: str, document: Document) -> Iterator[tuple[str, Any]]:
         if not isinstance(name, str):
             raise _damaged(text, closing)
         place = _after(text, place, ":")
-        value: Any = None
+        value: Any = []
         if name == "entries" and text[_start(text, place)] == "[":
             place = _entries(text, _after(text, place, "["), document)
         else:
@@ -196,7 +196,7 @@ def _entries(text: str, place: int, document: Document) -> int:
         found, place = _value(text, place)
         count = len(document.entries) + document.refused + 1
         if count > MOST_ENTRIES:
-            raise Refusal(f"The file holds more than {MOST_ENTRIES} entries.", "Take it in in parts.")
+            raise Refusal(f"The file holds more than {MOST_ENTRIES} entries.", "Export it in parts, by words that choose fewer entries.")
         try:
             document.entries.append(entry_from(found))
         except ValueError as fault:
