@@ -9,6 +9,7 @@ from dataclasses import replace
 from functools import partial
 from typing import Any
 
+from textual import on
 from textual.app import App
 from textual.screen import Screen
 from textual.theme import Theme
@@ -21,6 +22,7 @@ from gaugeside.app.panes.logbook import LogbookPane
 from gaugeside.app.panes.sheet import SheetPane
 from gaugeside.app.saver import Saver
 from gaugeside.app.themes import pick_theme, without_colour
+from gaugeside.app.widgets.field import TextField
 from gaugeside.app.widgets.lines import CAUTION, MUTED, Line, Styled
 from gaugeside.checks import CHECKS
 from gaugeside.checks.caution import model_remark, standing_caution
@@ -198,6 +200,10 @@ class House(KeysInTurn):
         for pane in self.base.query(SheetPane):
             forms[pane.check.name] = {"texts": pane.texts(), "units": pane.units}
         return {"pane": self.now, "note": self.note, "forms": forms}
+
+    @on(TextField.NotTaken)
+    def _not_taken(self, event: TextField.NotTaken) -> None:
+        self.say(event.words, CAUTION, stays=True)
 
     def keep(self, pane: SheetPane) -> None:
         """Keep what a sheet shows in the logbook."""

@@ -19,6 +19,7 @@ from textual.widgets import Input
 
 from gaugeside.app.widgets.field import FieldLine, TextField
 from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, Line, Lines, Styled
+from gaugeside.logbook.entry import LONGEST_NAME
 from gaugeside.refrigerants import Refrigerant, search
 
 _ROWS = 14
@@ -38,6 +39,11 @@ class Dialog(ModalScreen[Any]):
     def first_field(self) -> Widget | None:
         """What the keys go to first; None for the dialog itself."""
         return None
+
+    @on(TextField.NotTaken)
+    def _not_taken(self, event: TextField.NotTaken) -> None:
+        event.stop()
+        self.query_one(".word", Line).say(event.words, CAUTION)
 
     def action_leave(self) -> None:
         """Close without an answer."""
@@ -76,7 +82,7 @@ class RefrigerantPicker(Dialog):
             yield self._field
             yield Lines(id="matches")
             yield Line("")
-            yield Line(id="pick-word")
+            yield Line(id="pick-word", classes="word")
             yield Line("Up Down move   Enter takes the marked line   F8 back without a change", MUTED)
 
     def on_mount(self) -> None:
@@ -186,7 +192,7 @@ class MachineAndNote(Dialog):
     def __init__(self, title: str, tag: str, note: str) -> None:
         super().__init__()
         self._title = title
-        self._tag = FieldLine("tag", "machine", TextField(tag, id="tag", placeholder="rack 2"))
+        self._tag = FieldLine("tag", "machine", TextField(tag, id="tag", placeholder="rack 2", longest=LONGEST_NAME))
         self._note = FieldLine("note", "note", TextField(note, id="note"))
 
     def compose(self) -> ComposeResult:
@@ -195,11 +201,17 @@ class MachineAndNote(Dialog):
             yield Line(self._title, MAIN)
             yield self._tag
             yield self._note
+            yield Line(classes="word")
             yield Line("Enter takes both   Tab or Down to the note   F9 back without a change", MUTED)
 
     def first_field(self) -> Widget:
         """The machine."""
         return self._tag.field
+
+    @on(Input.Changed)
+    def _typed(self, event: Input.Changed) -> None:
+        event.stop()
+        self.query_one(".word", Line).say("")
 
     @on(Input.Submitted)
     def _take(self, event: Input.Submitted) -> None:

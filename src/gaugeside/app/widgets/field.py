@@ -30,20 +30,47 @@ class TextField(Input):
 
     BINDINGS = [("up,shift+tab", "move(-1)"), ("down,tab", "move(1)")]
 
-    def __init__(self, value: str = "", *, id: str | None = None, placeholder: str = "") -> None:
+    @dataclass
+    class NotTaken(Message):
+        """Posted when something typed or pasted is left out."""
+
+        words: str
+
+    def __init__(
+        self, value: str = "", *, id: str | None = None, placeholder: str = "", longest: int = LONGEST_TYPED
+    ) -> None:
         super().__init__(
             value,
             id=id,
             placeholder=shown_text(placeholder),
             compact=True,
             select_on_focus=False,
-            max_length=LONGEST_TYPED,
+            max_length=longest,
         )
         self.cursor_blink = False
 
     def action_move(self, by: int) -> None:
         """Go to the field before or behind, ready to be typed over."""
         move_focus(self, by)
+
+    def replace(self, text: str, start: int, end: int) -> None:
+        """Replace a part of what stands here; what makes it longer than a field takes is left out whole, and said."""
+        first, last = sorted((max(0, start), min(len(self.value), end)))
+        length = len(self.value) - (last - first) + len(text)
+        if self.max_length and length > self.max_length:
+            words = f"Not taken: {length} characters, and this field holds {self.max_length}; it stays as it was."
+            self.post_message(self.NotTaken(words))
+            return
+        super().replace(text, start, end)
+
+    def _on_paste(self, event: events.Paste) -> None:
+        event.stop()
+        event.prevent_default()
+        lines = [line for line in event.text.splitlines() if line.strip()]
+        if lines:
+            self.replace(lines[0], *self.selection)
+        if len(lines) > 1:
+            self.post_message(self.NotTaken(f"Only the first of the {len(lines)} lines pasted goes into a field."))
 
     def validate_value(self, value: str) -> str:
         """Let no character in that a terminal would obey, however it came: pasted, from a draft, a logbook."""
