@@ -265,7 +265,7 @@ def test_other_json_may_say_it_in_another_order(
         ("number,kept_at,check\n1,2026", "is the CSV of a logbook"), ("", "no JSON document"), ("[]", "no JSON"),
         ("{}", "does not name that format"), (document(invented(), format="other"), "does not name that format"),
         (document(invented(), version=2), "newer version of gaugeside, so nothing of it is taken"),
-        (document(invented(), version="1"), "not say which version"), (document(invented(), version=True), "which version"),
+        (document(invented(), version="1"), "not say which version"), (document(invented(), version=True), "say which"),
         (document(invented(), entries={}), "has no list"), (document(invented(), entries=None), "has no list"),
         (document(invented())[:-3], "ends in the middle"),
         ('{"format": "gaugeside logbook", "version": 1}', "has no list of entries"),
@@ -490,7 +490,7 @@ def test_rings_and_numbers_that_come_twice_name_nothing(
     assert named <= {str(found["a"].number), str(found["b"].number)}
 
 
-def test_a_long_chain_of_stages_takes_no_long_time() -> None:
+def test_a_long_chain_of_stages_is_put_in_its_order() -> None:
     from gaugeside.logbook.links import linked_first
 
     chain = [upper_stage(str(n), n, below=str(n - 1), number=n) for n in range(20_000, 1, -1)]

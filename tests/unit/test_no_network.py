@@ -64,6 +64,10 @@ COMMANDS = [
     ["refrigerants", "propane"],
     ["table", "R-410A", "--from", "0 C", "--to", "5 C"],
     ["logbook", "list"],
+    ["logbook", "export", "--to", "logbook.json"],
+    ["logbook", "export", "--csv"],
+    ["logbook", "import", "logbook.json"],
+    ["batch", "superheat", "R-134a", "readings.csv"],
     ["--help"],
     ["saturation", "R-134a", "http://example.org/ C"],
 ]  # fmt: skip
@@ -114,7 +118,8 @@ for words in json.loads(sys.argv[1]):
         codes.append([main(words), said.getvalue()])
 print(json.dumps(codes))
 """
-    done = watched(f"{HOOK}{caged()}{run_all}", tmp_path, json.dumps(COMMANDS))
+    (tmp_path / "readings.csv").write_text("suction pressure,note\n2 bar g,http://example.org/\n")
+    done = watched(f"{HOOK}{caged()}{run_all}", tmp_path, json.dumps(COMMANDS), cwd=tmp_path)
     assert done.returncode == 0, done
     codes = json.loads(done.stdout)
     assert [code for code, _ in codes] == [0] * (len(COMMANDS) - 1) + [2], codes

@@ -386,7 +386,7 @@ def test_every_help_text_is_shown(run: Any) -> None:
     commands = [line.split()[0] for line in top.out.partition("COMMAND\n")[2].splitlines() if line.startswith("    ")]
     commands = [word for word in commands if word.isalpha() and word.islower()]
     assert {"saturation", "superheat", "component", "convert", "refrigerants", "logbook"} <= set(commands)
-    for command in ("saturation", "superheat", "component", "convert", "refrigerants", "logbook"):
+    for command in ("saturation", "superheat", "component", "convert", "refrigerants", "logbook", "batch"):
         shown = run(command, "--help")
         assert (shown.status, shown.err) == (0, "")
         assert f"gaugeside {command}" in shown.out
@@ -400,10 +400,17 @@ def test_without_a_terminal_the_app_says_what_else_there_is(run: Any) -> None:
 
 
 @pytest.mark.parametrize("name", cli.EXAMPLES)
-def test_the_example_under_each_help_can_be_copied_and_answers(run: Any, name: str) -> None:
-    said = run(name, "--help").out
+def test_the_example_under_each_help_can_be_copied_and_answers(
+    run: Any, name: str, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    # The files that the examples name.
+    monkeypatch.chdir(tmp_path)
+    (tmp_path / "readings.csv").write_text("suction pressure [bar g],suction temperature [°C]\n2.6,12\n")
+    if name == "logbook import":
+        assert run("logbook", "export", "--to", "logbook.json").status == 0
+    said = run(*name.split(), "--help").out
     example = said[said.index("  gaugeside ") :]
     assert all(len(line) <= 80 for line in example.splitlines())
     words = shlex.split(example.replace("\\\n", " "))
-    assert words[:2] == ["gaugeside", name]
+    assert words[: 1 + len(name.split())] == ["gaugeside", *name.split()]
     assert run(*words[1:]).status == 0
