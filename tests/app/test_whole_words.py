@@ -68,3 +68,11 @@ def test_what_stands_around_the_sheet_is_not_on_it() -> None:
     assert whole[1:] == ["harm", "leak", "model"]
     rest = [text for text, _ in answer_lines(CHECKS["superheat"], answer, Dress(), SEA_LEVEL, 79, ["harm", "model"])]
     assert rest == [whole[0], "leak"]
+
+
+def test_the_help_of_a_field_leaves_the_line_under_it_to_what_stands_there() -> None:
+    for check in CHECKS.values():
+        for line in check.reading_lines():
+            # A list of the words to choose from may be longer.
+            if line.help != ", ".join(line.choices) + ".":
+                assert len(f"{line.label}: {line.help}") < 80, (check.name, line.name)

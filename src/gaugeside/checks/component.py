@@ -42,7 +42,7 @@ class Readings:
     heat: float | None = reading(
         "heat",
         Kind.POWER,
-        "Rejected by a condenser, absorbed by an evaporator, lost by a compressor's shell.",
+        "Rejected by a condenser, absorbed by an evaporator, lost by a shell.",
         only=(*_EXCHANGERS, "compressor"),
     )
     power: float | None = reading("power", Kind.POWER, "Power to the refrigerant.", only=_MACHINES)

@@ -33,10 +33,10 @@ class Readings:
         "liquid pressure", Kind.PRESSURE, "Before the valve; blank: taken as the discharge pressure."
     )
     liquid_temperature: float | None = reading(
-        "liquid pipe", Kind.TEMPERATURE, "Before the valve; for R-744 above critical, the gas cooler's outlet."
+        "liquid pipe", Kind.TEMPERATURE, "Before the valve; above critical, at the gas cooler's outlet."
     )
     evaporator_pressure: float | None = reading(
-        "evaporator pressure", Kind.PRESSURE, "At the evaporator's outlet; blank: taken as the suction pressure."
+        "evaporator pressure", Kind.PRESSURE, "At its outlet; blank: the suction pressure."
     )
     evaporator_outlet_temperature: float | None = reading(
         "evaporator outlet", Kind.TEMPERATURE, "Blank: suction line and evaporator count as one."
@@ -44,7 +44,7 @@ class Readings:
     mass_flow: float | None = reading("mass flow", Kind.MASS_FLOW, "Of a flow meter; blank when there is none.")
     electrical_power: float | None = reading("electrical power", Kind.POWER, "Of the compressor's motor.")
     drive: str | None = choice(
-        "drive", DRIVES, "Hermetic: the motor's whole power enters the refrigerant. Open: motor efficiency counts."
+        "drive", DRIVES, "Hermetic: all motor power heats the gas. Open: motor efficiency counts."
     )
     motor_efficiency: float | None = reading("motor efficiency", Kind.FRACTION, "Motor and drive of an open machine.")
     shell_loss: float | None = reading("shell loss", Kind.POWER, "Heat the compressor gives to the room; blank: none.")
@@ -53,19 +53,19 @@ class Readings:
         "volumetric effic.", Kind.FRACTION, "Share of the displacement that is filled."
     )
     heat_rejected: float | None = reading(
-        "heat rejected", Kind.POWER, "Measured outside the circuit, for example on the water side."
+        "heat rejected", Kind.POWER, "Measured outside the circuit, as on the water side."
     )
     heat_absorbed: float | None = reading(
-        "heat absorbed", Kind.POWER, "Measured outside the circuit, for example on the air or brine side."
+        "heat absorbed", Kind.POWER, "Measured outside the circuit, as on the air or brine side."
     )
     space_temperature: float | None = reading(
         "cooled space", Kind.TEMPERATURE, "Of the room or product that is cooled, not of the refrigerant."
     )
     sink_temperature: float | None = reading(
-        "heat sink", Kind.TEMPERATURE, "Of the outside air or water that takes the heat, not of the refrigerant."
+        "heat sink", Kind.TEMPERATURE, "Of the air or water that takes the heat, not of the refrigerant."
     )
     stage_below: Mapping[str, float] | None = entry(
-        "stage below", "Number of the logbook entry of the lower stage or cascade whose heat this machine takes up."
+        "stage below", "Logbook entry number of the lower machine whose heat is taken up."
     )
 
 

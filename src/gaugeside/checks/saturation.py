@@ -23,7 +23,7 @@ class Readings:
     reading: Mapping[str, float] | None = either(
         "pressure or temp.",
         (Kind.PRESSURE, Kind.TEMPERATURE),
-        "One pressure gives the temperatures; one temperature gives the pressures.",
+        "A pressure gives temperatures; a temperature, pressures.",
         positional=True,
     )
 

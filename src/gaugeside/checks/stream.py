@@ -27,7 +27,7 @@ class Readings:
 
     medium: str | None = words(
         "medium",
-        "water, air, propylene glycol 30 %, calcium chloride 20 % ...; concentration by mass.",
+        "water, air, propylene glycol 30 %, ...; concentration by mass.",
         positional=True,
     )
     inlet: float | None = reading("inlet", Kind.TEMPERATURE, "Where the medium enters; blank when it is wanted.")
@@ -40,15 +40,15 @@ class Readings:
     heat_direction: str | None = choice(
         "heat is",
         ("not said", *_DIRECTIONS),
-        "By the medium; to be said when heat is typed and a temperature is wanted, else the temperatures tell.",
+        "By the medium; needed when heat is typed and a temperature wanted.",
     )
     fan_or_pump_heat: float | None = reading(
-        "fan or pump heat", Kind.POWER, "Power that heats the stream between the two temperatures; none if blank."
+        "fan or pump heat", Kind.POWER, "Heats the stream between the two readings; blank: none."
     )
     pressure: float | None = reading(
         "pressure",
         Kind.PRESSURE,
-        "Of the medium; the site's atmosphere if blank. For liquids it sets the boiling point.",
+        "Of the medium, for its boiling point; blank: the site's atmosphere.",
     )
     inlet_relative_humidity: float | None = reading(
         "inlet humidity", Kind.FRACTION, "Relative humidity of the entering air.", only=AIR_NAMES
