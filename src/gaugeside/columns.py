@@ -85,13 +85,18 @@ class Header:
             if column.told or not is_measured or line.value is None or line.complete == text:
                 continue
             if column.line.entry is not Entry.STATE and split_number(text)[1]:
-                words = f"{text} is read as {line.complete}"
+                words = f"{_on_a_line(text)} is read as {_on_a_line(line.complete)}"
             elif column.kind is not None:
                 words = f"a number alone is read as {dress.default(column.kind).label}"
             else:
                 words = f"a number alone is read as {takes(column.line, {}, dress)}"
-            found[column.line.name] = f"{self.names[column.place].strip()}: {words}."
+            found[column.line.name] = f"{_on_a_line(self.names[column.place])}: {words}."
         return found
+
+
+def _on_a_line(text: str) -> str:
+    """Return a text that was understood as it may stand in a sentence: every kind of blank as one."""
+    return " ".join(text.split())
 
 
 def parsed(line: str, delimiter: str) -> list[str]:

@@ -9,108 +9,36 @@ from __future__ import annotations
 import contextlib
 import json
 import random
-import string
 import traceback
-from collections.abc import Callable, Iterable
-from dataclasses import asdict, dataclass, field
-from datetime import UTC, datetime
+from collections.abc import Callable
+from dataclasses import asdict
 from pathlib import Path
-from typing import Any
 
 from bench import oracle
+from bench.fault_tables import batch_rows, imported_logbook, logbook_row
+from bench.fault_texts import (
+    ABSOLUTE,
+    IP,
+    SI,
+    Misread,
+    Tally,
+    harmless,
+    json_noise,
+    misread_unless,
+    mutated,
+    noise,
+    told,
+    words,
+)
 from gaugeside.app.themes import ThemeFault, read_theme
 from gaugeside.checks import CHECKS
 from gaugeside.checks.compressor_map import load_maps
 from gaugeside.checks.typed import read_form
 from gaugeside.errors import Refusal
-from gaugeside.logbook.entry import Entry, cleaned, from_row, to_row
 from gaugeside.preferences import dress_of, site_of
-from gaugeside.quantities import PROPERTIES, SEA_LEVEL, Dress, Kind, Sense, read, read_state
+from gaugeside.quantities import PROPERTIES, SEA_LEVEL, Kind, read, read_state
 from gaugeside.refrigerants import find, load_own, search
 from gaugeside.settings import Settings, load_draft, load_settings
-
-LONGEST_SENTENCE = 700
-SI, IP, ABSOLUTE = Dress(), Dress("ip"), Dress(bare=Sense.ABSOLUTE)
-STRANGE = [
-    "\x00", "\x1b[2J", "\x1b]0;x\x07", "\x9b31m", "\u202e", "\u2066", "\u200b", "\ufeff", "\ud800", "\U0010ffff", "²",
-    "①", "٣", "½", "K", "ſ", "İ", "\u0301", "[b]", "[/]", "{0}", "%s", "../", "\\", '"', "'", "\n", "\r", "\t",
-    "\u2028", "nan", "inf", "1e999", "9" * 60, "-", "−", "e5", ",", ".", ";", "(", ")", "bar", "psi", "mPa", "C", "F",
-    "K", "g", " vac", " abs", "SH", "x", "h", "=", "#", "[", "]", "{", "}", ":", "true", "0x" + "f" * 20,
-]  # fmt: skip
-_TURNS = "\u202a\u202b\u202c\u202d\u202e\u2066\u2067\u2068\u2069"
-WORDS = string.ascii_letters + string.digits + "  -.,°[]{}()#äß冷"
-
-
-@dataclass
-class Tally:
-    """What the inputs came to."""
-
-    inputs: int = 0
-    taken: int = 0
-    refused: int = 0
-    crashes: int = 0
-    misreadings: int = 0
-    beyond_the_oracle: int = 0
-    examples: list[str] = field(default_factory=list)
-
-    def example(self, what: str, shown: object) -> None:
-        """Remember what went wrong, the first few times."""
-        if len(self.examples) < 20:
-            self.examples.append(f"{what}: {shown!r:.300}")
-
-
-class Misread(Exception):
-    """Something was understood as what it does not mean."""
-
-
-def misread_unless(condition: object, what: object) -> None:
-    """Raise Misread unless the condition holds."""
-    if not condition:
-        raise Misread(repr(what)[:300])
-
-
-def told(sentences: Iterable[str]) -> bool:
-    """Check that each fault is one printable sentence; return whether there is any."""
-    found = list(sentences)
-    for sentence in found:
-        assert sentence.isprintable(), f"not printable: {sentence!r:.200}"
-        assert 0 < len(sentence) <= LONGEST_SENTENCE, f"{len(sentence)} characters: {sentence!r:.200}"
-    return bool(found)
-
-
-def harmless(text: str) -> None:
-    """Check that a terminal would obey nothing in a text: control characters, forced direction, half characters."""
-    obeyed = [c for c in text if ord(c) < 32 or 0x7F <= ord(c) <= 0x9F or 0xD800 <= ord(c) <= 0xDFFF or c in _TURNS]
-    assert not obeyed, f"obeyed by a terminal: {obeyed} in {text!r:.200}"
-    assert len(text) <= 2000, f"{len(text)} characters"
-
-
-def mutated(text: str, chance: random.Random) -> str:
-    """Return a text with a few characters changed."""
-    for _ in range(chance.choice([1, 1, 2, 3, 8])):
-        place = chance.randrange(len(text) + 1)
-        end = min(len(text), place + chance.choice([0, 0, 1, 1, 2, 9]))
-        gentle = chance.choice("0123456789.,' -")
-        strange = chance.choice([chance.choice(STRANGE), chr(chance.randrange(32, 127))])
-        new = chance.choice(["", gentle, gentle, strange, text[place:end] * 2])
-        text = text[:place] + new + text[end:]
-    return text
-
-
-def noise(chance: random.Random) -> str:
-    """Return a text that means nothing."""
-    if chance.random() < 0.01:
-        return chance.choice(STRANGE) * chance.choice([100, 10_000])
-    return "".join(
-        chance.choice([chance.choice(STRANGE), chr(chance.randrange(0x20, 0x250)), chr(chance.randrange(0x110000))])
-        for _ in range(chance.randrange(12))
-    )
-
-
-def words(chance: random.Random, most: int = 20) -> str:
-    """Return a harmless text."""
-    return "".join(chance.choice(WORDS) for _ in range(chance.randrange(1, most)))
-
 
 # The doors; each returns whether it took the input.
 
@@ -205,15 +133,6 @@ def form(chance: random.Random, tally: Tally) -> bool:
     return not any(line.refusal for line in lines.values())
 
 
-def _json_noise(chance: random.Random, depth: int = 0) -> Any:
-    kinds = [None, True, 10**400, -1, 1.5, 1e308, noise(chance), words(chance), "bar", "9" * 70]
-    if depth < 4 and chance.random() < 0.5:
-        many = range(chance.randrange(4))
-        made = [_json_noise(chance, depth + 1) for _ in many]
-        return made if chance.random() < 0.5 else {words(chance): value for value in made}
-    return chance.choice(kinds)
-
-
 def _settings(chance: random.Random) -> Settings:
     return Settings(
         site_pressure_text=f"{chance.randrange(3000)} m",
@@ -235,7 +154,7 @@ def settings_file(chance: random.Random, tally: Tally, folder: Path) -> bool:
     way = chance.randrange(3)
     if way == 1:
         for name in chance.sample([*content, "other"], 3):
-            content[name] = _json_noise(chance)
+            content[name] = json_noise(chance)
     text = json.dumps(content)
     path.write_bytes((mutated(text, chance) if way == 2 else text).encode("utf-8", "surrogatepass"))
     found, faults = load_settings(path)
@@ -253,7 +172,7 @@ def draft_file(chance: random.Random, tally: Tally, folder: Path) -> bool:
     path = folder / "draft.json"
     draft = {"pane": "superheat", "note": words(chance), "forms": {"superheat": {"texts": {"a": words(chance)}}}}
     whole = chance.random() < 0.3
-    text = json.dumps(draft if whole else {**draft, words(chance): _json_noise(chance)}, ensure_ascii=False)
+    text = json.dumps(draft if whole else {**draft, words(chance): json_noise(chance)}, ensure_ascii=False)
     path.write_bytes((text if whole else mutated(text, chance)).encode("utf-8", "surrogatepass"))
     found, faults = load_draft(path)
     told(faults)
@@ -321,41 +240,13 @@ def compressors_file(chance: random.Random, tally: Tally, folder: Path) -> bool:
     return not faults
 
 
-def logbook_row(chance: random.Random, tally: Tally) -> bool:
-    """A row whole or with other columns: the entry as it was kept, or what can be read of it and a word."""
-    entry = cleaned(
-        Entry(
-            number=chance.randrange(1, 10**6), kept_at=datetime.fromtimestamp(chance.randrange(10**9, 2 * 10**9), UTC),
-            check="superheat", refrigerant="R-454C", tag=words(chance), note=words(chance, 200),
-            readings={words(chance): words(chance)}, values={"p": chance.uniform(0, 1e7)},
-            findings={"superheat": {"value": chance.uniform(-9, 9), "unit": "K"}}, cautions=[words(chance)],
-            headline=words(chance),
-        )
-    )  # fmt: skip
-    row = to_row(entry)
-    whole = chance.random() < 0.3
-    if not whole:
-        for place in chance.sample(range(1, len(row)), 3):
-            was = str(row[place])
-            blob: Any = chance.choice([None, 5, 1.5, b"\xff\xfe", noise(chance), json.dumps(_json_noise(chance)), ""])
-            row[place] = chance.choice([mutated(was, chance), blob])
-    found = from_row(tuple(row))
-    misread_unless(not whole or found == entry, (entry, found))
-    shown = [found.check, found.refrigerant, found.tag, found.note, found.headline, *found.notes, *found.cautions]
-    shown += [*found.readings, *found.readings.values(), *found.options.values(), *found.findings]
-    for text in shown:
-        harmless(text)
-    from_row(tuple(to_row(cleaned(found))))
-    return True
-
-
 Door = Callable[..., bool]
 # Out of a hundred inputs.
 DOORS: dict[Door, int] = {
-    reading: 22, mutated_reading: 26, state: 6, mutated_state: 12, form: 4, settings_file: 8, draft_file: 4, theme: 5,
-    refrigerants_file: 3, compressors_file: 3, logbook_row: 7,
+    reading: 19, mutated_reading: 23, state: 5, mutated_state: 10, form: 4, settings_file: 6, draft_file: 3, theme: 4,
+    refrigerants_file: 3, compressors_file: 3, logbook_row: 6, imported_logbook: 6, batch_rows: 8,
 }  # fmt: skip
-_NEEDS_FOLDER = (settings_file, draft_file, refrigerants_file, compressors_file)
+_NEEDS_FOLDER = (settings_file, draft_file, refrigerants_file, compressors_file, imported_logbook)
 
 
 def one_input(door: Door, chance: random.Random, tally: Tally, folder: Path) -> None:
