@@ -45,7 +45,7 @@ def run_batch(arguments: Namespace, put: Printer, tell: Printer) -> int:
         lines = Lines(file, arguments.file, LONGEST_LINE)
         numbered = enumerate(lines, 1)
         header = read_header(check, _first(numbered), words, under.dress, under.site)
-        batch = _Batch(header, under, Logbook(under.home.logbook_file), tell)
+        batch = _Batch(header, under, Logbook(under.home.logbook_file), tell, "," if arguments.decimal_comma else ".")
         with nullcontext() if target is None else written_whole(target, arguments.replace) as out:
             if out is not None:
                 put = _into(out, lines.marked and not arguments.json)
@@ -120,13 +120,14 @@ class _Row:
 class _Batch:
     """The rows under one header; nothing of a row is kept when the next one is read."""
 
-    def __init__(self, header: Header, under: Terms, logbook: Logbook, tell: Printer) -> None:
+    def __init__(self, header: Header, under: Terms, logbook: Logbook, tell: Printer, point: str) -> None:
         self.refused = 0
         self._answered = 0
         self._header = header
         self._under = under
         self._logbook = logbook
         self._tell = tell
+        self._point = point
         self._told: set[str] = set()
         self._say_the_beginning()
 
@@ -235,7 +236,7 @@ class _Batch:
         if to is None or isinstance(value, str):
             return cell(str(value))
         text = write(value, to, line.kind, self._under.site)
-        return text.removesuffix(to.label).strip().removesuffix("-")
+        return text.removesuffix(to.label).strip().removesuffix("-").replace(".", self._point)
 
     def _carried(self, row: _Row, place: int) -> str:
         text = row.cells[place] if place < len(row.cells) else ""

@@ -268,8 +268,7 @@ def _add_table(commands: Any) -> None:
 def _add_batch(commands: Any) -> None:
     from gaugeside.checks import CHECKS
 
-    summary = "one check on every row of a table of readings"
-    command = commands.add_parser("batch", help=summary, **_with_example("batch"), description=_BATCH)
+    command = commands.add_parser("batch", help="one check on every row of a table", **_with_example("batch"))
     checks = command.add_subparsers(title="checks", metavar="CHECK", required=True)
     for check in CHECKS.values():
         rows = checks.add_parser(check.name, help=_plain(check.summary), description=_BATCH)
@@ -281,6 +280,7 @@ def _add_batch(commands: Any) -> None:
         for line in (line for line in words if not line.choices):
             rows.add_argument(line.name, nargs="?", help=_plain(f"{line.help} Unless a column says it."))
         rows.add_argument("file", metavar="FILE", help="a table with a header, as CSV; - for standard input")
+        rows.add_argument("--decimal-comma", action="store_true", help="write findings with a decimal comma")
         _add_target(rows)
         _add_common(rows)
         rows.add_argument("--datum", choices=("iir", "ashrae", "nbp"), help="zero of the enthalpies")

@@ -5,9 +5,11 @@ from __future__ import annotations
 import codecs
 import os
 import re
+import signal
 import stat
 import sys
 import tempfile
+import threading
 from collections.abc import Iterator
 from contextlib import contextmanager, suppress
 from pathlib import Path
@@ -91,24 +93,46 @@ def written_whole(name: str, replace: bool) -> Iterator[BinaryIO]:
     path = Path(name)
     _refuse_what_is_there(path, replace)
     temporary = ""
-    try:
-        handle, temporary = tempfile.mkstemp(prefix=".gaugeside-", dir=path.parent)
-        with os.fdopen(handle, "wb") as file:
-            yield file
-            file.flush()
-            os.fsync(file.fileno())
-        _put(temporary, path, replace)
-    except BrokenPipeError:
-        raise
-    except OSError as fault:
-        raise Refusal(
-            f"{_told(name)} cannot be written: {reason(fault)}.", "Nothing was changed there; name another file."
-        ) from fault
-    finally:
-        with suppress(OSError):
-            if temporary:
-                os.unlink(temporary)
+    with _ended_in_order():
+        try:
+            handle, temporary = tempfile.mkstemp(prefix=".gaugeside-", dir=path.parent)
+            with os.fdopen(handle, "wb") as file:
+                yield file
+                file.flush()
+                os.fsync(file.fileno())
+            _put(temporary, path, replace)
+        except BrokenPipeError:
+            raise
+        except OSError as fault:
+            raise Refusal(
+                f"{_told(name)} cannot be written: {reason(fault)}.", "Nothing was changed there; name another file."
+            ) from fault
+        finally:
+            with suppress(OSError):
+                if temporary:
+                    os.unlink(temporary)
     sync_folder(path.parent)
+
+
+@contextmanager
+def _ended_in_order() -> Iterator[None]:
+    """Let a signal that would end the program on the spot, as a dropped link does, clear up on its way first."""
+
+    def leave(number: int, frame: object) -> None:
+        raise SystemExit(128 + number)
+
+    held = []
+    if threading.current_thread() is threading.main_thread():
+        wanted = [getattr(signal, name) for name in ("SIGHUP", "SIGTERM") if hasattr(signal, name)]
+        # One that is ignored, or already looked after, stays so.
+        held = [number for number in wanted if signal.getsignal(number) is signal.SIG_DFL]
+    try:
+        for number in held:
+            signal.signal(number, leave)
+        yield
+    finally:
+        for number in held:
+            signal.signal(number, signal.SIG_DFL)
 
 
 def _refuse_what_is_there(path: Path, replace: bool) -> None:

@@ -7,15 +7,18 @@ import io
 import json
 import os
 import re
+import signal
 import stat
 import subprocess
 import sys
+import time
 from collections.abc import Callable
 from pathlib import Path
 from typing import Any
 
 import pytest
 
+from gaugeside import answering
 from gaugeside.cli import main
 from gaugeside.files import Lines
 from gaugeside.logbook import Logbook
@@ -460,6 +463,41 @@ def process(home: Path, *words: str, **changes: str) -> subprocess.Popen[bytes]:
         [sys.executable, "-m", "gaugeside", "batch", *words], env={**clean_environ(home), **changes},
         stdin=subprocess.PIPE, stdout=subprocess.PIPE, stderr=subprocess.PIPE,
     )  # fmt: skip
+
+
+@pytest.mark.parametrize("name", ["SIGTERM", "SIGHUP", "SIGINT"])
+def test_a_program_that_is_ended_takes_its_half_answer_along(name: str, tmp_path: Path) -> None:
+    folder = tmp_path / "answers"
+    folder.mkdir()
+    with process(tmp_path, "saturation", "R-134a", "-", "--to", str(folder / "new")) as running:
+        assert running.stdin is not None
+        running.stdin.write(b"reading\n5 C\n")
+        running.stdin.flush()
+        deadline = time.monotonic() + 20
+        while not list(folder.iterdir()):
+            assert time.monotonic() < deadline, "it never began to write"
+            time.sleep(0.01)
+        running.send_signal(getattr(signal, name))
+        assert running.wait(20) == 128 + getattr(signal, name)
+        assert list(folder.iterdir()) == []
+
+
+def test_a_fault_of_the_program_refuses_its_row_alone(run: Run, monkeypatch: pytest.MonkeyPatch) -> None:
+    def perform(asked: Any) -> Any:
+        return sound(asked) if asked["values"]["reading"]["temperature"] > 280 else 1 // 0
+
+    sound = answering.perform
+    monkeypatch.setattr(answering, "perform", perform)
+    first, second = run("saturation R-134a", "reading\n5 C\n10 C\n").rows
+    assert first["refused"].startswith("The program met a fault on these readings (ZeroDivisionError).")
+    assert second["refused"] == ""
+
+
+def test_a_decimal_comma_is_written_where_it_is_asked_for(run: Run) -> None:
+    for delimiter in ",;":
+        table = f"reading{delimiter}note\n0 °C{delimiter}1.5\n"
+        (row,) = run("saturation R-134a", table, "--decimal-comma").rows
+        assert (row["dew pressure [bar abs]"], row["note"]) == ("2,93", "1.5")
 
 
 def test_a_growing_table_is_answered_as_it_grows(tmp_path: Path) -> None:

@@ -196,7 +196,8 @@ def _entries(text: str, place: int, document: Document) -> int:
         found, place = _value(text, place)
         count = len(document.entries) + document.refused + 1
         if count > MOST_ENTRIES:
-            raise Refusal(f"The file holds more than {MOST_ENTRIES} entries.", "Export it in parts, by words that choose fewer entries.")
+            words = "Export it in parts, by words that choose fewer entries."
+            raise Refusal(f"The file holds more than {MOST_ENTRIES} entries.", words)
         try:
             document.entries.append(entry_from(found))
         except ValueError as fault:
