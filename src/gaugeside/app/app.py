@@ -21,7 +21,7 @@ from gaugeside.app.panes.logbook import LogbookPane
 from gaugeside.app.panes.sheet import SheetPane
 from gaugeside.app.panes.site import SitePane
 from gaugeside.app.themes import CURSOR_STYLE
-from gaugeside.app.widgets.dialogs import Dialog, Help, MachineAndNote, Menu, RefrigerantPicker
+from gaugeside.app.widgets.dialogs import Dialog, Help, IntoFile, MachineAndNote, Menu, RefrigerantPicker
 from gaugeside.app.widgets.lines import CAUTION, MUTED, Line, QuietScreen
 from gaugeside.checks import CHECKS
 from gaugeside.errors import Refusal
@@ -220,7 +220,7 @@ class GaugesideApp(House):
             if isinstance(found, Refrigerant):
                 self.use(found)
                 if self.settings.tag:
-                    self.say(f"What is kept goes under machine {self.settings.tag}; F9 changes it.")
+                    self.say(f"What is kept goes under machine {self.settings.tag}; F9 changes it.", stays=True)
 
         await self._open(RefrigerantPicker(), picked)
 
@@ -244,8 +244,8 @@ class GaugesideApp(House):
                 return
             tag, self.note = words
             self.apply(replace(self.settings, tag=tag[:60]))
-            self.say(f"Kept next: machine {tag or '-'}, note {self.note or '-'}.")
             self.form_changed()
+            self.say(f"Kept next: machine {tag or '-'}, note {self.note or '-'}.", stays=True)
 
         await self._open(MachineAndNote(title, *words), given)
 
@@ -299,6 +299,13 @@ class GaugesideApp(House):
         pane = self._pane()
         if isinstance(pane, LogbookPane):
             pane.undo()
+
+    async def action_write_entries(self) -> None:
+        """Write the entries that the logbook shows into a file."""
+        await self.action_pane("logbook")
+        pane = self._pane()
+        if isinstance(pane, LogbookPane):
+            await self._open(IntoFile(*pane.into_file()), None)
 
     def action_scroll_pane(self, by: int) -> None:
         """Scroll the pane by most of its height."""

@@ -40,7 +40,7 @@ class Book:
             try:
                 found = work(self._logbook)
             except Refusal as refusal:
-                self._deliver(self._done, refused, refusal)
+                self._deliver(self._done, refused, self._without_path(refusal))
             except Exception as fault:
                 # A thread's exception would be lost, and with it the word that nothing was kept.
                 why = Refusal(f"The logbook met a fault ({type(fault).__name__}: {fault}).", "The sheet is not lost.")
@@ -61,6 +61,12 @@ class Book:
     def close(self) -> None:
         """Finish what was asked for."""
         self._thread.shutdown(wait=True)
+
+    def _without_path(self, refusal: Refusal) -> Refusal:
+        # It would fill the two lines that a sentence has, and the reason stands behind it; the site pane shows it.
+        path = str(self._logbook.path)
+        short = refusal.message.replace(f"The logbook {path}", "The logbook").replace(path, "the logbook")
+        return Refusal(short, refusal.hint, refusal.field)
 
     def _done(self, callback: Callable[[Any], None], found: Any) -> None:
         self._waiting -= 1

@@ -189,9 +189,10 @@ class House(KeysInTurn):
 
     def form_changed(self) -> None:
         """Something was typed: save the forms soon, drop messages that have been read."""
-        self._messages.clear()
-        self.word_stays = False
-        if self.under_way:
+        # Fields tell of the text they start with, too: before the first frame nothing has been read.
+        if self.is_painted:
+            self._messages.clear()
+            self.word_stays = False
             self.saver.draft(self.draft())
 
     def draft(self) -> dict[str, Any]:
@@ -221,19 +222,17 @@ class House(KeysInTurn):
         # First: an earlier word, such as that it was not kept, must not cover this one.
         self.form_changed()
         if kept.already:
-            self.say(f"Already kept at {at} as entry {kept.entry.number}: the same within ten minutes is one entry.")
+            words = f"Already kept at {at} as entry {kept.entry.number}: the same within ten minutes is one entry."
+            self.say(words, stays=True)
             return
         self.head()
         machine = f" for {kept.entry.tag}" if kept.entry.tag else ""
-        self.say(f"Kept at {at} as entry {kept.entry.number}{machine}. F6 shows the logbook.")
+        self.say(f"Kept at {at} as entry {kept.entry.number}{machine}. F6 shows the logbook.", stays=True)
         for pane in self.base.query(LogbookPane):
             pane.reload()
 
     def _not_kept(self, refusal: Refusal) -> None:
-        # Its path would fill the two lines, and the reason stands behind it; the site pane shows the path.
-        path = str(self.places.logbook_file)
-        why = refusal.sentence().replace(f"The logbook {path}", "The logbook").replace(path, "the logbook")
-        self.trouble(f"NOT KEPT: {why}", first=True)
+        self.trouble(f"NOT KEPT: {refusal.sentence()}", first=True)
 
     async def open_entry(self, entry: Entry) -> None:
         """Bring an entry's readings back into their pane."""
