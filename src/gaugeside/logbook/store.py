@@ -84,7 +84,7 @@ class Logbook:
             self._set_damaged_aside()
             kept = self._keep(entry)
         # Whoever reads what became of the damaged one need not look elsewhere for what became of this entry.
-        self.messages[:] = [f"{message} Kept there as entry {kept.entry.number}." for message in self.messages]
+        self.messages[:] = [f"Kept as entry {kept.entry.number}. {message}" for message in self.messages]
         return kept
 
     def entries(self, filter_text: str = "", limit: int = 200, offset: int = 0) -> list[Entry]:
@@ -340,14 +340,14 @@ class Logbook:
         aside = damage.set_aside(self.path, seen, self._busy_seconds)
         if aside is None:
             return
-        where = f"Damaged logbook set aside untouched as {aside.name};"
-        self.messages.append(f"{where} a new one is begun.")
+        where = f"the damaged one, set aside as {aside.name}."
+        self.messages.append(f"A new logbook is begun after {where}")
         saved = damage.readable_entries(aside)
         if saved:
             with self._writing() as connection:
                 insert = INSERT.replace("INSERT", "INSERT OR IGNORE", 1)
                 added = connection.executemany(insert, [to_row(cleaned(entry)) for entry in saved]).rowcount
-            self.messages[-1] = f"{where} {added} entries read from it are in a new one."
+            self.messages[-1] = f"A new logbook is begun with {added} entries of {where}"
 
 
 def _create_private_file(path: Path) -> None:
