@@ -58,24 +58,28 @@ def places(environ: Mapping[str, str] | None = None, logbook: Path | None = None
     """
     home = (os.environ if environ is None else environ).get("GAUGESIDE_HOME", "")
     if home:
-        settings_folder = data_folder = state_folder = _whole(home)
+        settings_folder = data_folder = state_folder = whole_path(home)
     else:
-        settings_folder = platformdirs.user_config_path("gaugeside", appauthor=False)
-        data_folder = platformdirs.user_data_path("gaugeside", appauthor=False)
-        state_folder = platformdirs.user_state_path("gaugeside", appauthor=False)
+        try:
+            settings_folder = platformdirs.user_config_path("gaugeside", appauthor=False)
+            data_folder = platformdirs.user_data_path("gaugeside", appauthor=False)
+            state_folder = platformdirs.user_state_path("gaugeside", appauthor=False)
+        except RuntimeError:
+            # No home folder is known; what would be kept there is refused when it comes to that.
+            settings_folder = data_folder = state_folder = Path("~", "gaugeside")
     own_logbook = data_folder / "logbook.sqlite3"
     return Places(
         settings_folder=settings_folder,
         data_folder=data_folder,
         settings_file=settings_folder / "settings.json",
         draft_file=data_folder / "draft.json",
-        logbook_file=own_logbook if logbook is None else _whole(logbook),
+        logbook_file=own_logbook if logbook is None else whole_path(logbook),
         themes_folder=settings_folder / "themes",
         log_file=state_folder / "helper.log",
     )
 
 
-def _whole(path: str | Path) -> Path:
+def whole_path(path: str | Path) -> Path:
     """Return a path from the root; Refusal where the home or the folder it starts from is not known."""
     expanded = os.path.expanduser(path)
     if expanded.startswith("~"):
@@ -333,6 +337,8 @@ def make_private_folder(folder: Path) -> None:
     """
     try:
         _make_private_folder(folder)
+    except Refusal:
+        raise
     except (OSError, ValueError) as fault:
         raise Refusal(
             f"The folder {folder} cannot be created: {reason(fault)}.",
