@@ -347,7 +347,7 @@ def test_a_garbage_file_is_set_aside_by_the_next_keep(path: Path) -> None:
     (aside,) = path.parent.glob("logbook-damaged-*.sqlite3")
     assert aside.read_bytes() == b"these are not the readings" * 400
     assert book.messages == [
-        f"Damaged logbook set aside untouched as {aside.name}; a new one is begun. Kept there as entry 1."
+        f"Kept as entry 1. A new logbook is begun after the damaged one, set aside as {aside.name}."
     ]
     assert [found.note for found in Logbook(path).entries()] == ["after"]
 
@@ -400,7 +400,7 @@ def test_what_a_truncated_file_still_holds_is_carried_over(path: Path) -> None:
     found = {kept.number: kept.note for kept in book.entries(limit=-1)}
     assert found.pop(fresh.number) == "after"
     (message,) = book.messages
-    assert f"{len(found)} entries read from it" in message
+    assert f"with {len(found)} entries of the damaged one" in message
     assert len(found) >= 30
     assert all(number and note == f"{number - 1} " + "n" * 600 for number, note in found.items())
 
@@ -473,6 +473,31 @@ def test_a_path_with_control_characters_is_told_harmlessly(tmp_path: Path) -> No
     with pytest.raises(LogbookTrouble) as trouble:
         Logbook(path).entries()
     assert trouble.value.sentence().isprintable()
+
+
+def test_a_kept_entry_outlasts_a_power_cut(path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    """Write with the two settings under which an acknowledged entry is on the disk, its journal's end included.
+
+    EXTRA is DELETE's only setting that syncs the folder after the journal is unlinked: SQLite, PRAGMA synchronous.
+    """
+    under: list[tuple[str, int]] = []
+
+    class Watched(sqlite3.Connection):
+        def execute(self, statement: str, *values: object) -> sqlite3.Cursor:  # type: ignore[override]
+            if statement == "COMMIT" and self.total_changes:
+                ((journal,),) = super().execute("PRAGMA journal_mode").fetchall()
+                ((synchronous,),) = super().execute("PRAGMA synchronous").fetchall()
+                under.append((journal, synchronous))
+            return super().execute(statement, *values)  # type: ignore[arg-type]
+
+    connect = sqlite3.connect
+    monkeypatch.setattr(sqlite3, "connect", lambda *words, **options: connect(*words, factory=Watched, **options))
+    book = Logbook(path)
+    book.keep(entry("first"))
+    book.change(1, note="changed")
+    book.restore(book.delete(1))
+    assert under == [("delete", 3)] * 4
+    assert [file.name for file in path.parent.iterdir()] == ["logbook.sqlite3"]
 
 
 def test_full_disk_keeps_what_was_there(path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
