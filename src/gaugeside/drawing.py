@@ -3,13 +3,12 @@
 from __future__ import annotations
 
 import math
-import textwrap
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
 from itertools import pairwise
 
 from gaugeside.checks.picture import Picture, PictureKind, PicturePoint, Spot
-from gaugeside.checks.view import ascii_only
+from gaugeside.checks.view import ascii_only, wrapped
 from gaugeside.quantities import (
     Dress,
     Kind,
@@ -211,11 +210,11 @@ def _finished(
     rows: Sequence[str], legend: Iterable[str], marks: tuple[tuple[int, int], ...], width: int, ascii_alone: bool
 ) -> Drawing:
     plain = ascii_only if ascii_alone else str
-    wrapped: list[str] = []
+    lines: list[str] = []
     for line in map(plain, legend):
         whole = len(line) <= width
-        wrapped += [line] if whole else textwrap.wrap(" ".join(line.split()), max(width, 20), subsequent_indent="  ")
-    return Drawing(tuple(plain(row).rstrip() for row in rows), tuple(wrapped), marks)
+        lines += [line] if whole else wrapped(" ".join(line.split()), max(width, 20), "  ")
+    return Drawing(tuple(plain(row).rstrip() for row in rows), tuple(lines), marks)
 
 
 def _frame(picture: Picture, units: _Units) -> tuple[tuple[float, float], tuple[float, float]] | None:

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import json
-import textwrap
 from argparse import Namespace
 from collections.abc import Callable, Mapping
 from dataclasses import replace
@@ -22,6 +21,7 @@ from gaugeside.checks.view import (
     sentence,
     site_line,
     table,
+    wrapped,
 )
 from gaugeside.drawing import draw
 from gaugeside.errors import Refusal
@@ -123,7 +123,7 @@ def _as_text(check: Check, answer: Answer, typed: Mapping[str, TypedLine], dress
     lines.append("-" * 78)
     for word, remarks in (("Caution: ", answer.cautions), ("Note: ", answer.notes)):
         for remark in remarks:
-            lines += textwrap.wrap(word + sentence(remark, dress, site), _WIDTH, subsequent_indent="  ")
+            lines += wrapped(word + sentence(remark, dress, site), _WIDTH, "  ")
     return [*lines, FOOTNOTE]
 
 

@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
+import csv
 import json
 import os
 import signal
 import sqlite3
+import stat
 import sys
 import threading
 from contextlib import closing
@@ -398,12 +400,10 @@ async def test_typing_scrolls_the_field_into_a_low_window(size: tuple[int, int])
     async with sheet(size=size) as shown:
         assert f"{size[0]}x{size[1]}" in shown.lines()[-1]
         await shown.press(*["tab"] * 5)
-        await shown.pilot.pause(0.1)
-        field = shown.app.focused
+        await shown.wait(lambda: shown.focus == "discharge_temperature")
+        field, pane = shown.app.focused, shown.pane("superheat")
         assert field is not None
-        assert field.id == "discharge_temperature"
-        pane = shown.pane("superheat")
-        assert pane.region.contains_region(field.region), "the field that is typed in can be seen"
+        await shown.wait(lambda: pane.region.contains_region(field.region), "the field typed in to be seen")
         assert "PgDn" in shown.lines()[-1] or "PageDown" in shown.lines()[-1]
 
 
@@ -430,3 +430,35 @@ async def test_no_thread_and_no_helper_outlive_the_app() -> None:
     names = {thread.name for thread in threading.enumerate()}
     assert not [name for name in names if name in ("engine", "saver") or name.startswith("logbook")]
     assert not Path(f"/proc/{pid}").exists()
+
+
+async def test_the_logbook_goes_into_a_file_and_a_file_that_is_there_stays(tmp_path: Path) -> None:
+    async with sheet() as shown:
+        await shown.type("2 bar g\t5 C\n")
+        await shown.see("Kept at")
+        table = tmp_path / "mine.csv"
+        await shown.press("ctrl+o", "w")
+        await shown.see("Write the whole logbook into a file")
+        assert shown.app.screen.focused is not None
+        await shown.press("ctrl+u")
+        await shown.type(f"{tmp_path}/mine.txt\n")
+        await shown.see("must end in .csv or .json")
+        await shown.press("backspace", "backspace", "backspace")
+        await shown.type("csv\n")
+        await shown.see(f"Written: {table}")
+        rows = list(csv.DictReader(table.read_text().splitlines()))
+        assert [(row["suction pressure"], row["suction temperature"]) for row in rows] == [("2 bar g", "5 C")]
+        assert stat.S_IMODE(table.stat().st_mode) == 0o600
+        table.write_text("another's")
+        await shown.press("ctrl+o", "w")
+        await shown.see("Write the whole logbook into a file")
+        await shown.press("ctrl+u")
+        await shown.type(f"{table}\n")
+        await shown.see("is there already")
+        assert table.read_text() == "another's"
+        await shown.press("ctrl+u")
+        await shown.type(f"{tmp_path}/mine.json\n")
+        await shown.see("Written: ")
+        assert [entry["readings"] for entry in json.loads((tmp_path / "mine.json").read_text())["entries"]] == [
+            {"suction_pressure": "2 bar g", "suction_temperature": "5 C"}
+        ]

@@ -2,8 +2,7 @@
 
 from __future__ import annotations
 
-import textwrap
-
+from gaugeside.checks.view import wrapped
 from gaugeside.quantities import Site
 from gaugeside.refrigerants import Refrigerant
 
@@ -25,7 +24,7 @@ TINY = 40
 
 _KEYS = "Enter keep F1 help F8 refrigerant F9 machine, note ^G picture ^O menu F10 leave"
 _OTHER_KEYS = {
-    "logbook": "Enter open  F1 help  F9 machine, note  Del delete  Ctrl+Z undo  Ctrl+O menu",
+    "logbook": "Enter open  F1 help  F9 machine, note  Del delete  ^Z undo  ^O menu  ^O W to file",
     "site": "Left Right choose  F1 help  Ctrl+O menu  F10 leave",
 }
 # Letter, words, action.
@@ -44,6 +43,7 @@ MENU = (
     ("c", "clear this sheet", "clear_sheet"),
     ("d", "delete the logbook entry selected", "delete_entry"),
     ("u", "bring back the entry deleted last", "undo_delete"),
+    ("w", "write the entries shown into a file", "write_entries"),
     ("h", "help", "help"),
     ("l", "paint the screen again", "repaint"),
     ("q", "leave", "leave"),
@@ -93,11 +93,11 @@ def rule_line(width: int, above: bool, below: bool) -> str:
 
 def word_lines(text: str, standing: str, width: int) -> list[str]:
     """Return a sentence in at most two lines; what stands there without it keeps the second where one is enough."""
-    lines = textwrap.wrap(text, max(10, width - 1))
+    lines = wrapped(text, max(10, width - 1))
     if len(lines) > 2:
         lines = [lines[0], f"{lines[1][: max(1, width - 5)]} ..."]
     if not lines and len(standing) > width:
-        lines = textwrap.wrap(standing, width)
+        lines = wrapped(standing, width)
     if len(lines) > 1:
         return lines[:2]
     return [*lines, *[""] * (1 - len(lines)), standing if len(standing) <= width else ""]

@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-import textwrap
 from collections.abc import Sequence
 
 from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, Styled
 from gaugeside.checks.sheet import Check, Entry
 from gaugeside.checks.typed import FieldUnits, takes
+from gaugeside.checks.view import wrapped
 from gaugeside.quantities import Dress, Kind, bare_labels, example
 
 _WIDEST = 80
@@ -94,7 +94,7 @@ def _wrapped(label: str, text: str, column: int, width: int, style: str = "") ->
         head, column = ([(f"  {label}", style)] if label else []), 4 if label else min(column, 2)
     else:
         head = []
-    parts = textwrap.wrap(text, max(10, width - column))
+    parts = wrapped(text, max(10, width - column))
     first = "" if head else f"  {label}"
     return [*head, *((f"{first if not n else '':<{column}}{part}", style) for n, part in enumerate(parts))]
 

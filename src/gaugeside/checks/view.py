@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import textwrap
 from dataclasses import dataclass
 
 from gaugeside.checks.sheet import Answer, Check, FindingLine, Remark, Table
@@ -24,6 +25,11 @@ from gaugeside.quantities import (
 
 FOOTNOTE = "Estimates from the readings typed; maker's figures and local rules come first."
 _EVERY_PRESSURE = ("bar", "kPa", "MPa", "psi", "kgf/cm2", "inHg", "mmHg")
+
+
+def wrapped(text: str, width: int, indent: str = "") -> list[str]:
+    """Return a text in lines of at most `width` characters, the later ones indented; designations stay whole."""
+    return textwrap.wrap(text, width, subsequent_indent=indent, break_on_hyphens=False)
 
 
 @dataclass(frozen=True)

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import textwrap
 from collections.abc import Mapping, Sequence
 from typing import Any
 
@@ -10,7 +9,7 @@ from gaugeside.app.charset import is_ascii
 from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, Styled
 from gaugeside.checks.picture import Picture
 from gaugeside.checks.sheet import Answer, Check, Remark
-from gaugeside.checks.view import FindingText, TableText, every_pressure, findings, sentence, table
+from gaugeside.checks.view import FindingText, TableText, every_pressure, findings, sentence, table, wrapped
 from gaugeside.drawing import draw
 from gaugeside.engine import Reply
 from gaugeside.errors import Refusal
@@ -51,7 +50,7 @@ def answer_lines(
         tables.insert(0, pressures)
     if len(tables) == 1:
         # Alone it stands under its title, which says the units.
-        lines += [(text, MUTED) for text in textwrap.wrap(tables[0].title, width)]
+        lines += [(text, MUTED) for text in wrapped(tables[0].title, width)]
     lines += [(text, "") for text in side_by_side(tables, width)]
     return lines + _remarks(answer.notes, dress, site, width, MUTED, standing)
 
@@ -77,19 +76,19 @@ def _remarks(
     remarks: Sequence[Remark], dress: Dress, site: Site, width: int, style: str, standing: Sequence[str]
 ) -> list[Styled]:
     texts = [text for remark in remarks if (text := sentence(remark, dress, site)) not in standing]
-    return [(line, style) for text in texts for line in textwrap.wrap(text, width, subsequent_indent="  ")]
+    return [(line, style) for text in texts for line in wrapped(text, width, "  ")]
 
 
 def finding_lines(found: FindingText, width: int) -> list[str]:
     """Return one finding as lines; what does not fit beside the numbers goes on under itself."""
     if width < 60:
         words = f"{found.label}  {found.first}  {found.second}  {found.remark}".strip()
-        return textwrap.wrap(words, width, subsequent_indent="    ")
+        return wrapped(words, width, "    ")
     label, first, second = (16, 17, 17) if found.paired else (21, 13, 12)
     # Words may be wider than their column: two blanks keep them apart.
     apart = "  " if len(found.first) > first else " "
     head = f"{found.label:<{label}} {found.first:<{first}}{apart}{found.second:<{second}} "
-    beside = textwrap.wrap(found.remark, max(12, width - len(head))) or [""]
+    beside = wrapped(found.remark, max(12, width - len(head))) or [""]
     return [(head + beside[0]).rstrip(), *(" " * len(head) + more for more in beside[1:])]
 
 

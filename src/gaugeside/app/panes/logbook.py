@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
-import textwrap
+from collections.abc import Callable
+from datetime import datetime
+from pathlib import Path
 from typing import TYPE_CHECKING, cast
 
 from textual import on
@@ -13,10 +15,13 @@ from textual.widget import Widget
 from textual.widgets import Input
 
 from gaugeside.app.frame import WIDE
+from gaugeside.app.widgets.dialogs import IntoFile
 from gaugeside.app.widgets.field import FieldLine, TextField
 from gaugeside.app.widgets.lines import CAUTION, MUTED, RULE, Line, Lines, Styled
+from gaugeside.checks.view import wrapped
 from gaugeside.errors import Refusal
 from gaugeside.logbook import Entry
+from gaugeside.logbook.outgoing import write_file
 
 if TYPE_CHECKING:
     from gaugeside.app.house import House
@@ -151,7 +156,7 @@ class LogbookPane(VerticalScroll, can_focus=False):
 
     def _wrapped(self, text: str, style: str) -> list[Styled]:
         width = max(16, (self.size.width or self.app.size.width) - 1)
-        return [(line, style) for line in textwrap.wrap(text, width, subsequent_indent="  ")]
+        return [(line, style) for line in wrapped(text, width, "  ")]
 
     @on(Input.Changed)
     def _filtered(self, event: Input.Changed) -> None:
@@ -203,6 +208,33 @@ class LogbookPane(VerticalScroll, can_focus=False):
             self._refused(refusal)
 
         self.house.book.do(lambda logbook: logbook.restore(entry), is_back, is_not_back)
+
+    def into_file(self) -> tuple[str, str, Callable[[str, IntoFile], None]]:
+        """Return what the dialog for a file needs: title, a name to start from, what writes."""
+        words = self.filter_text.strip()
+        title = f"Write the entries with {words!r} into a file" if words else "Write the whole logbook into a file"
+        name = f"~/gaugeside-{datetime.now():%Y-%m-%d}.csv"
+
+        def write(typed: str, dialog: IntoFile) -> None:
+            suffix = Path(typed).suffix.casefold()
+            if suffix not in (".csv", ".json"):
+                dialog.refuse(
+                    Refusal("The name must end in .csv or .json, which says what is written.", f"Type {name}.")
+                )
+                return
+
+            def is_written(path: Path) -> None:
+                if dialog.is_attached:
+                    dialog.dismiss(None)
+                self.house.say(f"Written: {path}")
+
+            self.house.book.do(
+                lambda logbook: write_file(logbook, words, typed, as_csv=suffix == ".csv"),
+                is_written,
+                lambda refusal: dialog.refuse(refusal) if dialog.is_attached else self._refused(refusal),
+            )
+
+        return title, name, write
 
     def change(self, tag: str, note: str) -> None:
         """Give the entry selected another tag and note."""

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import textwrap
 from collections.abc import Mapping, Sequence
 from typing import TYPE_CHECKING, Any, cast
 
@@ -20,6 +19,7 @@ from gaugeside.checks.perform import request
 from gaugeside.checks.picture import DRAWN
 from gaugeside.checks.sheet import Answer, Check, Entry, ReadingLine
 from gaugeside.checks.typed import TypedLine, first_choice, read_line, takes
+from gaugeside.checks.view import wrapped
 from gaugeside.engine import Reply
 from gaugeside.errors import Refusal
 from gaugeside.keeping import headline, with_linked_entries
@@ -308,7 +308,7 @@ class SheetPane(VerticalScroll, can_focus=False):
 
     def _show_nothing(self, *words: str) -> None:
         width = self._width
-        lines = [(text, MUTED) for word in words for text in textwrap.wrap(word, width)]
+        lines = [(text, MUTED) for word in words for text in wrapped(word, width)]
         self._show([*self._long_refusal(), *lines])
 
     def _show(self, lines: Sequence[Styled], *, has_findings: bool = False) -> None:
@@ -318,7 +318,7 @@ class SheetPane(VerticalScroll, can_focus=False):
 
     def _long_refusal(self) -> list[Styled]:
         """Return the refusal whole where the two lines under the sheet cannot hold it."""
-        lines = textwrap.wrap(refusal_words(self.check, self.refusal), self._width)
+        lines = wrapped(refusal_words(self.check, self.refusal), self._width)
         return [(line, CAUTION) for line in lines] if len(lines) > 2 else []
 
     @property

@@ -5,7 +5,7 @@ Each closes with its own keys and never needs Escape: over a slow link a lone Es
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from typing import Any
 
 from textual import events, on
@@ -19,6 +19,8 @@ from textual.widgets import Input
 
 from gaugeside.app.widgets.field import FieldLine, TextField
 from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, Line, Lines, Styled
+from gaugeside.checks.view import wrapped
+from gaugeside.errors import Refusal
 from gaugeside.logbook.entry import LONGEST_NAME
 from gaugeside.refrigerants import Refrigerant, search
 
@@ -220,3 +222,38 @@ class MachineAndNote(Dialog):
             self._note.field.focus()
             return
         self.dismiss((self._tag.field.value.strip(), self._note.field.value.strip()))
+
+
+class IntoFile(Dialog):
+    """The name of a file to write the logbook into; it closes once that is done, and says why where it is not."""
+
+    DEFAULT_CSS = "IntoFile TextField { width: 1fr; } IntoFile .understood { width: 0; padding: 0; }"
+
+    def __init__(self, title: str, name: str, write: Callable[[str, IntoFile], None]) -> None:
+        super().__init__()
+        self._title, self._put = title, write
+        self._file = FieldLine("file", "file", TextField(name, id="file"))
+        self._why = Lines(id="why")
+
+    def compose(self) -> ComposeResult:
+        """The field, what names mean, why it did not work."""
+        with Vertical():
+            yield Line(self._title, MAIN)
+            yield self._file
+            yield Line("A name ending in .csv is a table, one in .json what another logbook takes in.", MUTED)
+            yield Line("Enter writes   Ctrl+U clears the name   Ctrl+O back without a change", MUTED)
+            yield self._why
+
+    def first_field(self) -> Widget:
+        """The name."""
+        return self._file.field
+
+    @on(Input.Submitted)
+    def _take(self, event: Input.Submitted) -> None:
+        event.stop()
+        self._why.show([("Writing.", MUTED)])
+        self._put(self._file.field.value.strip(), self)
+
+    def refuse(self, refusal: Refusal) -> None:
+        """Say why the file is not written; the name stays."""
+        self._why.show([(line, CAUTION) for line in wrapped(refusal.sentence(), max(16, self.size.width - 1))])

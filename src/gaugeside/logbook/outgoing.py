@@ -1,0 +1,40 @@
+"""The logbook into a file: a table for a spreadsheet, or the document that another logbook takes in."""
+
+from __future__ import annotations
+
+import os
+from collections.abc import Iterator
+from pathlib import Path
+
+from gaugeside.errors import Refusal
+from gaugeside.files import written_whole
+from gaugeside.logbook.exchange import csv_lines, json_lines
+from gaugeside.logbook.store import Logbook
+from gaugeside.settings import whole_path
+
+
+def lines_of(logbook: Logbook, words: str, as_csv: bool) -> Iterator[str]:
+    """Yield the lines of the entries that hold all these words, oldest first, as CSV or as JSON."""
+    entries = logbook.oldest_first(words)
+    return csv_lines(lambda: entries) if as_csv else json_lines(entries)
+
+
+def write_file(logbook: Logbook, words: str, name: str, *, as_csv: bool, replace: bool = False) -> Path:
+    """Write the entries that hold all these words into a file, whole or not at all; return its path.
+
+    Raises Refusal when the file cannot be written, is there already and may not be replaced, or is the logbook.
+    """
+    path = whole_path(name)
+    if _is_same(path, logbook.path):
+        raise Refusal("That file is the logbook itself.", "Name another file.")
+    with written_whole(str(path), replace) as file:
+        for line in lines_of(logbook, words, as_csv):
+            file.write(f"{line}\n".encode())
+    return path
+
+
+def _is_same(one: Path, other: Path) -> bool:
+    try:
+        return os.path.samefile(one, other)
+    except (OSError, ValueError):
+        return False
