@@ -11,7 +11,7 @@ from dataclasses import dataclass
 from gaugeside.checks.sheet import Check, Entry, ReadingLine
 from gaugeside.checks.typed import FieldUnits, TypedLine, read_form, takes
 from gaugeside.errors import Refusal
-from gaugeside.quantities import Dress, Kind, Site, fold, quoted, read, spellings, split_number
+from gaugeside.quantities import Dress, Kind, Sense, Site, fold, quoted, read, spellings, split_number
 from gaugeside.settings import plain_text
 
 MOST_COLUMNS = 1000
@@ -274,8 +274,9 @@ def _unit_of(
     if text.strip()[:1].isdigit():
         raise Refusal(f"{quoted(text)} is no unit.", "Write a unit alone into the brackets.", reading.name)
     try:
-        # Read as a number of it is: what is ambiguous there is ambiguous here.
-        unit = read(f"1 {text}", kind, dress.default(kind), dress, site).unit
+        # Read as a number of it is: what is ambiguous there is ambiguous here. A vacuum of 1 may be more than there is.
+        one = "0" if fold(text) in spellings(kind) and spellings(kind)[fold(text)].sense is Sense.VACUUM else "1"
+        unit = read(f"{one} {text}", kind, dress.default(kind), dress, site).unit
     except Refusal as refusal:
         raise refusal.about(reading.name) from None
     if unit.sense is not None and spellings(kind)[fold(text)].sense is None:

@@ -5,10 +5,10 @@ from __future__ import annotations
 import codecs
 import os
 import re
+import secrets
 import signal
 import stat
 import sys
-import tempfile
 import threading
 from collections.abc import Iterator
 from contextlib import contextmanager, suppress
@@ -92,11 +92,12 @@ def written_whole(name: str, replace: bool) -> Iterator[BinaryIO]:
     """
     path = Path(name)
     _refuse_what_is_there(path, replace)
-    temporary = ""
+    # The name is known before the file is there, so that whatever ends the block from then on takes it along.
+    temporary = path.parent / f".gaugeside-{secrets.token_hex(8)}"
+    flags = os.O_WRONLY | os.O_CREAT | os.O_EXCL | getattr(os, "O_BINARY", 0)
     with _ended_in_order():
         try:
-            handle, temporary = tempfile.mkstemp(prefix=".gaugeside-", dir=path.parent)
-            with os.fdopen(handle, "wb") as file:
+            with os.fdopen(os.open(temporary, flags, 0o600), "wb") as file:
                 yield file
                 file.flush()
                 os.fsync(file.fileno())
@@ -109,8 +110,7 @@ def written_whole(name: str, replace: bool) -> Iterator[BinaryIO]:
             ) from fault
         finally:
             with suppress(OSError):
-                if temporary:
-                    os.unlink(temporary)
+                os.unlink(temporary)
     sync_folder(path.parent)
 
 
@@ -152,7 +152,7 @@ def _refuse_what_is_there(path: Path, replace: bool) -> None:
         raise Refusal(f"{_told(str(path))} is there already.", "Name another file, or add --replace.")
 
 
-def _put(temporary: str, path: Path, replace: bool) -> None:
+def _put(temporary: Path, path: Path, replace: bool) -> None:
     _refuse_what_is_there(path, replace)
     if replace:
         os.replace(temporary, path)

