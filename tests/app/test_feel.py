@@ -445,7 +445,7 @@ async def test_the_logbook_goes_into_a_file_and_a_file_that_is_there_stays(tmp_p
         await shown.see("must end in .csv or .json")
         await shown.press("backspace", "backspace", "backspace")
         await shown.type("csv\n")
-        await shown.see(f"Written: {table}")
+        await shown.wait(lambda: shown.word.startswith("Written: ") and str(table) in shown.word, "the file's name")
         rows = list(csv.DictReader(table.read_text().splitlines()))
         assert [(row["suction pressure"], row["suction temperature"]) for row in rows] == [("2 bar g", "5 C")]
         assert stat.S_IMODE(table.stat().st_mode) == 0o600

@@ -24,7 +24,7 @@ TINY = 40
 
 _KEYS = "Enter keep F1 help F8 refrigerant F9 machine, note ^G picture ^O menu F10 leave"
 _OTHER_KEYS = {
-    "logbook": "Enter open  F1 help  F9 machine, note  Del delete  ^Z undo  ^O menu  ^O W to file",
+    "logbook": "Enter open F1 help F9 machine, note Del delete ^Z undo ^O menu ^O W to file",
     "site": "Left Right choose  F1 help  Ctrl+O menu  F10 leave",
 }
 # Letter, words, action.
