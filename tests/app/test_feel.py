@@ -454,7 +454,7 @@ async def test_the_logbook_goes_into_a_file_and_a_file_that_is_there_stays(tmp_p
         await shown.see("Write the whole logbook into a file")
         await shown.press("ctrl+u")
         await shown.type(f"{table}\n")
-        await shown.see("is there already")
+        await shown.see("there already")
         assert table.read_text() == "another's"
         await shown.press("ctrl+u")
         await shown.type(f"{tmp_path}/mine.json\n")
