@@ -294,8 +294,8 @@ _BATCH = (
     "A text that a spreadsheet would run as a formula gets an apostrophe before it."
 )
 _EXPORT = (
-    "Oldest first, as JSON, which gaugeside logbook import takes in again, or as CSV for a spreadsheet. In the CSV a "
-    "text that a spreadsheet would run as a formula gets an apostrophe before it."
+    "Oldest first, as JSON, which import takes in again, or as CSV for a spreadsheet.\n"
+    "In the CSV a text that would run as a formula gets an apostrophe before it."
 )
 
 

@@ -3,17 +3,16 @@
 from __future__ import annotations
 
 import json
-import os
 from argparse import Namespace
 from collections.abc import Callable
 from typing import Any
 
-from gaugeside.errors import Refusal
-from gaugeside.files import STANDARD, content, written_whole
+from gaugeside.files import STANDARD, content
 from gaugeside.logbook import Entry as LogbookEntry
 from gaugeside.logbook import Logbook
-from gaugeside.logbook.exchange import LARGEST, csv_lines, entry_json, json_lines, read_document
+from gaugeside.logbook.exchange import LARGEST, entry_json, read_document
 from gaugeside.logbook.links import linked_first, relinked
+from gaugeside.logbook.outgoing import lines_of, write_file
 from gaugeside.refrigerants import find, load_own, search
 from gaugeside.settings import places
 
@@ -99,26 +98,13 @@ def entry_line(entry: LogbookEntry) -> str:
 
 def export_logbook(arguments: Namespace, put: Printer) -> int:
     """Put the logbook's entries, oldest first, out as JSON or CSV: to `put` line by line, or into a file."""
-    logbook = Logbook(places(logbook=arguments.logbook).logbook_file)
-    if arguments.to not in (None, STANDARD) and _is_same(arguments.to, logbook):
-        raise Refusal("That file is the logbook itself.", "Name another file behind --to.")
-    entries = logbook.oldest_first(" ".join(arguments.words))
-    lines = csv_lines(lambda: entries) if arguments.csv else json_lines(entries)
-    if arguments.to in (None, STANDARD):
-        for line in lines:
-            put(line)
+    logbook, words = Logbook(places(logbook=arguments.logbook).logbook_file), " ".join(arguments.words)
+    if arguments.to not in (None, STANDARD):
+        write_file(logbook, words, arguments.to, as_csv=arguments.csv, replace=arguments.replace)
         return 0
-    with written_whole(arguments.to, arguments.replace) as file:
-        for line in lines:
-            file.write(f"{line}\n".encode())
+    for line in lines_of(logbook, words, arguments.csv):
+        put(line)
     return 0
-
-
-def _is_same(name: str, logbook: Logbook) -> bool:
-    try:
-        return os.path.samefile(name, logbook.path)
-    except (OSError, ValueError):
-        return False
 
 
 def import_logbook(arguments: Namespace, say: Printer, tell: Printer) -> int:
