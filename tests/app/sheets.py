@@ -88,8 +88,9 @@ class Sheet:
             if not all(parent.display for parent in [widget, *widget.ancestors] if isinstance(parent, Widget)):
                 continue
             if isinstance(widget, FieldLine):
-                label = widget.query_one(".label", Line).text
-                shown.append(f"{label:<20}{widget.field.value:<21}{widget.understood.text}".rstrip())
+                # One that is just being put there has no label yet.
+                for label in widget.query(".label").results(Line):
+                    shown.append(f"{label.text:<20}{widget.field.value:<21}{widget.understood.text}".rstrip())
             elif isinstance(widget, Line) and not isinstance(widget.parent, FieldLine):
                 shown.append(widget.text)
         return shown

@@ -254,9 +254,17 @@ class GaugesideApp(House):
 
         def chosen(action: str | None) -> None:
             if action:
-                self.call_later(self.run_action, action)
+                # What is typed behind the letter is for what the action opens.
+                self.acts = True
+                self.call_later(self._act, action)
 
         await self._open(Menu(MENU), chosen)
+
+    async def _act(self, action: str) -> None:
+        try:
+            await self.run_action(action)
+        finally:
+            self.acts = False
 
     async def action_help(self) -> None:
         """Show help for the pane."""

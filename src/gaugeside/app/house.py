@@ -70,6 +70,7 @@ class House(KeysInTurn):
         self.word_stays = False
         self.now = ""
         self.under_way = False
+        self.acts = False
         self.is_painted = False
         self.event_loop: asyncio.AbstractEventLoop | None = None
         self.engine = engine
@@ -182,7 +183,9 @@ class House(KeysInTurn):
 
     @property
     def is_busy(self) -> bool:
-        """Whether the logbook's list is about to change: a key could mean an entry that is not in it yet."""
+        """Whether something is at work, or the logbook about to change: a key could mean what is not there yet."""
+        if self.acts:
+            return True
         if self.now != "logbook":
             return False
         return self.book.busy or any(pane.keeps_then for pane in self.base.query(SheetPane))
