@@ -13,8 +13,8 @@ from typing import Any
 from terminal.harness import Terminal, app_command
 
 READY = "F10 leave"
-# Seconds in which an end must come; a slow machine gets a little more than the program promises.
-AT_ONCE = 2.0
+# Seconds in which an end must come; a busy machine gets more than the program promises.
+AT_ONCE = 5.0
 
 
 def app(
@@ -58,11 +58,11 @@ def draft_holds(home: Path, text: str, seconds: float = 10.0) -> bool:
     """Tell whether the half-typed forms on the disk hold a text, waiting a while for it."""
     deadline = time.monotonic() + seconds
     file = home / "gaugeside" / "draft.json"
-    while time.monotonic() < deadline:
-        if file.exists() and text in file.read_text():
-            return True
+    while not (file.exists() and text in file.read_text()):
+        if time.monotonic() > deadline:
+            return False
         time.sleep(0.02)
-    return False
+    return True
 
 
 def readings_kept(home: Path) -> list[dict[str, str]]:

@@ -83,13 +83,22 @@ def test_a_line_that_freezes_and_thaws_goes_on(tmp_path: Path) -> None:
 def test_the_processor_rests_when_nothing_is_typed(tmp_path: Path) -> None:
     with app(tmp_path) as shown:
         helper = typed(shown, "2 bar g")
-        shown.settle(0.5)
-        before = shown.cpu_seconds(), shown.cpu_seconds(helper)
-        shown.mark()
-        shown.pump(2.0)
-        assert shown.bytes_since_mark() == 0
-        assert shown.cpu_seconds() - before[0] < 0.2
-        assert shown.cpu_seconds(helper) - before[1] < 0.1
+        # What the start and the last key have set going may take a busy machine a while.
+        deadline = time.monotonic() + PATIENCE
+        while not rests(shown, helper):
+            assert time.monotonic() < deadline, "it never rests"
+
+
+def rests(shown: Terminal, helper: int) -> bool:
+    """Tell whether nothing is sent and next to nothing computed for two seconds."""
+    before = shown.cpu_seconds(), shown.cpu_seconds(helper)
+    shown.mark()
+    shown.pump(2.0)
+    return (
+        shown.bytes_since_mark() == 0
+        and shown.cpu_seconds() - before[0] < 0.2
+        and shown.cpu_seconds(helper) - before[1] < 0.1
+    )
 
 
 def test_nohup_does_not_keep_it_alive_behind_a_closed_terminal(tmp_path: Path) -> None:
