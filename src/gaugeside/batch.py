@@ -7,13 +7,14 @@ import io
 import json
 import os
 from argparse import Namespace
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Callable, Iterable, Iterator, Sequence
 from contextlib import nullcontext
 from dataclasses import dataclass, field
 from typing import Any, BinaryIO
 
 from gaugeside.answering import Terms, answer_json, answered, terms
-from gaugeside.checks.sheet import Answer, Check, Entry, FindingLine
+from gaugeside.checks.caution import model_remark
+from gaugeside.checks.sheet import Answer, Check, Entry, FindingLine, Remark
 from gaugeside.checks.typed import TypedLine, read_line
 from gaugeside.checks.view import FOOTNOTE, sentence, site_line
 from gaugeside.columns import Header, fitted, parsed, read_header
@@ -22,12 +23,12 @@ from gaugeside.files import STANDARD, Lines, cell, opened, written_whole
 from gaugeside.logbook import Logbook
 from gaugeside.quantities import Kind, Sense, Unit, with_sense, write
 from gaugeside.refrigerants import find
-from gaugeside.settings import plain_text
+from gaugeside.text import plain_text
 
 Printer = Callable[[str], None]
 LONGEST_LINE = 60_000  # [bytes]
 MOST_NAMED = 10  # columns, notes
-_LAST = ("cautions", "refused")
+_LAST = ("cautions", "notes", "refused")
 
 
 def run_batch(arguments: Namespace, put: Printer, tell: Printer) -> int:
@@ -129,6 +130,8 @@ class _Batch:
         self._tell = tell
         self._point = point
         self._told: set[str] = set()
+        # The same in every row, so it is told once.
+        self._model = model_remark(find(under.refrigerant)) if under.refrigerant else None
         self._say_the_beginning()
 
     def _say_the_beginning(self) -> None:
@@ -185,8 +188,8 @@ class _Batch:
             raise Refusal(words, "The other rows are answered all the same.") from fault
         for name, words in self._header.assumed(row.typed, dress).items():
             self._tell_once(name, words)
-        for remark in row.answer.notes:
-            self._tell_once(remark.text, f"Note, first in row {row.number}: {sentence(remark, dress, site)}")
+        if self._model in row.answer.notes and self._model is not None:
+            self._tell_once(self._model.text, f"Note: {sentence(self._model, dress, site)}")
 
     def _tell_once(self, what: str, words: str) -> None:
         if what not in self._told and len(self._told) < MOST_NAMED + len(self._header.columns):
@@ -201,9 +204,12 @@ class _Batch:
         for row in self._rows(numbered):
             cells = [self._carried(row, place) for place in range(len(self._header.names))]
             cells += [self._found(row.answer, line, to) for line, to, _ in columns]
-            cautions = row.answer.cautions if row.answer is not None else ()
-            cells.append(cell(" ".join(sentence(one, self._under.dress, self._under.site) for one in cautions)))
+            cautions, notes = ((), ()) if row.answer is None else (row.answer.cautions, row.answer.notes)
+            cells += [self._remarks(cautions), self._remarks([note for note in notes if note != self._model])]
             yield self._csv_line([*cells, cell(_told(row.refusal))])
+
+    def _remarks(self, remarks: Iterable[Remark]) -> str:
+        return cell(" ".join(sentence(remark, self._under.dress, self._under.site) for remark in remarks))
 
     def _finding_columns(self) -> list[tuple[FindingLine, Unit | None, str]]:
         """Return every finding with the unit and the heading of its column."""

@@ -52,7 +52,7 @@ def main(argv: Sequence[str] | None = None) -> int:
         _shut_output()
         return 0
     except OSError as fault:
-        from gaugeside.settings import reason
+        from gaugeside.disk import reason
 
         if fault.filename is not None:
             raise
@@ -100,7 +100,7 @@ def _refuse(refusal: Refusal, as_json: bool) -> int:
 
 def _print(text: str, stream: Any = None) -> None:
     from gaugeside.checks.view import ascii_only
-    from gaugeside.settings import plain_text
+    from gaugeside.text import plain_text
 
     stream = sys.stdout if stream is None else stream
     if stream is None:

@@ -12,7 +12,7 @@ from gaugeside.checks.sheet import Check, Entry, ReadingLine
 from gaugeside.checks.typed import FieldUnits, TypedLine, read_form, takes
 from gaugeside.errors import Refusal
 from gaugeside.quantities import Dress, Kind, Sense, Site, fold, quoted, read, spellings, split_number
-from gaugeside.settings import plain_text
+from gaugeside.text import plain_text
 
 MOST_COLUMNS = 1000
 DELIMITERS = {",": "comma", ";": "semicolon", "\t": "tab"}

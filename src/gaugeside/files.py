@@ -15,11 +15,13 @@ from contextlib import contextmanager, suppress
 from pathlib import Path
 from typing import BinaryIO
 
+from gaugeside.disk import reason, sync_folder
 from gaugeside.errors import Refusal
 from gaugeside.quantities import SEA_LEVEL, Dress, Kind, fold, guard, read_state, spellings, split_number
 from gaugeside.quantities.state_text import PROPERTIES
-from gaugeside.settings import plain_text, reason, sync_folder
+from gaugeside.text import plain_text
 
+OR_REPLACE = "Name another file, or add --replace."
 STANDARD = "-"  # in the place of a file's name: standard input, standard output
 _AT_ONCE = 65_536  # [bytes]
 _LONGEST_NAME = 200  # [characters], of a file in a sentence
@@ -83,15 +85,16 @@ def content(name: str, largest: int) -> bytes:
 
 
 @contextmanager
-def written_whole(name: str, replace: bool) -> Iterator[BinaryIO]:
+def written_whole(name: str, replace: bool, hint: str = OR_REPLACE) -> Iterator[BinaryIO]:
     """Yield a file whose bytes stand under `name`, for its owner alone, once the block has ended well.
 
     replace: whether a file that is there may go. A link, a folder, a device or a pipe there is always refused.
+    hint: what to do where a file is there.
 
     Raises Refusal when the file cannot be written; what was there is then untouched.
     """
     path = Path(name)
-    _refuse_what_is_there(path, replace)
+    _refuse_what_is_there(path, replace, hint)
     # The name is known before the file is there, so that whatever ends the block from then on takes it along.
     temporary = path.parent / f".gaugeside-{secrets.token_hex(8)}"
     flags = os.O_WRONLY | os.O_CREAT | os.O_EXCL | getattr(os, "O_BINARY", 0)
@@ -101,7 +104,7 @@ def written_whole(name: str, replace: bool) -> Iterator[BinaryIO]:
                 yield file
                 file.flush()
                 os.fsync(file.fileno())
-            _put(temporary, path, replace)
+            _put(temporary, path, replace, hint)
         except BrokenPipeError:
             raise
         except OSError as fault:
@@ -135,32 +138,32 @@ def _ended_in_order() -> Iterator[None]:
             signal.signal(number, signal.SIG_DFL)
 
 
-def _refuse_what_is_there(path: Path, replace: bool) -> None:
+def _refuse_what_is_there(path: Path, replace: bool, hint: str) -> None:
     try:
         mode = os.lstat(path).st_mode
     except FileNotFoundError:
         return
     except (OSError, ValueError) as fault:
-        raise Refusal(f"{_told(str(path))} cannot be written: {reason(fault)}.", "Name another file.") from fault
+        raise Refusal(f"{_told(str(path))} cannot be written: {reason(fault)}.", hint) from fault
     if not stat.S_ISREG(mode):
         what = "a link to another place" if stat.S_ISLNK(mode) else "a folder" if stat.S_ISDIR(mode) else "no file"
         raise Refusal(
             f"{_told(str(path))} is {what} and is left as it is.",
-            "Name a file that is none yet, or leave --to out for standard output.",
+            "Name a file that is none yet.",
         )
     if not replace:
-        raise Refusal(f"{_told(str(path))} is there already.", "Name another file, or add --replace.")
+        raise Refusal(f"{_told(str(path))} is there already.", hint)
 
 
-def _put(temporary: Path, path: Path, replace: bool) -> None:
-    _refuse_what_is_there(path, replace)
+def _put(temporary: Path, path: Path, replace: bool, hint: str) -> None:
+    _refuse_what_is_there(path, replace, hint)
     if replace:
         os.replace(temporary, path)
         return
     try:
         os.link(temporary, path)
     except FileExistsError:
-        _refuse_what_is_there(path, replace)
+        _refuse_what_is_there(path, replace, hint)
         raise
     except OSError:
         # Some file systems have no second names for a file; there the moment since the look has to do.

@@ -7,7 +7,7 @@ from argparse import Namespace
 from collections.abc import Callable
 from typing import Any
 
-from gaugeside.files import STANDARD, content
+from gaugeside.files import OR_REPLACE, STANDARD, content
 from gaugeside.logbook import Entry as LogbookEntry
 from gaugeside.logbook import Logbook
 from gaugeside.logbook.exchange import LARGEST, entry_json, read_document
@@ -100,7 +100,7 @@ def export_logbook(arguments: Namespace, put: Printer) -> int:
     """Put the logbook's entries, oldest first, out as JSON or CSV: to `put` line by line, or into a file."""
     logbook, words = Logbook(places(logbook=arguments.logbook).logbook_file), " ".join(arguments.words)
     if arguments.to not in (None, STANDARD):
-        write_file(logbook, words, arguments.to, as_csv=arguments.csv, replace=arguments.replace)
+        write_file(logbook, words, arguments.to, as_csv=arguments.csv, replace=arguments.replace, hint=OR_REPLACE)
         return 0
     for line in lines_of(logbook, words, arguments.csv):
         put(line)

@@ -19,11 +19,12 @@ from gaugeside.checks import CHECKS
 from gaugeside.checks.compressor_map import load_maps
 from gaugeside.checks.typed import read_form
 from gaugeside.cli import main
+from gaugeside.disk import parse_toml
 from gaugeside.errors import Refusal
 from gaugeside.preferences import dress_of, read_site, site_of, site_source
 from gaugeside.quantities import SEA_LEVEL, Dress, Kind, checked_single
 from gaugeside.refrigerants import find, load_own, search
-from gaugeside.settings import load_draft, load_settings, parse_toml, save_draft
+from gaugeside.settings import load_draft, load_settings, save_draft
 from terminal.harness import clean_environ
 from unit.hostile import HOSTILE, JSON_FILES, SHORT, TOML_FILES, is_sentence, obeyed
 

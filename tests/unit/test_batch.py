@@ -255,7 +255,7 @@ def test_a_table_of_nothing_is_told(table: str, run: Run) -> None:
     assert "The table is empty. Its first line names the columns." in found.err
 
 
-@pytest.mark.parametrize("name", ["cautions", "refused"])
+@pytest.mark.parametrize("name", ["cautions", "notes", "refused"])
 def test_the_last_columns_are_the_answer_s_own(name: str, run: Run, tmp_path: Path) -> None:
     found = run("superheat R-134a", f"suction pressure,{name}\n2,3\n", "--to", str(tmp_path / "new"))
     assert found.status == 2
@@ -273,7 +273,7 @@ def test_what_is_no_reading_is_carried_along_as_it_is(run: Run) -> None:
     table = 'time,"remark, long",suction pressure,remark\n2026-03-14 09:30,"a ""b"", c",2,=1+1\n,,3,-5\n'
     rows = run("superheat R-134a", table).rows
     assert list(rows[0])[:5] == ["time", "remark, long", "suction pressure", "remark", "superheat [K]"]
-    assert list(rows[0])[-2:] == ["cautions", "refused"]
+    assert list(rows[0])[-3:] == ["cautions", "notes", "refused"]
     assert [row["remark, long"] for row in rows] == ['a "b", c', ""]
     assert [row["remark"] for row in rows] == ["'=1+1", "-5"]
     first = run("superheat R-134a", table, "--json").objects[0]
@@ -292,7 +292,7 @@ def test_decimal_commas_and_every_delimiter(run: Run) -> None:
             for row in found:
                 assert row["readings"]["suction_pressure"]["value"] == pytest.approx(361325)
                 assert row["readings"]["suction_temperature"]["value"] == pytest.approx(278.65)
-            assert run("superheat R-134a", table.replace(";", delimiter)).out.count(delimiter) == 11 * 3
+            assert run("superheat R-134a", table.replace(";", delimiter)).out.count(delimiter) == 12 * 3
     # Where the comma parts the cells it is no decimal comma, and two cells too many never pass for one reading.
     for line in ("1,2,6,5.5", "2,6", "1,2,6,5,5"):
         found = run("superheat R-134a", f"a,suction pressure,suction temperature\n{line}\n1,2.6,5\n", "--json").objects

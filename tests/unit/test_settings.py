@@ -16,15 +16,8 @@ from hypothesis import strategies as st
 
 from gaugeside import settings as module
 from gaugeside.errors import Refusal
-from gaugeside.settings import (
-    Settings,
-    load_draft,
-    load_settings,
-    places,
-    plain_text,
-    save_draft,
-    save_settings,
-)
+from gaugeside.settings import Settings, load_draft, load_settings, places, save_draft, save_settings
+from gaugeside.text import plain_text
 from unit.ordinary_user import as_ordinary_user, reachable
 
 JSON_VALUES = st.recursive(

@@ -10,7 +10,7 @@ from functools import cache
 from pathlib import Path
 
 from gaugeside.checks.view import ascii_only
-from gaugeside.settings import is_hidden, plain_text
+from gaugeside.text import is_hidden, plain_text
 
 _CELLS = str.maketrans("°·−²³Δµ—–…’", " /-23du--.'")
 

@@ -7,8 +7,9 @@ from collections.abc import Callable, Mapping
 from pathlib import Path
 from typing import Any
 
+from gaugeside.disk import stands_there
 from gaugeside.errors import Refusal
-from gaugeside.settings import Places, Settings, save_draft, save_settings, stands_there
+from gaugeside.settings import Places, Settings, save_draft, save_settings
 
 _PAUSE = 0.3
 # Seconds without a change after which trouble is told: the next key would take the word off the screen unread.

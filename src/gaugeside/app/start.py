@@ -74,8 +74,9 @@ def start(logbook: Path | None, ascii_alone: bool = False, on_hangup: Callable[[
 def _remembered(home: Places) -> tuple[Settings, dict[str, Any], dict[str, Theme], list[str]]:
     """Return settings, forms and themes, and one sentence for each fault; one alone for a folder that is shut."""
     from gaugeside.app.themes import load_themes
+    from gaugeside.disk import folder_fault
     from gaugeside.refrigerants import load_own
-    from gaugeside.settings import folder_fault, load_draft, load_settings
+    from gaugeside.settings import load_draft, load_settings
 
     settings, bad_settings = load_settings(home.settings_file)
     draft, bad_draft = load_draft(home.draft_file)

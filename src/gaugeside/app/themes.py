@@ -13,7 +13,9 @@ from typing import Any
 from textual.color import Color, ColorParseError
 from textual.theme import Theme
 
-from gaugeside.settings import Settings, parse_toml, plain_text, reason
+from gaugeside.disk import parse_toml, reason
+from gaugeside.settings import Settings
+from gaugeside.text import plain_text
 
 TERMINAL_COLOURS = "terminal colours"
 TERMINAL_COLOURS_LIGHT = "terminal colours light"

@@ -12,11 +12,12 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
+from gaugeside.disk import read_toml_file, reason
 from gaugeside.errors import Refusal
 from gaugeside.quantities import SEA_LEVEL, Dress, Kind, Site, quoted, read, unit
 from gaugeside.quantities.convert import from_si, to_si
 from gaugeside.refrigerants import find
-from gaugeside.settings import plain_text, read_toml_file, reason
+from gaugeside.text import plain_text
 
 FILE_NAME = "compressors.toml"
 _LARGEST = 200_000

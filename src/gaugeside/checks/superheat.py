@@ -219,9 +219,9 @@ def _say_which(
 
 
 def _impossible(outcome: Outcome, what: str, phase: str) -> None:
-    outcome.note(
-        f"{what} cannot be for settled {phase}: the flow there is two-phase, a sensor is off, or the refrigerant "
-        "or the gauge/absolute reference is wrong."
+    outcome.caution(
+        f"{what} cannot be for settled {phase}: two-phase flow, a sensor that is off, a wrong refrigerant or a wrong "
+        "gauge/absolute reference."
     )
 
 

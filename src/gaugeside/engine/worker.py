@@ -18,8 +18,8 @@ from contextlib import suppress
 from pathlib import Path
 from typing import BinaryIO
 
+from gaugeside.disk import make_private_folder
 from gaugeside.errors import Refusal
-from gaugeside.settings import make_private_folder
 
 _LARGEST_LOG = 200_000
 

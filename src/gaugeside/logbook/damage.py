@@ -14,11 +14,11 @@ from dataclasses import replace
 from datetime import UTC, datetime
 from pathlib import Path
 
+from gaugeside.disk import reason, sync_folder
 from gaugeside.errors import Refusal
 from gaugeside.logbook.entry import UNREADABLE, Entry, from_row
 from gaugeside.logbook.schema import SELECT, guard, is_plain
 from gaugeside.logbook.trouble import LogbookTrouble, locked, no_locks
-from gaugeside.settings import reason, sync_folder
 
 if sys.platform != "win32":
     import fcntl

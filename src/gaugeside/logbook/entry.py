@@ -10,7 +10,7 @@ from datetime import UTC, datetime
 from typing import Any
 
 from gaugeside.errors import Refusal
-from gaugeside.settings import plain_text
+from gaugeside.text import plain_text
 
 LONGEST_NAME = 60  # [characters]: check, refrigerant, tag
 LONGEST_NOTE = 2000  # [characters]

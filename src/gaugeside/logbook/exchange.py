@@ -24,7 +24,7 @@ from gaugeside.logbook.entry import (
     Entry,
     cleaned,
 )
-from gaugeside.settings import plain_text
+from gaugeside.text import plain_text
 
 FORMAT = "gaugeside logbook"
 VERSION = 1

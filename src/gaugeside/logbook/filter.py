@@ -10,7 +10,7 @@ from collections.abc import Iterator, Sequence
 
 from gaugeside.logbook.entry import Entry, from_row, search_text
 from gaugeside.logbook.schema import NEWEST_FIRST, read_row
-from gaugeside.settings import plain_text
+from gaugeside.text import plain_text
 
 MOST_WORDS = 20
 

@@ -6,11 +6,11 @@ import os
 from collections.abc import Iterator
 from pathlib import Path
 
+from gaugeside.disk import whole_path
 from gaugeside.errors import Refusal
 from gaugeside.files import written_whole
 from gaugeside.logbook.exchange import csv_lines, json_lines
 from gaugeside.logbook.store import Logbook
-from gaugeside.settings import whole_path
 
 
 def lines_of(logbook: Logbook, words: str, as_csv: bool) -> Iterator[str]:
@@ -19,15 +19,17 @@ def lines_of(logbook: Logbook, words: str, as_csv: bool) -> Iterator[str]:
     return csv_lines(lambda: entries) if as_csv else json_lines(entries)
 
 
-def write_file(logbook: Logbook, words: str, name: str, *, as_csv: bool, replace: bool = False) -> Path:
+def write_file(logbook: Logbook, words: str, name: str, *, as_csv: bool, replace: bool, hint: str) -> Path:
     """Write the entries that hold all these words into a file, whole or not at all; return its path.
+
+    hint: what to do where a file is there already.
 
     Raises Refusal when the file cannot be written, is there already and may not be replaced, or is the logbook.
     """
     path = whole_path(name)
     if _is_same(path, logbook.path):
         raise Refusal("That file is the logbook itself.", "Name another file.")
-    with written_whole(str(path), replace) as file:
+    with written_whole(str(path), replace, hint) as file:
         for line in lines_of(logbook, words, as_csv):
             file.write(f"{line}\n".encode())
     return path

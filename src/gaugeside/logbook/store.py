@@ -18,13 +18,13 @@ from datetime import timedelta
 from itertools import islice
 from pathlib import Path
 
+from gaugeside.disk import make_private_folder, reason
 from gaugeside.errors import Refusal
 from gaugeside.logbook import damage
 from gaugeside.logbook.entry import COLUMNS, Entry, cleaned, from_row, to_row
 from gaugeside.logbook.filter import condition, one_by_one
 from gaugeside.logbook.schema import INSERT, LARGEST_VALUE, NEWEST_FIRST, SELECT, add, begin, guard, is_begun, read_row
 from gaugeside.logbook.trouble import LogbookTrouble, NoSuchEntry, no_locks, trouble_from
-from gaugeside.settings import make_private_folder, reason
 
 SAME_WITHIN = timedelta(minutes=10)
 READ_AT_ONCE = 50

@@ -7,7 +7,7 @@ from pathlib import Path
 from typing import Literal
 
 from gaugeside.errors import Refusal
-from gaugeside.settings import plain_text
+from gaugeside.text import plain_text
 
 Kind = Literal[
     "locked", "no locks", "read-only", "cannot open", "full", "disk error", "damaged", "newer", "foreign", "other"

@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 from typing import Any
 
-from ..settings import read_toml_file, reason
+from ..disk import read_toml_file, reason
 from .catalogue import LONGEST_NAME, Refrigerant, blend_gwp, catalogue, folded, model_kinds, natural_order
 
 FILE = "refrigerants.toml"

@@ -229,7 +229,9 @@ class LogbookPane(VerticalScroll, can_focus=False):
                 self.house.say(f"Written: {path}")
 
             self.house.book.do(
-                lambda logbook: write_file(logbook, words, typed, as_csv=suffix == ".csv"),
+                lambda logbook: write_file(
+                    logbook, words, typed, as_csv=suffix == ".csv", replace=False, hint="Name another file."
+                ),
                 is_written,
                 lambda refusal: dialog.refuse(refusal) if dialog.is_attached else self._refused(refusal),
             )
