@@ -204,7 +204,7 @@ class MachineAndNote(Dialog):
             yield self._tag
             yield self._note
             yield Line(classes="word")
-            yield Line("Enter takes both   Tab or Down to the note   F9 back without a change", MUTED)
+            yield Line("Enter goes on to the note, then takes both   F9 back without a change", MUTED)
 
     def first_field(self) -> Widget:
         """The machine."""
