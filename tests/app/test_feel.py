@@ -432,18 +432,21 @@ async def test_no_thread_and_no_helper_outlive_the_app() -> None:
     assert not Path(f"/proc/{pid}").exists()
 
 
-async def test_the_logbook_goes_into_a_file_and_a_file_that_is_there_stays(tmp_path: Path) -> None:
+async def test_the_logbook_goes_into_a_file_and_a_file_that_is_there_stays(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    monkeypatch.chdir(tmp_path)
     async with sheet() as shown:
         await shown.type("2 bar g\t5 C\n")
         await shown.see("Kept at")
         table = tmp_path / "mine.csv"
         # All in one burst, from another sheet.
-        await shown.press("ctrl+o", "w", "ctrl+u", *f"{tmp_path}/mine.txt\n")
+        await shown.press("ctrl+o", "w", "ctrl+u", *"mine.txt\n")
         await shown.see("Write the whole logbook into a file")
         await shown.see("must end in .csv or .json")
         await shown.press("backspace", "backspace", "backspace")
         await shown.type("csv\n")
-        await shown.wait(lambda: shown.word.startswith("Written: ") and str(table) in shown.word, "the file's name")
+        await shown.see("Written: ")
         rows = list(csv.DictReader(table.read_text().splitlines()))
         assert [(row["suction pressure"], row["suction temperature"]) for row in rows] == [("2 bar g", "5 C")]
         assert stat.S_IMODE(table.stat().st_mode) == 0o600
@@ -451,12 +454,12 @@ async def test_the_logbook_goes_into_a_file_and_a_file_that_is_there_stays(tmp_p
         await shown.press("ctrl+o", "w")
         await shown.see("Write the whole logbook into a file")
         await shown.press("ctrl+u")
-        await shown.type(f"{table}\n")
+        await shown.type("mine.csv\n")
         await shown.see("there already")
         assert table.read_text() == "another's"
         await shown.press("ctrl+u")
-        await shown.type(f"{tmp_path}/mine.json\n")
-        await shown.see("Written:")
+        await shown.type("mine.json\n")
+        await shown.see("Written: ")
         assert [entry["readings"] for entry in json.loads((tmp_path / "mine.json").read_text())["entries"]] == [
             {"suction_pressure": "2 bar g", "suction_temperature": "5 C"}
         ]

@@ -77,6 +77,9 @@ def test_a_place_without_second_or_new_names(tmp_path: Path, is_damaged: bool) -
             # A new file needs no second name, and an entry in it no new one.
             says(shown, "Kept at", "entry 1")
         retypes(shown, 11)
+        # An end in order: one that is killed while it writes leaves the half-written file beside the others.
+        shown.send("\x11")
+        assert shown.wait_end() == 0
     if is_damaged:
         assert contents(home) == before
         return
