@@ -5,13 +5,16 @@
 A pseudo-terminal of 80 x 24, xterm-256color. Bytes are counted as the program sends them: the first screen, three idle
 seconds, each typed key with everything that follows within a fifth of a second, each Tab; the same eight inputs in
 all columns. Other sheets are counted without a budget: there one key brings a page of figures. Times are medians of
-several runs, taken in turn with the bare app's and told as ratios to them or to the import of the property library.
+several runs, taken in turn with the bare app's and told as ratios to them or to the import of the property library;
+ends are the longest of as many.
 """
 
 from __future__ import annotations
 
 import argparse
 import json
+import os
+import signal
 import statistics
 import subprocess
 import sys
@@ -23,7 +26,7 @@ from pathlib import Path
 # In the place of this folder, where this file itself has the name of what is imported.
 sys.path[0] = str(Path(__file__).resolve().parents[1])
 
-from terminal.apps import READY, app  # noqa: E402
+from terminal.apps import READY, app, helper_of  # noqa: E402
 from terminal.harness import Terminal  # noqa: E402
 
 READINGS = ("38 psig", "28 F", "14.1 bar g", "29 C", "15 bar g", "65 C")
@@ -165,6 +168,62 @@ def library_import() -> float:
     return time.perf_counter() - start
 
 
+def answered_sheet(folder: str) -> Terminal:
+    """Open the program and type what gives a superheat."""
+    shown = app(Path(folder))
+    shown.wait_for(READY)
+    shown.send("2 bar g\t5 C")
+    shown.wait_for("superheat  ")
+    return shown
+
+
+def freeze_and_hang_up(shown: Terminal) -> None:
+    """Let the line stand still until painting does, then drop it."""
+    for _ in range(120):
+        shown.send(b"\x0c")
+        time.sleep(0.005)
+    time.sleep(1.0)
+    shown.hang_up()
+
+
+def end_after(what: Callable[[Terminal], None]) -> float:
+    """Return the seconds from the moment something has happened to the end of the program and its helper."""
+    with tempfile.TemporaryDirectory() as folder, answered_sheet(folder) as shown:
+        helper = helper_of(shown)
+        what(shown)
+        start = time.perf_counter()
+        while shown.process.poll() is None or Path(f"/proc/{helper}").exists():
+            time.sleep(0.001)
+            if time.perf_counter() - start > 30:
+                raise SystemExit("it does not end")
+        return time.perf_counter() - start
+
+
+def answer_after_a_kill() -> float:
+    """Return the seconds from the kill of the helper to the answer to the key that follows it at once."""
+    with tempfile.TemporaryDirectory() as folder, answered_sheet(folder) as shown:
+        before = shown.line_with("superheat  ")
+        start = time.perf_counter()
+        os.kill(helper_of(shown), signal.SIGKILL)
+        shown.send(b"\x7f\x7f5 C")
+        return until(shown, lambda: any("superheat  " in line and line != before for line in shown.lines()), start)
+
+
+ENDS: dict[str, Callable[[Terminal], None]] = {
+    "hangup": Terminal.hang_up,
+    "sigterm": lambda shown: shown.signal(signal.SIGTERM),
+    "freeze_and_hangup": freeze_and_hang_up,
+    "f10": lambda shown: shown.send(b"\x1b[21~"),
+}
+
+
+def end_figures(rounds: int) -> dict[str, float]:
+    """Return the longest of some ends, and the longest wait for an answer after a kill of the helper [s]."""
+    worst = {f"end_after_{name}_s": max(end_after(what) for _ in range(rounds)) for name, what in ENDS.items()}
+    worst["answer_after_helper_kill_s"] = max(answer_after_a_kill() for _ in range(rounds))
+    return {name: round(seconds, 3) for name, seconds in worst.items()}
+
+
 def time_figures(rounds: int) -> dict[str, float]:
     """Return medians [s] and their ratios."""
     frames: list[float] = []
@@ -207,7 +266,7 @@ def main() -> int:
         "bare app": byte_figures(lambda home: Terminal(BARE, home), "leave"),
     }
     others = {name: other_sheet(*what) for name, what in OTHER_SHEETS.items()}
-    times = time_figures(arguments.rounds)
+    times = time_figures(arguments.rounds) | end_figures(arguments.rounds)
     over = [
         name
         for name, most in BUDGET.items()
