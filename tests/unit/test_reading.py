@@ -347,3 +347,10 @@ def test_no_bare_spelling_with_a_suffix_is_another_unit(kind: Kind) -> None:
             for word in words.split():
                 found = spellings(kind)[spelling + word]
                 assert (found.definition, found.sense) == (one.definition, sense), spelling + word
+
+
+@pytest.mark.parametrize(("typed", "offer"), [("3 ba", "bar"), ("3 in", "inHg"), ("3 kgf", "kgf/cm2")])
+def test_a_unit_not_written_to_its_end_is_offered_whole(typed: str, offer: str) -> None:
+    with pytest.raises(Refusal) as refused:
+        read(typed, Kind.PRESSURE, SI.default(Kind.PRESSURE), SI, SEA_LEVEL)
+    assert f"Did you mean {offer}?" in refused.value.sentence()

@@ -201,7 +201,9 @@ def _look_up(unit_text: str, kind: Kind, text: str) -> Unit:
             f"{quoted(text)} is a {others[0].value}; this field takes {_article(kind)} {kind.value}.",
             f"Write for example {example(kind)}.",
         )
-    near = difflib.get_close_matches(folded, spellings(kind), n=1, cutoff=0.5)
+    # A unit that is not written to its end comes before one that only looks alike.
+    begun = sorted((spelling for spelling in spellings(kind) if spelling.startswith(folded)), key=len)
+    near = begun[:1] or difflib.get_close_matches(folded, spellings(kind), n=1, cutoff=0.5)
     offer = f"Did you mean {spellings(kind)[near[0]].label}? " if near else ""
     raise Refusal(
         f"{quoted(unit_text)} is not a unit of {kind.value} known here.",
