@@ -102,8 +102,9 @@ def home_of_old(tmp_path: Path, entries: int = ENTRIES, **settings: object) -> P
 
 
 def contents(home: Path) -> dict[str, bytes]:
-    """Return every file of the program's folder but the helper's log, by name."""
-    return {path.name: path.read_bytes() for path in sorted(home.iterdir()) if path.name != "helper.log"}
+    """Return every file of the program's folder by name, but the helper's log and what a kill left half written."""
+    files = (path for path in sorted(home.iterdir()) if path.name != "helper.log" and not path.name.startswith("."))
+    return {path.name: path.read_bytes() for path in files}
 
 
 def calculates(shown: Terminal) -> None:

@@ -111,8 +111,9 @@ def test_a_small_disk_that_fills_and_is_mounted_read_only(tmp_path: Path) -> Non
         shown.send("\r")
         says(shown, "Kept at", "entry 5")
         lists(shown, "superheat 11.0 K", "superheat 10.0 K", *VISITS)
-        names = {path.name for path in disk.seen_by(shown).iterdir()}
-        assert names <= {"settings.json", "draft.json", "logbook.sqlite3", "helper.log"}
+        # A form that is being written has a name of its own until it is whole.
+        healthy = {"settings.json", "draft.json", "logbook.sqlite3", "helper.log"}
+        shown.wait_for(lambda _: {path.name for path in disk.seen_by(shown).iterdir()} <= healthy)
 
 
 # Rights
