@@ -75,7 +75,8 @@ def test_motor_above_one_is_not_blamed_on_the_shell() -> None:
         power="3 kW", electrical_power="2 kW",
     )  # fmt: skip
     assert number(found, "motor_efficiency") == pytest.approx(1.5, rel=1e-12)
-    assert found.remarks["motor_efficiency"].text == "above 100 % cannot be: a reading is wrong"
+    assert found.remarks["motor_efficiency"].text == "above 100 % cannot be"
+    assert [remark.text for remark in found.cautions] == ["Motor efficiency above 100 %: a reading is wrong."]
 
 
 def test_vacuum_at_the_suction_gauge_is_told_although_the_clamp_is_above_atmosphere() -> None:

@@ -5,6 +5,8 @@ from __future__ import annotations
 import pytest
 
 from gaugeside.checks.sheet import Answer
+from gaugeside.checks.view import sentence
+from gaugeside.quantities import SEA_LEVEL, Dress
 from gaugeside.refrigerants import find, open_fluid
 from unit.check_tools import ask, number, refusal, said
 
@@ -273,3 +275,66 @@ def test_a_machine_that_cannot_move_what_enters_it_is_said() -> None:
     assert "Gas enters the pump" in said(pump)
     compressor = component("compressor", "R-717", inlet="2 bar g, SC 8 K", outlet="9 bar g, 90 C", mass_flow="1 kg/s")
     assert "Liquid enters the compressor" in said(compressor)
+
+
+def cautions(answer: Answer) -> list[str]:
+    return [sentence(remark, Dress(), SEA_LEVEL) for remark in answer.cautions]
+
+
+@pytest.mark.parametrize(
+    ("kind", "refrigerant", "texts", "words"),
+    [
+        # critical at 73.77 bar abs (Span and Wagner 1996).
+        ("gas-cooler", "R-744", {"inlet": "60 bar abs, 90 C", "outlet": "20 C"},
+         "Gas cooler: below the critical pressure, 73.77 bar abs, this is a condenser."),
+        ("condenser", "R-744", {"inlet": "90 bar abs, 90 C", "outlet": "35 C"},
+         "Condenser: above the critical pressure, 73.77 bar abs, this is a gas cooler."),
+        ("evaporator", "R-744", {"inlet": "90 bar abs, 10 C", "outlet": "35 C"},
+         "Above the critical pressure, 73.77 bar abs, nothing evaporates. Check the readings."),
+        ("condenser", "R-134a", {"inlet": "9 bar g, SC 4 K", "outlet": "20 C"}, "Liquid enters the condenser"),
+        ("condenser", "R-134a", {"inlet": "9 bar g, SH 30 K", "outlet": "SH 5 K"}, "Vapour leaves the condenser"),
+        ("desuperheater", "R-134a", {"inlet": "9 bar g, SH 30 K", "outlet": "SC 2 K"}, "desuperheater's outlet is not"),
+        ("desuperheater", "R-134a", {"inlet": "9 bar g, SH 30 K", "outlet": "x 0.9"}, "desuperheater's outlet is not"),
+        ("desuperheater", "R-134a", {"inlet": "9 bar g, x 0.9", "outlet": "x 0.2"}, "desuperheater's inlet is not"),
+        ("evaporator", "R-134a", {"inlet": "1 bar g, SH 2 K", "outlet": "SH 5 K"}, "Vapour enters the evaporator"),
+        ("evaporator", "R-134a", {"inlet": "1 bar g, SC 9 K", "outlet": "SC 2 K"}, "Liquid leaves the evaporator"),
+        ("compressor", "R-134a", {"inlet": "1 bar g, SH 8 K", "outlet": "9 bar g, 30 C"}, "compressor's outlet is not"),
+        ("compressor", "R-134a", {"inlet": "1 bar g, sat liquid", "outlet": "9 bar g, 60 C"}, "Liquid enters the comp"),
+        ("pump", "R-134a", {"inlet": "1 bar g, x 0.1", "outlet": "2 bar g, SC 9 K"}, "Vapour enters the pump"),
+        ("expansion", "R-134a", {"inlet": "9 bar g, SH 5 K", "outlet": "1 bar g"}, "Vapour enters the expansion"),
+        ("liquid-suction", "R-134a",
+         {"inlet": "9 bar g, SH 9 K", "outlet": "SH 5 K", "suction_inlet": "1 bar g, SH 2 K"}, "the liquid side: are"),
+    ],
+)  # fmt: skip
+def test_a_state_that_contradicts_the_kind_is_a_caution_and_the_findings_stay(
+    kind: str, refrigerant: str, texts: dict[str, str], words: str
+) -> None:
+    amount = {} if kind == "expansion" else {"mass_flow": "0.1 kg/s"}
+    found = component(kind, refrigerant, **texts, **amount)
+    (told,) = [caution for caution in cautions(found) if words in caution]
+    assert len(told) < 85
+    assert number(found, "enthalpy_difference") == pytest.approx(
+        number(found, "outlet_enthalpy") - number(found, "inlet_enthalpy"), abs=1e-6
+    )
+
+
+@pytest.mark.parametrize(
+    ("kind", "refrigerant", "texts"),
+    [
+        ("gas-cooler", "R-744", {"inlet": "90 bar g, 90 C", "outlet": "35 C"}),
+        ("condenser", "R-134a", {"inlet": "9 bar g, SH 30 K", "outlet": "SC 4 K"}),
+        ("desuperheater", "R-134a", {"inlet": "9 bar g, SH 30 K", "outlet": "SH 1 K"}),
+        ("evaporator", "R-134a", {"inlet": "1 bar g, x 0.2", "outlet": "SH 5 K"}),
+        # Pumped: liquid enters, wet vapour leaves.
+        ("evaporator", "R-134a", {"inlet": "1 bar g, SC 2 K", "outlet": "x 0.4"}),
+        ("compressor", "R-134a", {"inlet": "1 bar g, SH 8 K", "outlet": "9 bar g, 60 C"}),
+        ("pump", "R-134a", {"inlet": "1 bar g, SC 2 K", "outlet": "3 bar g"}),
+        ("expansion", "R-134a", {"inlet": "9 bar g, SC 2 K", "outlet": "1 bar g"}),
+        ("liquid-suction", "R-134a", {"inlet": "9 bar g, SC 2 K", "outlet": "20 C", "suction_inlet": "1 bar g, 2 C"}),
+    ],
+)  # fmt: skip
+def test_states_that_fit_the_kind_are_no_caution(kind: str, refrigerant: str, texts: dict[str, str]) -> None:
+    amount = {"expansion": {}, "pump": {"mass_flow": "0.1 kg/s", "isentropic_efficiency": "60 %"}}.get(
+        kind, {"mass_flow": "0.1 kg/s"}
+    )
+    assert [text for text in cautions(component(kind, refrigerant, **texts, **amount)) if "R-744:" not in text] == []

@@ -129,8 +129,10 @@ def test_a_wrong_sensor_shows_in_the_closure_and_is_named():
     wrong = answer(**COLD_STORE, mass_flow=0.14, heat_rejected=rejected * 1.4, electrical_power=work, drive="hermetic")
     # Q_L + W stays, Q_H is 1.4 times what it was: 1/1.4 - 1.
     assert wrong.findings["heat_balance_closure"] == pytest.approx(1 / 1.4 - 1, rel=1e-9)
-    assert "does not close" in words(wrong)
-    assert "Fits worst with the rest: the heat rejected" in words(wrong)
+    told = sentence(wrong.cautions[0], Dress(), SEA_LEVEL)
+    assert "does not close" in told
+    # The other two agree, so the middle is theirs.
+    assert told.endswith("Fits worst with the rest: the heat rejected, +40 % from the middle.")
 
 
 def test_two_mass_flows_apart_do_not_accuse_either():
@@ -191,3 +193,49 @@ def test_refusals_name_field_and_reason(given: dict[str, Any], field: str, says:
 
 def test_liquid_that_is_not_liquid_is_told():
     assert "not liquid as typed" in words(answer(**{**COLD_STORE, "liquid_temperature": 315.15}, mass_flow=0.14))
+
+
+def test_a_balance_that_does_not_close_stands_before_every_other_caution():
+    # Below the atmosphere and with a hot discharge there are others.
+    given = answer(suction_pressure=0.8e5, discharge_pressure=10.1e5, heat_absorbed=20e3, heat_rejected=40e3,
+                   electrical_power=8e3, drive="hermetic")  # fmt: skip
+    told = [sentence(remark, Dress(), SEA_LEVEL) for remark in given.cautions]
+    assert len(told) > 2
+    # 20 + 8 = 28 kW, and 28/40 - 1 = -30 %.
+    assert "does not close within 10 %" in told[0]
+    assert "absorbed + power 28.00 kW, rejected 40.00 kW: off by 30 %" in told[0]
+    assert given.remarks["heat_balance_closure"].text == "absorbed + power against rejected"
+    # Three amounts alone do not show which of them is wrong.
+    assert "Fits worst" not in words(given)
+
+
+def test_what_enters_and_leaves_beside_the_heat_exchangers_is_named_in_the_balance():
+    given = answer(
+        **COLD_STORE, mass_flow=0.14, heat_rejected=40e3, shell_loss=500.0, evaporator_pressure=2.05e5,
+        evaporator_outlet_temperature=267.15,
+    )  # fmt: skip
+    supplied = given.findings["heat_rejected"] * (1 + given.findings["heat_balance_closure"])
+    told = sentence(given.cautions[0], Dress(), SEA_LEVEL)
+    assert f"absorbed + suction line + power less shell loss {supplied / 1e3:.2f} kW" in told
+
+
+@pytest.mark.parametrize(
+    ("changed", "says"),
+    [
+        ({"liquid_temperature": 315.15}, "not liquid as typed"),
+        ({"suction_temperature": 260.15}, "not vapour as typed"),
+        ({"mass_flow": 0.14, "heat_rejected": 60e3}, "two alone do not show which is wrong"),
+        ({"heat_absorbed": 30e3, "heat_rejected": 20e3, "liquid_temperature": None}, "contradict each other"),
+        ({"discharge_temperature": 314.15}, "Isentropic efficiency above 100 %"),
+        ({"suction_pressure": 7e5, "suction_temperature": 303.15, "discharge_temperature": 433.15}, "efficiency below"),
+        ({"mass_flow": 0.14, "displacement": 0.005}, "Volumetric efficiency above 100 %"),
+        ({"heat_absorbed": 200e3, "heat_rejected": 204e3, "space_temperature": 275.15, "sink_temperature": 301.15,
+          "suction_temperature": None},
+         "Second-law efficiency above 100 %"),
+    ],
+)  # fmt: skip
+def test_readings_that_cannot_be_are_a_caution(changed: dict[str, Any], says: str):
+    typed = {name: value for name, value in {**COLD_STORE, **changed}.items() if value is not None}
+    given = answer(**typed)
+    assert any(says in sentence(remark, Dress(), SEA_LEVEL) for remark in given.cautions), given.cautions
+    assert not any(says in remark.text for remark in given.notes)

@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
+import math
+
 import pytest
 
 from gaugeside.checks.sheet import Answer
-from gaugeside.checks.view import sentence
+from gaugeside.checks.view import ascii_only, sentence
 from gaugeside.quantities import SEA_LEVEL, Dress, Site
 from unit.check_tools import ask, number, refusal, said
 
@@ -131,7 +133,7 @@ def test_pressure_ratio_is_of_absolute_pressures_at_the_gauges() -> None:
     assert number(found, "pressure_ratio") == pytest.approx(5.0, rel=1e-12)
     swapped = superheat("R-134a", suction_pressure="10 bar abs", discharge_pressure="2 bar abs")
     assert number(swapped, "pressure_ratio") == pytest.approx(0.2, rel=1e-12)
-    assert "Discharge pressure is below suction: swapped?" in said(swapped)
+    assert swapped.cautions[0].text == "Discharge pressure is below suction: swapped?"
 
 
 def test_pressures_alone_give_saturated_temperatures() -> None:
@@ -260,3 +262,30 @@ def test_differences_are_given_in_kelvin_and_fahrenheit() -> None:
         "superheat", "R-134a", dress=Dress("ip"), suction_pressure="2 bar g", suction_temperature=f"{pipe:.9f} F"
     )
     assert number(found, "superheat") == pytest.approx(10 / 1.8, abs=1e-6)
+
+
+@pytest.mark.parametrize(
+    ("refrigerant", "doubt"),
+    # Clamp ±1 K (common practice); how far the model may be off as the catalogue says it.
+    [("R-134a", math.hypot(1, 0.05)), ("R-454C", math.hypot(1, 0.6))],
+)
+@pytest.mark.parametrize("check", ["superheat", "machine"])
+def test_a_difference_that_clamp_and_model_could_make_is_no_proof(refrigerant: str, doubt: float, check: str) -> None:
+    dew, bubble = saturated(refrigerant, "dew", 3e5), saturated(refrigerant, "bubble", 14e5)
+    for difference, told in ((doubt - 0.01, True), (0.0, True), (doubt + 0.01, False), (-0.5, False)):
+        found = ask(
+            check, refrigerant, suction_pressure="3e5 Pa abs", suction_temperature=f"{dew + difference!r} K",
+            liquid_pressure="14e5 Pa abs", liquid_temperature=f"{bubble - difference!r} K",
+        )  # fmt: skip
+        texts = [sentence(remark, Dress(), SEA_LEVEL) for remark in found.cautions]
+        within = f"within clamp and model, ±{doubt:.1f} K (common practice):"
+        for text in (f"Superheat {within} liquid possible.", f"Subcooling {within} vapour possible."):
+            assert (text in texts) is told
+            assert len(text) < 79
+
+
+def test_the_doubt_of_a_difference_is_told_in_the_readers_unit() -> None:
+    found = ask("superheat", "R-134a", dress=Dress("ip"), liquid_pressure="8 bar g", liquid_temperature="35.3 C")
+    (remark,) = found.cautions
+    assert "±1.8 °F" in sentence(remark, Dress("ip"), SEA_LEVEL)
+    assert "+/-1.8 F" in ascii_only(sentence(remark, Dress("ip"), SEA_LEVEL))

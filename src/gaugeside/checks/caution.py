@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import math
+
 from gaugeside.checks.sheet import Conditions, Outcome, Remark
 from gaugeside.quantities import Kind
 from gaugeside.refrigerants import Refrigerant
@@ -9,6 +11,8 @@ from gaugeside.refrigerants import Refrigerant
 # Common practice for single-stage machines; the maker's figures take precedence.
 DISCHARGE_CAUTION, DISCHARGE_ALARM = 378.15, 393.15
 PRESSURE_RATIO_CAUTION = 8.0
+# Of a pipe clamp, either way [K] (common practice).
+CLAMP = 1.0
 # Machines for these are often built for a hotter discharge (common practice).
 _RUNS_HOT = ("R-717", "R-744")
 
@@ -69,6 +73,28 @@ def discharge_cautions(
         outcome.caution(text, limit=(limit, Kind.TEMPERATURE))
     if ratio is not None and ratio > PRESSURE_RATIO_CAUTION:
         outcome.caution("Pressure ratio above 8 is high for a single stage (common practice).")
+
+
+def impossible_efficiency(outcome: Outcome, name: str, or_else: str = "") -> None:
+    """Say of an efficiency above one that it cannot be; or_else: what there may be instead of a wrong reading."""
+    words = name.replace("_", " ").replace("second law", "second-law").capitalize()
+    outcome.remark(name, "above 100 % cannot be")
+    outcome.caution(f"{words} above 100 %: a reading is wrong{or_else}.")
+
+
+def uncertain_difference(conditions: Conditions, outcome: Outcome, name: str, difference: float | None) -> None:
+    """Say when a superheat or subcooling [K] is no larger than clamp and property model together may be off.
+
+    Root of the sum of squares of both, JCGM 100:2008. A value below zero has words of its own.
+    """
+    doubt = math.hypot(CLAMP, conditions.refrigerant.model_uncertainty)
+    if difference is None or not 0 <= difference <= doubt:
+        return
+    what = "vapour" if name == "subcooling" else "liquid"
+    outcome.caution(
+        f"{name.capitalize()} within clamp and model, ±{{doubt}} (common practice): {what} possible.",
+        doubt=(doubt, Kind.TEMPERATURE_DIFFERENCE),
+    )
 
 
 def model_note(conditions: Conditions, outcome: Outcome) -> None:

@@ -60,7 +60,7 @@ class Setup:
         for relation, apart in self.network.disagreements():
             # The two sides of a liquid-suction exchanger may both be measured; other balances are told with their hint.
             if relation is not self.balance or self.component == "liquid-suction":
-                outcome.note(f"The readings disagree: {relation.words.format(off=f'{100 * apart:+.1f} %')}.")
+                outcome.caution(f"The readings disagree: {relation.words.format(off=f'{100 * apart:+.1f} %')}.")
 
 
 def set_up(conditions: Conditions, component: str, typed: Mapping[str, Any], outcome: Outcome) -> Setup:

@@ -4,10 +4,17 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Any
 
-from gaugeside.checks.caution import discharge_cautions, model_note, refrigerant_caution, suction_caution
+from gaugeside.checks.caution import (
+    discharge_cautions,
+    impossible_efficiency,
+    model_note,
+    refrigerant_caution,
+    suction_caution,
+)
 from gaugeside.checks.component_kinds import WRONG_WAY, Setup
 from gaugeside.checks.sheet import Conditions, Outcome
 from gaugeside.errors import Refusal
+from gaugeside.quantities import Kind
 from gaugeside.refrigerants import Region
 
 if TYPE_CHECKING:
@@ -30,6 +37,32 @@ _REVERSED = {
     "power_to_refrigerant": "negative: as typed it GIVES power, the wrong way round",
 }
 
+_LIQUID = (Region.SUBCOOLED, Region.SATURATED_LIQUID, Region.LIQUID_ABOVE_CRITICAL_PRESSURE)
+_WET = (Region.TWO_PHASE,)
+_VAPOUR = (Region.SATURATED_VAPOUR, Region.SUPERHEATED)
+# Component and place, the regions that contradict it there, and what to say.
+_CONTRADICTIONS = (
+    ("condenser", "inlet", _LIQUID, "Liquid enters the condenser: nothing is left to condense. Check the inlet."),
+    ("condenser", "outlet", _VAPOUR, "Vapour leaves the condenser: nothing has condensed. Check the outlet."),
+    ("desuperheater", "inlet", (*_LIQUID, *_WET), "The desuperheater's inlet is not vapour: it has no superheat."),
+    ("desuperheater", "outlet", (*_LIQUID, *_WET), "The desuperheater's outlet is not vapour: some has condensed."),
+    ("evaporator", "inlet", _VAPOUR, "Vapour enters the evaporator: nothing is left to evaporate. Check the inlet."),
+    ("evaporator", "outlet", _LIQUID, "Liquid leaves the evaporator: nothing has evaporated. Check the outlet."),
+    ("compressor", "inlet", _LIQUID, "Liquid enters the compressor: it breaks. Check component and inlet."),
+    ("compressor", "inlet", _WET, "Wet vapour enters the compressor: liquid damages it."),
+    ("compressor", "outlet", (*_LIQUID, *_WET), "The compressor's outlet is not vapour: check inlet and outlet."),
+    ("pump", "inlet", _VAPOUR, "Gas enters the pump, which moves only liquid. Check component and inlet."),
+    ("pump", "inlet", _WET, "Vapour enters the pump: it cavitates."),
+    ("expansion", "inlet", _VAPOUR, "Vapour enters the expansion device: a hot gas valve, or a wrong inlet."),
+    ("liquid-suction", "inlet", _VAPOUR, "Vapour enters the liquid side: are liquid and suction swapped?"),
+    ("liquid-suction", "suction_inlet", _LIQUID, "Liquid enters the suction side: are liquid and suction swapped?"),
+)
+_BELOW_CRITICAL = {"gas-cooler": "Gas cooler: below the critical pressure, {critical}, this is a condenser."}
+_ABOVE_CRITICAL = {
+    "condenser": "Condenser: above the critical pressure, {critical}, this is a gas cooler.",
+    "evaporator": "Above the critical pressure, {critical}, nothing evaporates. Check the readings.",
+}
+
 
 def report(conditions: Conditions, setup: Setup, outcome: Outcome) -> None:
     """Fill the findings of `outcome` from a solved component."""
@@ -37,6 +70,7 @@ def report(conditions: Conditions, setup: Setup, outcome: Outcome) -> None:
     for name in ("inlet", "outlet", "suction_inlet", "suction_outlet"):
         if known.get(name) is not None:
             _report_state(conditions.fluid, found, name, known[name])
+    _contradictions(conditions.fluid, setup, outcome)
     inlet, outlet = known.get("inlet"), known.get("outlet")
     if inlet is not None and outlet is not None:
         found.enthalpy_difference = outlet.enthalpy - inlet.enthalpy
@@ -44,7 +78,7 @@ def report(conditions: Conditions, setup: Setup, outcome: Outcome) -> None:
         _report_energy(setup, outcome)
         outcome.note("Steady flow; kinetic and potential energy neglected.")
     elif inlet is not None and outlet is not None and outlet.pressure >= inlet.pressure:
-        outcome.note("The outlet pressure is not below the inlet pressure: nothing expands; check which is which.")
+        outcome.caution("The outlet pressure is not below the inlet pressure: nothing expands; check which is which.")
     if setup.component in ("compressor", "pump"):
         _report_machine(conditions, setup, outcome)
     if setup.component == "liquid-suction":
@@ -52,6 +86,20 @@ def report(conditions: Conditions, setup: Setup, outcome: Outcome) -> None:
     outcome.note(f"Enthalpies: {conditions.fluid.datum_note}.")
     model_note(conditions, outcome)
     refrigerant_caution(conditions, outcome)
+
+
+def _contradictions(fluid: Fluid, setup: Setup, outcome: Outcome) -> None:
+    """Say where a state is none that this component works with."""
+    known, component = setup.network.known, setup.component
+    entering = known.get("inlet") or known.get("outlet")
+    if entering is not None:
+        is_above = entering.pressure >= fluid.critical_pressure
+        text = (_ABOVE_CRITICAL if is_above else _BELOW_CRITICAL).get(component)
+        if text is not None:
+            outcome.caution(text, critical=(fluid.critical_pressure, Kind.PRESSURE))
+    for kind, place, regions, text in _CONTRADICTIONS:
+        if kind == component and known.get(place) is not None and known[place].region in regions:
+            outcome.caution(text)
 
 
 def _report_state(fluid: Fluid, found: Any, name: str, at: State) -> None:
@@ -89,7 +137,7 @@ def _report_energy(setup: Setup, outcome: Outcome) -> None:
     setattr(found, name, amount)
     if amount < 0:
         outcome.remark(name, _REVERSED[name])
-        outcome.note(f"Wrong way round: {WRONG_WAY[setup.component]}. Check which side is the inlet.")
+        outcome.caution(f"Wrong way round: {WRONG_WAY[setup.component]}. Check which side is the inlet.")
 
 
 def _report_machine(conditions: Conditions, setup: Setup, outcome: Outcome) -> None:
@@ -105,20 +153,12 @@ def _report_machine(conditions: Conditions, setup: Setup, outcome: Outcome) -> N
         return
     ratio = outlet.pressure / inlet.pressure
     if ratio <= 1:
-        outcome.note("The outlet pressure is not above the inlet pressure: nothing is compressed.")
+        outcome.caution("The outlet pressure is not above the inlet pressure: nothing is compressed.")
     if setup.component == "pump":
         found.head = (outlet.pressure - inlet.pressure) / (inlet.density * _STANDARD_GRAVITY)
-        if inlet.region is Region.SUPERHEATED:
-            outcome.note("Gas enters the pump: a liquid pump cannot move it. Check the component chosen and the inlet.")
-        elif inlet.vapour_fraction is not None and inlet.vapour_fraction > 0:
-            outcome.note("Vapour enters the pump: it cavitates.")
         return
     suction_caution(conditions, outcome, inlet.pressure)
     discharge_cautions(conditions, outcome, outlet.temperature, ratio)
-    if inlet.region in (Region.SUBCOOLED, Region.LIQUID_ABOVE_CRITICAL_PRESSURE):
-        outcome.note("Liquid enters the compressor: it breaks. Check the component chosen and the inlet.")
-    elif inlet.vapour_fraction is not None and inlet.vapour_fraction < 1:
-        outcome.note("Wet vapour enters the compressor: liquid damages it.")
 
 
 def _too_good(setup: Setup, outcome: Outcome) -> None:
@@ -127,7 +167,7 @@ def _too_good(setup: Setup, outcome: Outcome) -> None:
         value = setup.network.known.get(name)
         if value is not None and value > 1 and name in setup.network.followed:
             or_else = ", or heat leaves the shell" if name == "isentropic_efficiency" else ""
-            outcome.remark(name, f"above 100 % cannot be: a reading is wrong{or_else}")
+            impossible_efficiency(outcome, name, or_else)
 
 
 def _report_shell(setup: Setup, outcome: Outcome) -> None:
@@ -139,7 +179,7 @@ def _report_shell(setup: Setup, outcome: Outcome) -> None:
         outcome.remark("heat_rejected", "left to the shell by power and states")
         if loss < 0:
             outcome.remark("heat_rejected", "negative: the refrigerant gains more than the power typed")
-            outcome.note("The refrigerant gains more than the power typed: one of these readings is wrong.")
+            outcome.caution("The refrigerant gains more than the power typed: one of these readings is wrong.")
     else:
         outcome.remark("heat_rejected", "lost by the shell, as typed")
     outcome.note("With heat lost from the shell no isentropic efficiency is given: the compression is not adiabatic.")
@@ -156,4 +196,4 @@ def _report_effectiveness(known: Any, outcome: Outcome) -> None:
         outcome.findings.effectiveness = (warm - cold) / (liquid - cold)
         outcome.remark("effectiveness", "of the suction side, by temperatures")
         if warm > liquid:
-            outcome.note("The suction gas leaves warmer than the liquid enters: that cannot be; check the readings.")
+            outcome.caution("The suction gas leaves warmer than the liquid enters: that cannot be; check the readings.")

@@ -11,7 +11,14 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass
 
-from gaugeside.checks.caution import discharge_cautions, model_note, refrigerant_caution, suction_caution
+from gaugeside.checks.caution import (
+    discharge_cautions,
+    impossible_efficiency,
+    model_note,
+    refrigerant_caution,
+    suction_caution,
+    uncertain_difference,
+)
 from gaugeside.checks.machine_circuit import Circuit, trace
 from gaugeside.checks.machine_flows import Flows, balance
 from gaugeside.checks.sheet import Check, Conditions, Outcome, Table, choice, entry, finding, reading
@@ -161,6 +168,8 @@ def _report_circuit(conditions: Conditions, circuit: Circuit, shell_loss: float,
     found.superheat, found.subcooling = circuit.superheat, circuit.subcooling
     if circuit.superheat is not None:
         outcome.remark("superheat", "at the compressor")
+    for name in ("superheat", "subcooling"):
+        uncertain_difference(conditions, outcome, name, getattr(circuit, name))
     _report_efficiency(circuit.isentropic_efficiency(conditions.fluid), shell_loss, outcome)
     suction, discharge = circuit.pressures.get("suction"), circuit.pressures.get("discharge")
     if suction is not None:
@@ -187,9 +196,10 @@ def _report_efficiency(efficiency: float | None, shell_loss: float, outcome: Out
         return
     outcome.findings.isentropic_efficiency = efficiency
     if efficiency > 1:
-        outcome.remark("isentropic_efficiency", "above 100 % cannot be: a reading is wrong, or heat leaves the shell")
+        impossible_efficiency(outcome, "isentropic_efficiency", ", or heat leaves the shell")
     elif efficiency < 0.2:
-        outcome.remark("isentropic_efficiency", "not plausible: a pressure or a temperature is off")
+        outcome.remark("isentropic_efficiency", "not plausible")
+        outcome.caution("Isentropic efficiency below 20 % (common practice): a pressure or a temperature is off.")
 
 
 def _points(circuit: Circuit) -> Table:
@@ -210,7 +220,7 @@ def _report_flows(flows: Flows, circuit: Circuit, outcome: Outcome) -> None:
     found.power_to_refrigerant, found.electrical_power = flows.power, flows.electrical
     found.volumetric_efficiency = flows.volumetric_efficiency
     if flows.volumetric_efficiency is not None and flows.volumetric_efficiency > 1:
-        outcome.remark("volumetric_efficiency", "above 100 % cannot be: a reading is wrong")
+        impossible_efficiency(outcome, "volumetric_efficiency")
     for name, words in flows.sources.items():
         outcome.remark(name, words)
     work = flows.electrical if flows.electrical is not None else flows.power
@@ -224,7 +234,7 @@ def _report_flows(flows: Flows, circuit: Circuit, outcome: Outcome) -> None:
             outcome.remark("cop_heat_pump", f"over {which}")
     if flows.closure is not None:
         found.heat_balance_closure = flows.closure
-        outcome.remark("heat_balance_closure", flows.closure_words)
+        outcome.remark("heat_balance_closure", f"{flows.supplied_words} against rejected")
     suction, effect = circuit.states.get("suction"), circuit.refrigerating_effect
     if suction is not None and effect is not None:
         found.volumetric_capacity = effect * suction.density
@@ -258,7 +268,7 @@ def _report_limit(
             for name in ("minimum_power", "second_law_efficiency"):
                 outcome.remark(name, "of both stages together")
         if found.second_law_efficiency > 1:
-            outcome.remark("second_law_efficiency", "above 100 % cannot be: a reading is wrong")
+            impossible_efficiency(outcome, "second_law_efficiency")
 
 
 def _not_the_refrigerant(circuit: Circuit, space: float | None, sink: float | None, outcome: Outcome) -> None:

@@ -80,7 +80,7 @@ class Circuit:
 
 
 def trace(conditions: Conditions, typed: Mapping[str, float], outcome: Outcome) -> Circuit:
-    """Return the circuit that the readings fix; assumptions go to the notes of `outcome`."""
+    """Return the circuit that the readings fix; assumptions become notes of `outcome`, what cannot be cautions."""
     fluid, circuit = conditions.fluid, Circuit()
     _pressures(circuit, typed, outcome)
     for place, temperature_name in (
@@ -157,7 +157,7 @@ def _accept(circuit: Circuit, place: str, state: State, outcome: Outcome) -> Non
     liquid = place == "liquid"
     beyond = "above the bubble point" if liquid else "below the dew point"
     if state.region is (Region.SUPERHEATED if liquid else Region.SUBCOOLED):
-        outcome.note(
+        outcome.caution(
             f"The {place} pipe reads {beyond}: it is not {'liquid' if liquid else 'vapour'} as typed, so no state is "
             "taken there. The flow is two-phase, a sensor is off, or the refrigerant or the gauge/absolute reference "
             "is wrong."
@@ -166,7 +166,7 @@ def _accept(circuit: Circuit, place: str, state: State, outcome: Outcome) -> Non
         circuit.misread[place] = state
         return
     if state.region is Region.TWO_PHASE:
-        outcome.note(
+        outcome.caution(
             f"The {place} pipe lies between bubble and dew point: the state there is wet, and its vapour fraction "
             "hangs on a few tenths of a kelvin."
         )

@@ -8,9 +8,12 @@ from dataclasses import dataclass, field
 
 from gaugeside.checks.compressor_map import SUPERHEAT_FACTOR, CompressorMap
 from gaugeside.checks.machine_circuit import Circuit
-from gaugeside.checks.sheet import Conditions, Outcome
+from gaugeside.checks.sheet import Conditions, Outcome, Remark
 from gaugeside.errors import Refusal
 from gaugeside.quantities import Kind
+
+# Of the heat balance (common practice).
+CLOSURE_LIMIT = 0.1
 
 
 @dataclass
@@ -18,6 +21,7 @@ class Flows:
     """Mass flow [kg/s], heats and powers [W] of a machine.
 
     sources: finding -> the words for where it came from. closure: (Q_L + W - Q_H) / Q_H of redundant readings.
+    supplied: the Q_L + W of the closure [W], with what else enters and leaves; supplied_words: its parts in words.
     estimates: mass flow by source, each from readings of its own.
     """
 
@@ -29,7 +33,8 @@ class Flows:
     shell_loss: float = 0.0
     volumetric_efficiency: float | None = None
     closure: float | None = None
-    closure_words: str = ""
+    supplied: float = 0.0
+    supplied_words: str = ""
     sources: dict[str, str] = field(default_factory=dict)
     estimates: dict[str, float] = field(default_factory=dict)
     lacking: list[str] = field(default_factory=list)
@@ -47,7 +52,7 @@ class Flows:
 def balance(
     conditions: Conditions, circuit: Circuit, typed: Mapping[str, float], drive: str | None, outcome: Outcome
 ) -> Flows:
-    """Return the flows that the readings give; assumptions and disagreements go to the notes of `outcome`."""
+    """Return the flows that the readings give; assumptions become notes of `outcome`, disagreements cautions."""
     flows = Flows(electrical=typed.get("electrical_power"), shell_loss=typed.get("shell_loss", 0.0))
     _power(flows, typed, drive, outcome)
     _estimate(conditions, flows, circuit, typed, outcome)
@@ -56,8 +61,8 @@ def balance(
     _from_pairs(flows, typed, circuit, outcome)
     _electrical(flows, typed, drive)
     _volumetric(flows, circuit, typed)
-    _closure(flows, circuit, typed, outcome)
-    _worst(flows, outcome)
+    _closure(flows, circuit, typed)
+    _disagreements(flows, outcome)
     return flows
 
 
@@ -102,7 +107,7 @@ def _estimate(
             if difference > 0:
                 flows.estimates[source] = amount / difference
             else:
-                outcome.note(f"No mass flow from the {source}: the enthalpies there run the wrong way round.")
+                outcome.caution(f"No mass flow from the {source}: the enthalpies there run the wrong way round.")
 
     if "mass_flow" in typed:
         flows.estimates["flow meter"] = typed["mass_flow"]
@@ -201,7 +206,7 @@ def _from_pairs(flows: Flows, typed: Mapping[str, float], circuit: Circuit, outc
     if before != (flows.absorbed, flows.rejected, flows.power):
         outcome.note("Balance of the whole machine: no other heat flows than those typed.")
         if min(flows.absorbed or 0.0, flows.rejected or 0.0, flows.power or 0.0) < 0:
-            outcome.note("One of the three comes out below zero: the readings typed contradict each other.")
+            outcome.caution("One of the three comes out below zero: the readings typed contradict each other.")
 
 
 def _electrical(flows: Flows, typed: Mapping[str, float], drive: str | None) -> None:
@@ -222,7 +227,7 @@ def _volumetric(flows: Flows, circuit: Circuit, typed: Mapping[str, float]) -> N
         flows.volumetric_efficiency = flows.mass_flow / (displacement * suction.density)
 
 
-def _closure(flows: Flows, circuit: Circuit, typed: Mapping[str, float], outcome: Outcome) -> None:
+def _closure(flows: Flows, circuit: Circuit, typed: Mapping[str, float]) -> None:
     """Compare Q_L + W with Q_H where the three do not follow from each other (form of AHRI 550/590)."""
     independent = {name for name in ("heat_absorbed", "heat_rejected", "electrical_power") if name in typed}
     if flows.power is None or flows.absorbed is None or flows.rejected is None or not flows.rejected:
@@ -231,16 +236,33 @@ def _closure(flows: Flows, circuit: Circuit, typed: Mapping[str, float], outcome
     if from_balance or not independent or (len(flows.estimates) < 2 and len(independent) < 3):
         return
     gain = (flows.mass_flow or 0.0) * circuit.line_gain
-    flows.closure = (flows.absorbed + gain + flows.power - flows.shell_loss - flows.rejected) / flows.rejected
-    flows.closure_words = "Q_L and W against Q_H"
-    if abs(flows.closure) > 0.1:
-        outcome.note("The heat balance does not close within 10 %: a reading is wrong (limit: common practice).")
+    flows.supplied = flows.absorbed + gain + flows.power - flows.shell_loss
+    flows.supplied_words = (
+        f"absorbed{' + suction line' if gain else ''} + power{' less shell loss' if flows.shell_loss else ''}"
+    )
+    flows.closure = (flows.supplied - flows.rejected) / flows.rejected
 
 
-def _worst(flows: Flows, outcome: Outcome) -> None:
-    """Say how far the mass flows of different readings are apart, and which one fits worst."""
-    if len(flows.estimates) < 2:
+def _disagreements(flows: Flows, outcome: Outcome) -> None:
+    """Say how far heats and mass flows of different readings are apart, and which one fits worst."""
+    apart = _apart(flows, outcome)
+    if flows.closure is None or flows.rejected is None or abs(flows.closure) <= CLOSURE_LIMIT:
+        if apart:
+            outcome.caution(apart)
         return
+    told = (
+        f"The heat balance does not close within {100 * CLOSURE_LIMIT:.0f} % (common practice), a reading is wrong: "
+        f"{flows.supplied_words} {{supplied}}, rejected {{rejected}}: off by {100 * abs(flows.closure):.0f} %."
+    )
+    values = {"supplied": (flows.supplied, Kind.POWER), "rejected": (flows.rejected, Kind.POWER)}
+    # Before all others: whatever else the sheet says rests on these readings.
+    outcome.cautions.insert(0, Remark(f"{told} {apart}".rstrip(), values))
+
+
+def _apart(flows: Flows, outcome: Outcome) -> str:
+    """Note the mass flow of every reading; return which one is off, as a sentence, empty where they agree."""
+    if len(flows.estimates) < 2:
+        return ""
     middle = statistics.median(flows.estimates.values())
     apart = {source: 100 * (value - middle) / middle for source, value in flows.estimates.items()}
     for source, value in flows.estimates.items():
@@ -248,8 +270,7 @@ def _worst(flows: Flows, outcome: Outcome) -> None:
     source = max(apart, key=lambda name: abs(apart[name]))
     spread = max(flows.estimates.values()) / min(flows.estimates.values()) - 1
     if spread <= 0.05:
-        return
+        return ""
     if len(flows.estimates) == 2:
-        outcome.note(f"The two mass flows are {100 * spread:.0f} % apart; two alone do not show which is wrong.")
-    else:
-        outcome.note(f"Fits worst with the rest: the {source}, {apart[source]:+.0f} % from the middle.")
+        return f"The two mass flows are {100 * spread:.0f} % apart; two alone do not show which is wrong."
+    return f"Fits worst with the rest: the {source}, {apart[source]:+.0f} % from the middle."

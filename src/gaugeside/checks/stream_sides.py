@@ -297,7 +297,7 @@ class AirSide:
         dew = self._air.dew_point(inlet, entering)
         if self._given("outlet"):
             if outlet > inlet and leaving < entering * (1 - 1e-6):
-                outcome.note("The air is warmed and yet loses water: check the humidity readings and which is which.")
+                outcome.caution("The air is warmed and yet loses water: check humidities and which is which.")
         elif outlet >= inlet or dew is None:
             outcome.note("No water is taken up or lost on the way, as no outlet humidity is typed.")
         elif leaving < entering:

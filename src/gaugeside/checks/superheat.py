@@ -10,7 +10,13 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from gaugeside.checks.caution import discharge_cautions, model_note, refrigerant_caution, suction_caution
+from gaugeside.checks.caution import (
+    discharge_cautions,
+    model_note,
+    refrigerant_caution,
+    suction_caution,
+    uncertain_difference,
+)
 from gaugeside.checks.sheet import Check, Conditions, Outcome, finding, reading
 from gaugeside.errors import OutOfRange, Refusal
 from gaugeside.quantities import Kind
@@ -70,7 +76,7 @@ def run(conditions: Conditions, readings: Readings) -> Outcome:
         found.pressure_ratio = readings.discharge_pressure / readings.suction_pressure
         outcome.remark("pressure_ratio", "absolute, at the gauges")
         if found.pressure_ratio < 1:
-            outcome.note("Discharge pressure is below suction: swapped?")
+            outcome.caution("Discharge pressure is below suction: swapped?")
     discharge_cautions(conditions, outcome, readings.discharge_temperature, found.pressure_ratio)
     refrigerant_caution(conditions, outcome)
     model_note(conditions, outcome)
@@ -95,6 +101,7 @@ def _suction(conditions: Conditions, readings: Readings, outcome: Outcome) -> No
         if found.superheat < 0:
             outcome.remark("superheat", "BELOW the dew point {dew}", dew=(dew.temperature, Kind.TEMPERATURE))
             _impossible(outcome, "Superheat below zero", "vapour")
+        uncertain_difference(conditions, outcome, "superheat", found.superheat)
 
 
 def _liquid(conditions: Conditions, readings: Readings, outcome: Outcome) -> None:
@@ -115,6 +122,7 @@ def _liquid(conditions: Conditions, readings: Readings, outcome: Outcome) -> Non
                 "subcooling", "ABOVE the bubble point {bubble}", bubble=(bubble.temperature, Kind.TEMPERATURE)
             )
             _impossible(outcome, "Subcooling below zero", "liquid")
+        uncertain_difference(conditions, outcome, "subcooling", found.subcooling)
 
 
 def _discharge(conditions: Conditions, readings: Readings, outcome: Outcome) -> None:
@@ -193,7 +201,7 @@ def _saturated(
                 critical=(fluid.critical_pressure, Kind.PRESSURE),
             )
             return None
-        outcome.note(f"{place}: {refusal.sentence()}".replace("{", "(").replace("}", ")"))
+        outcome.caution(f"{place}: {refusal.sentence()}".replace("{", "(").replace("}", ")"))
         return None
 
 
