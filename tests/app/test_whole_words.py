@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import pytest
+
 from app.sheets import sheet
 from gaugeside.app.frame import PANES
 from gaugeside.app.help_text import help_lines
@@ -10,6 +12,8 @@ from gaugeside.checks import CHECKS
 from gaugeside.checks.sheet import Answer, Remark
 from gaugeside.checks.view import TableText
 from gaugeside.quantities import SEA_LEVEL, Dress
+from gaugeside.refrigerants.secondary import SOLUTIONS
+from unit.check_tools import ask
 
 
 def test_tables_that_do_not_fit_beside_each_other_stand_below_each_other() -> None:
@@ -76,3 +80,32 @@ def test_the_help_of_a_field_leaves_the_line_under_it_to_what_stands_there() -> 
             # A list of the words to choose from may be longer.
             if line.help != ", ".join(line.choices) + ".":
                 assert len(f"{line.label}: {line.help}") < 80, (check.name, line.name)
+
+
+@pytest.mark.parametrize(
+    ("kind", "texts"),
+    [
+        ("condenser", {"inlet": "9.1 bar g, 68 C", "outlet": "SC 4 K"}),
+        ("gas-cooler", {"inlet": "60 bar g, 5 C", "outlet": "80 bar g, 5 C"}),
+        ("liquid-suction", {"inlet": "9 bar g, SC 4 K", "suction_inlet": "1 bar g, x 0.9", "suction_outlet": "20 C"}),
+    ],
+)
+def test_states_and_numbers_stand_under_the_names_of_their_columns(kind: str, texts: dict[str, str]) -> None:
+    answer = ask("component", "R-744" if kind == "gas-cooler" else "R-134a", component=kind, **texts)
+    lines = [line for line, _ in answer_lines(CHECKS["component"], answer, Dress(), SEA_LEVEL, 79)]
+    start = next(n for n, line in enumerate(lines) if line.split() == ["inlet", "outlet"])
+    inlet, outlet = lines[start].index("inlet"), lines[start].index("outlet")
+    shown = dict.fromkeys((answer.findings["inlet_region"], answer.findings["outlet_region"]))
+    assert list(shown) == list(dict.fromkeys((lines[start + 1][inlet:outlet].strip(), lines[start + 1][outlet:])))
+    for line in lines[start + 1 : start + 5]:
+        # Each column begins after a blank and is not blank itself.
+        assert [line[column - 1 : column].strip() for column in (inlet, outlet)] == ["", ""]
+        assert all(line[column : column + 1].strip() for column in (inlet, outlet))
+    assert max(map(len, lines)) <= 79
+
+
+def test_the_help_of_a_stream_names_every_medium() -> None:
+    for width in (80, 50):
+        text = " ".join(line.strip() for line, _ in help_lines(CHECKS["stream"], {}, Dress(), [], [], width))
+        for name in ("water", "air", *SOLUTIONS):
+            assert name in text

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import textwrap
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from gaugeside.checks.sheet import Answer, Check, FindingLine, Remark, Table
 from gaugeside.quantities import (
@@ -37,7 +37,7 @@ class FindingText:
     """One line of findings: label, the number, the same in a second form, and the words beside it.
 
     paired: the two texts are two columns (bubble and dew, inlet and outlet), not two forms of one number.
-    heading: the line names those columns.
+    heading: the line names those columns. widths: of the longest label and first text among the paired lines.
     """
 
     name: str
@@ -48,6 +48,7 @@ class FindingText:
     main: bool
     paired: bool = False
     heading: bool = False
+    widths: tuple[int, int] = (0, 0)
 
 
 def findings(check: Check, answer: Answer, dress: Dress, site: Site) -> list[FindingText]:
@@ -67,7 +68,9 @@ def findings(check: Check, answer: Answer, dress: Dress, site: Site) -> list[Fin
         if line.row not in rows:
             rows.add(line.row)
             lines += _paired([other for other in declared if other.row == line.row], columns, answer, dress, site)
-    return lines
+    pairs = [line for line in lines if line.paired]
+    widths = (max((len(p.label) for p in pairs), default=0), max((len(p.first) for p in pairs), default=0))
+    return [replace(line, widths=widths) if line.paired else line for line in lines]
 
 
 def _paired(row: list[FindingLine], columns: list[str], answer: Answer, dress: Dress, site: Site) -> list[FindingText]:

@@ -84,7 +84,11 @@ def finding_lines(found: FindingText, width: int) -> list[str]:
     if width < 60:
         words = f"{found.label}  {found.first}  {found.second}  {found.remark}".strip()
         return wrapped(words, width, "    ")
-    label, first, second = (16, 17, 17) if found.paired else (21, 13, 12)
+    label, first, second = (21, 13, 12)
+    if found.paired:
+        label, first = max(16, found.widths[0]), max(17, found.widths[1])
+        # The last column gives way, so that what stands beside begins where it always does.
+        second = max(13, 47 - label - first)
     # Words may be wider than their column: two blanks keep them apart.
     apart = "  " if len(found.first) > first else " "
     head = f"{found.label:<{label}} {found.first:<{first}}{apart}{found.second:<{second}} "
