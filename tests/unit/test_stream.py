@@ -467,3 +467,23 @@ def test_the_command_line_refuses_with_the_field(capsys: pytest.CaptureFixture[s
     assert json.loads(capsys.readouterr().out)["error"]["field"] == "medium"
     assert main(["stream", "water", "--inlet", "15 C", "--outlet", "25 C"]) == 2
     assert "2 are blank" in capsys.readouterr().err
+
+
+@pytest.mark.parametrize("text", ["PG30", "brine", "brine 20 %", "oil", "propilene glycol 30 %"])
+def test_an_unknown_medium_is_answered_with_all_that_there_are_and_how_a_concentration_is_written(text: str) -> None:
+    with pytest.raises(Refusal) as refusal:
+        find_medium(text)
+    sentence = refusal.value.sentence()
+    assert f"'{text}' is not a medium known here." in sentence
+    assert "its concentration by mass, for example propylene glycol 30 %" in sentence
+    for name in ("water", "air", *SOLUTIONS):
+        assert name in sentence
+    # What is offered as an example is understood.
+    assert find_medium("propylene glycol 30 %").fraction == pytest.approx(0.3)
+
+
+def test_the_mean_heat_capacity_is_marked_so() -> None:
+    """Water from 10 to 30 °C: 4.18 kJ/(kg K) to three digits (common handbook value)."""
+    result = outcome(medium="water", inlet=ZERO + 10, outlet=ZERO + 30, flow={"mass flow": 1.0})
+    assert result.remarks["specific_heat_capacity"].text == "mean"
+    assert result.findings.specific_heat_capacity == pytest.approx(4180, abs=10)

@@ -15,7 +15,7 @@ from gaugeside.checks.sheet import Check, Outcome, Surroundings, choice, either,
 from gaugeside.checks.stream_sides import Side, open_side
 from gaugeside.errors import Refusal
 from gaugeside.quantities import Kind
-from gaugeside.refrigerants.secondary import AIR_NAMES, Medium, find_medium
+from gaugeside.refrigerants.secondary import AIR_NAMES, SOLUTIONS, Medium, find_medium
 
 _DIRECTIONS = ("absorbed", "given off")
 _PLACES = ("inlet", "outlet")
@@ -341,7 +341,8 @@ def _report_heat(balance: _Balance, outcome: Outcome) -> None:
 CHECK = Check(
     "stream",
     "secondary side",
-    "Heat, flow or a temperature of water, a glycol, a brine or moist air.",
+    "Heat, flow or a temperature of water, moist air, or a solution in water with its concentration by mass: "
+    f"{', '.join(SOLUTIONS[:-1])} or {SOLUTIONS[-1]}.",
     Readings,
     Findings,
     run,

@@ -127,7 +127,7 @@ class LiquidSide:
             return
         if inlet is not None and outlet is not None and abs(outlet - inlet) > 0.01:
             outcome.findings.specific_heat_capacity = self.gain(inlet, outlet) / (outlet - inlet)
-            outcome.remark("specific_heat_capacity", "mean between the two temperatures")
+            outcome.remark("specific_heat_capacity", "mean")
         else:
             outcome.findings.specific_heat_capacity = self._liquid.heat_capacity(one)
 

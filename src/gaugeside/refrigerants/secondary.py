@@ -58,7 +58,10 @@ _SUBSTANCES = (
     _Substance("sea water", "MITSW", 0.12, "sea seasalt", source="Sharqawy, Lienhard and Zubair 2010"),
 )
 SOLUTIONS = tuple(s.name for s in _SUBSTANCES)
-_LIST = f"water, air, or a concentration by mass of {', '.join(SOLUTIONS[:-1])} or {SOLUTIONS[-1]}"
+_LIST = (
+    "Write water, air, or a name and its concentration by mass, for example propylene glycol 30 %; there are "
+    f"{', '.join(SOLUTIONS[:-1])} and {SOLUTIONS[-1]}."
+)
 
 
 def _squeezed(text: str) -> str:
@@ -154,10 +157,10 @@ def _named(rest: str, text: str) -> _Substance | None:
     spellings = [*_BY_SPELLING, *map(_squeezed, (*AIR_NAMES[:1], *_WATER_NAMES[:1]))]
     near = difflib.get_close_matches(kept or name, spellings, n=1, cutoff=0.6)
     shown = text.strip() if len(text.strip()) <= 32 else f"{text.strip()[:29]}..."
-    offer = f"Write {_LIST}."
+    offer = ""
     if near:
-        offer = f"Did you mean {_BY_SPELLING[near[0]].name if near[0] in _BY_SPELLING else near[0]}?"
-    raise Refusal(f"'{shown}' is not a medium known here.", offer)
+        offer = f"Did you mean {_BY_SPELLING[near[0]].name if near[0] in _BY_SPELLING else near[0]}? "
+    raise Refusal(f"'{shown}' is not a medium known here.", offer + _LIST)
 
 
 def _fraction(found: re.Match[str], substance: _Substance) -> float:
