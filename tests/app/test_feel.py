@@ -121,7 +121,7 @@ async def test_machine_and_note_go_with_what_is_kept_next() -> None:
     async with sheet() as shown:
         await shown.press("f9")
         await shown.type("rack 2\nsight glass clear\n")
-        assert "Kept next: machine rack 2, note sight glass clear." in shown.word
+        assert 'Kept next: machine rack 2; note "sight glass clear".' in shown.word
         assert "rack 2" in shown.lines()[0]
         await shown.type("38 psig\n")
         await kept(shown, 1)
@@ -138,6 +138,11 @@ async def test_enter_twice_is_one_entry_and_says_so() -> None:
         await shown.type("38 psig\n")
         await kept(shown, 1)
         await shown.press("enter")
+        await shown.see("Already kept as entry 1; nothing has changed since.")
+        assert len(entries()) == 1
+        # The same readings typed again within ten minutes are the same entry, too.
+        await shown.press("backspace")
+        await shown.type("g\n")
         await shown.see("Already kept at")
         assert len(entries()) == 1
         await shown.type("\t2 C\n")
@@ -182,7 +187,7 @@ async def test_a_unit_typed_stays_the_fields_own() -> None:
         assert field.placeholder == "psi g"
         await shown.type("40")
         # 40 psi on 101.325 kPa: 275.79 kPa more (NIST SP 811: 6.894757 kPa a psi).
-        assert "2.76 bar g         3.77 bar abs" in shown.line("suction pressure")
+        assert "40 psi g = 2.76 bar g 3.77 bar abs" in shown.line("suction pressure")
     async with sheet() as shown:
         field = shown.pane("superheat").query_one("#suction_pressure", Input)
         assert field.placeholder == "psi g", "at the next start too"
@@ -249,7 +254,7 @@ async def test_open_back_delete_and_undo() -> None:
         await shown.see("Nothing was deleted since the start.")
         await shown.press("enter")
         await shown.wait(lambda: shown.app.now == "superheat")
-        await shown.see("Entry 1 as it was typed.")
+        await shown.see("Entry 1 with its readings.")
         assert shown.lines()[0].startswith(" R-134a"), "with its own refrigerant"
         assert shown.pane("superheat").texts()["suction_temperature"] == "2 C"
     assert json.loads(places().settings_file.read_text())["refrigerant"] == "R-134a"
@@ -262,7 +267,7 @@ async def test_an_entry_from_another_site_says_so() -> None:
         await shown.press("f7")
         await shown.type("640 m")
         await shown.press("f6", "enter")
-        await shown.see("Entry 1 as it was typed.")
+        await shown.see("Entry 1 with its readings.")
         assert "The site was then: standard atmosphere at sea level; now: altitude 640 m" in shown.word
 
 
@@ -463,3 +468,80 @@ async def test_the_logbook_goes_into_a_file_and_a_file_that_is_there_stays(
         assert [entry["readings"] for entry in json.loads((tmp_path / "mine.json").read_text())["entries"]] == [
             {"suction_pressure": "2 bar g", "suction_temperature": "5 C"}
         ]
+
+
+async def test_what_is_typed_keeps_its_meaning_when_the_units_change() -> None:
+    async with sheet() as shown:
+        # On a sheet that is open, and on one that was left in the draft of an earlier start.
+        shown.app.saved["forms"] = {"machine": {"texts": {"suction_pressure": "1.0", "electrical_power": "8"}}}
+        await shown.type("2.6\t5\t14,1 bar\tabc")
+        await shown.press("f7", "down", "right")
+        await shown.see("Readings that were typed keep the units they had.")
+        await shown.press("f3")
+        texts = shown.pane("superheat").texts()
+        assert [texts[name] for name in ("suction_pressure", "suction_temperature", "liquid_temperature")] == [
+            "2.6 bar g",
+            "5 °C",
+            "abc",
+        ]
+        assert "37.7 psi g" in shown.line("suction pressure")
+        await shown.press("f5")
+        await shown.see("F5 MACHINE")
+        texts = shown.pane("machine").texts()
+        assert (texts["suction_pressure"], texts["electrical_power"]) == ("1.0 bar g", "8 kW")
+
+
+async def test_one_place_is_answered_without_another_that_is_not_understood() -> None:
+    async with sheet() as shown:
+        await shown.type("2 bar g\t5 C\tabc")
+        await shown.wait(lambda: shown.rule == "-- WITHOUT WHAT IS NOT UNDERSTOOD")
+        await shown.see('asked ("suction_pressure": 301325.0, "suction_temperature": 278.15)')
+        assert shown.word.startswith("liquid pressure: 'abc' does not start with a number.")
+        await shown.type("\n")
+        await shown.see("Not kept: liquid pressure: 'abc'")
+        assert entries() == []
+        await shown.press("ctrl+u")
+        await shown.wait(lambda: shown.rule == "")
+
+
+async def test_what_was_cleared_or_replaced_comes_back() -> None:
+    async with sheet() as shown:
+        await shown.type("2 bar g\n")
+        await kept(shown, 1)
+        await shown.press("tab")
+        await shown.type("5")
+        before = shown.pane("superheat").texts()
+        await shown.press("ctrl+o", "c")
+        await shown.see("The sheet is cleared; Ctrl+Z brings back what stood here.")
+        assert not any(shown.pane("superheat").texts().values())
+        await shown.press("ctrl+z")
+        await shown.see("What stood here before is back.")
+        assert shown.pane("superheat").texts() == before
+        await shown.press("f6", "enter")
+        await shown.see("Entry 1 with its readings. Ctrl+Z brings back what stood here.")
+        assert shown.pane("superheat").texts()["suction_temperature"] == ""
+        await shown.press("ctrl+z")
+        await shown.wait(lambda: shown.pane("superheat").texts() == before)
+
+
+async def test_an_entry_that_is_deleted_may_be_kept_again() -> None:
+    async with sheet() as shown:
+        await shown.type("2 bar g\n")
+        await kept(shown, 1)
+        await shown.press("f6", "delete")
+        await kept(shown, 0)
+        await shown.press("f3", "enter")
+        await kept(shown, 1)
+
+
+async def test_the_frame_follows_the_window_at_once() -> None:
+    async with sheet() as shown:
+        for width, narrow in ((40, True), (80, False), (120, False), (39, True)):
+            await shown.pilot.resize_terminal(width, 24)
+            await shown.wait(lambda narrow=narrow: shown.app.base.has_class("-narrow") == narrow, f"{width} columns")
+
+
+async def test_a_picture_of_nothing_says_so() -> None:
+    async with sheet() as shown:
+        await shown.press("ctrl+g")
+        await shown.see("There is nothing to draw yet; Ctrl+G brings the form back.")

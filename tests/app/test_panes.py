@@ -90,7 +90,7 @@ async def test_logbook_lists_filters_changes_and_opens() -> None:
         await shown.see("note: filter drier cold")
         assert shown.app.settings.tag == "", "the entry's machine, not the next one's"
         await shown.press("enter")
-        await shown.see("Entry 1 as it was typed.")
+        await shown.see("Entry 1 with its readings.")
         assert shown.app.now == "superheat"
         assert shown.pane("superheat").texts()["suction_pressure"] == "38 psig"
         assert shown.pane("superheat").texts()["liquid_pressure"] == ""

@@ -136,7 +136,7 @@ def test_a_calculation_typed_key_by_key_kept_seen_and_reopened(tmp_path: Path) -
         shown.send(KEY[6])
         shown.wait_for("1 shown")
         shown.send("\r")
-        shown.wait_for("Entry 1 as it was typed.")
+        shown.wait_for("Entry 1 with its readings.")
         shown.wait_for(lambda t: kelvin_shown(t) == pytest.approx(superheat, abs=0.051))
         assert "28 F" in shown.line_with("suction pipe")
 

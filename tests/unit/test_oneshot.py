@@ -270,7 +270,7 @@ def test_units_dress_the_sheet_and_leave_the_json_in_si(run: Any) -> None:
     assert "35.6 °F" in sheet
     si, ip = (run(*SUPERHEAT, "--units", units, "--json").json for units in ("si", "ip"))
     assert si["findings"] == ip["findings"]
-    assert "75.1 psi g" in run("saturation", "R-134a", "75.1", "--units", "ip").out
+    assert "75.1 psi g" in run("saturation", "R-134a", "75.1 psi", "--units", "ip").out
 
 
 @pytest.mark.parametrize(("datum", "enthalpy"), [("iir", 200e3), ("ashrae", None), ("nbp", None)])

@@ -9,6 +9,7 @@ from collections.abc import Callable
 from dataclasses import replace
 from typing import Any
 
+from textual import events
 from textual.app import ComposeResult
 from textual.binding import Binding
 from textual.containers import Container
@@ -22,6 +23,7 @@ from gaugeside.app.panes.sheet import SheetPane
 from gaugeside.app.panes.site import SitePane
 from gaugeside.app.themes import CURSOR_STYLE
 from gaugeside.app.widgets.dialogs import Dialog, Help, IntoFile, MachineAndNote, Menu, RefrigerantPicker
+from gaugeside.app.widgets.field import TextField
 from gaugeside.app.widgets.lines import CAUTION, MUTED, Line, QuietScreen
 from gaugeside.checks import CHECKS
 from gaugeside.errors import Refusal
@@ -68,7 +70,7 @@ class GaugesideApp(House):
         Binding("ctrl+o", "menu", priority=True),
         Binding("ctrl+g", "picture", priority=True),
         Binding("ctrl+l", "repaint", priority=True),
-        Binding("ctrl+z", "undo_delete", priority=True),
+        Binding("ctrl+z", "undo", priority=True),
         Binding("pageup", "scroll_pane(-1)", priority=True),
         Binding("pagedown", "scroll_pane(1)", priority=True),
         Binding("delete", "delete_entry", priority=True),
@@ -122,11 +124,12 @@ class GaugesideApp(House):
         self.head()
         threading.Thread(target=warm_up, name="units", daemon=True).start()
 
-    def on_resize(self) -> None:
+    def on_resize(self, event: events.Resize) -> None:
         """Lay the frame out anew, in two lines a reading where the window is narrow."""
-        self.base.set_class(self.size.width < WIDE, "-narrow")
-        self.base.set_class(self.size.width < TINY, "-tiny")
-        self.base.set_class(self.size.height < LOW, "-low")
+        # Of the event: the app's own size may still be the one before.
+        self.base.set_class(event.size.width < WIDE, "-narrow")
+        self.base.set_class(event.size.width < TINY, "-tiny")
+        self.base.set_class(event.size.height < LOW, "-low")
         self.call_after_refresh(self._frame)
 
     def _frame(self) -> None:
@@ -187,7 +190,10 @@ class GaugesideApp(House):
             pane.display = pane is found
         self.say("")
         self.head()
-        self.base.set_focus(found.first_field())
+        field = found.first_field()
+        self.base.set_focus(field)
+        if isinstance(found, SitePane) and isinstance(field, TextField):
+            field.select_all()
         if self.under_way:
             self.saver.draft(self.draft())
 
@@ -245,7 +251,8 @@ class GaugesideApp(House):
             tag, self.note = words
             self.apply(replace(self.settings, tag=tag[:60]))
             self.form_changed()
-            self.say(f"Kept next: machine {tag or '-'}, note {self.note or '-'}.", stays=True)
+            note = f'note "{self.note}"' if self.note else "no note"
+            self.say(f"Kept next: {f'machine {tag}' if tag else 'no machine'}; {note}.", stays=True)
 
         await self._open(MachineAndNote(title, *words), given)
 
@@ -292,9 +299,12 @@ class GaugesideApp(House):
         """Empty this pane's form."""
         pane = self._pane()
         if isinstance(pane, SheetPane):
+            had_readings = pane.has_readings()
             pane.clear()
             self.form_changed()
             pane.top_field().focus()
+            if had_readings:
+                self.say("The sheet is cleared; Ctrl+Z brings back what stood here.", stays=True)
 
     def action_delete_entry(self) -> None:
         """Delete the logbook entry selected."""
@@ -302,11 +312,17 @@ class GaugesideApp(House):
         if isinstance(pane, LogbookPane):
             pane.delete()
 
-    def action_undo_delete(self) -> None:
-        """Bring back the entry deleted last."""
+    def action_undo(self) -> None:
+        """Bring back the entry deleted last, or what stood on the form before it was cleared or replaced."""
         pane = self._pane()
         if isinstance(pane, LogbookPane):
             pane.undo()
+        elif isinstance(pane, SheetPane):
+            if pane.bring_back():
+                self.form_changed()
+                self.say("What stood here before is back.", stays=True)
+            else:
+                self.say("Nothing was cleared or replaced here since the start.")
 
     async def action_write_entries(self) -> None:
         """Write the entries that the logbook shows into a file."""
@@ -340,6 +356,6 @@ class GaugesideApp(House):
         """Let Delete and PageUp through to the fields where the pane has no use for them."""
         if action == "delete_entry":
             return len(self.screen_stack) == 1 and self.now == "logbook"
-        if action in ("scroll_pane", "undo_delete", "picture"):
+        if action in ("scroll_pane", "undo", "picture"):
             return len(self.screen_stack) == 1
         return True

@@ -42,7 +42,7 @@ MENU = (
     ("k", "keep in the logbook", "keep_here"),
     ("c", "clear this sheet", "clear_sheet"),
     ("d", "delete the logbook entry selected", "delete_entry"),
-    ("u", "bring back the entry deleted last", "undo_delete"),
+    ("u", "bring back the entry deleted last, or what stood on this sheet", "undo"),
     ("w", "write the entries shown into a file", "write_entries"),
     ("h", "help", "help"),
     ("l", "paint the screen again", "repaint"),

@@ -18,6 +18,7 @@ from gaugeside.app.book import Book
 from gaugeside.app.driver import TerminalDriver
 from gaugeside.app.frame import HIGH, word_lines
 from gaugeside.app.keys import KeysInTurn
+from gaugeside.app.panes.answer_lines import refusal_words
 from gaugeside.app.panes.logbook import LogbookPane
 from gaugeside.app.panes.sheet import SheetPane
 from gaugeside.app.saver import Saver
@@ -27,6 +28,8 @@ from gaugeside.app.widgets.lines import CAUTION, MUTED, Line, Styled
 from gaugeside.checks import CHECKS
 from gaugeside.checks.caution import model_remark, standing_caution
 from gaugeside.checks.compressor_map import CompressorMap, load_maps
+from gaugeside.checks.sheet import Answer
+from gaugeside.checks.typed import whole_texts
 from gaugeside.checks.view import footnote, sentence
 from gaugeside.engine import Engine, Reply
 from gaugeside.errors import Refusal
@@ -106,6 +109,8 @@ class House(KeysInTurn):
             self.settings.units,
             self.settings.bare_pressure,
         )
+        if redressed:
+            self._write_units()
         if settings.theme != self.settings.theme:
             self.theme = pick_theme(settings.theme, self.environ, self.themes)
         self._take_settings(settings)
@@ -115,6 +120,19 @@ class House(KeysInTurn):
                 pane.units.clear()
             pane.read_all()
         self.head()
+
+    def _write_units(self) -> None:
+        """Write its unit behind every number on a form that has none: it keeps what it was typed to mean."""
+        for pane in self.base.query(SheetPane):
+            pane.write_units()
+            if pane.has_readings():
+                self.say("Readings that were typed keep the units they had.")
+        shown = {pane.check.name for pane in self.base.query(SheetPane)}
+        forms = self.saved.get("forms")
+        for name, form in forms.items() if isinstance(forms, dict) else ():
+            if name in CHECKS and name not in shown and isinstance(form, dict):
+                form["texts"] = whole_texts(CHECKS[name], form.get("texts"), form.get("units"), self.dress, self.site)
+                form["units"] = {}
 
     def compressor(self) -> CompressorMap | None:
         """Return the polynomials kept for the machine that is named, where they are for this refrigerant."""
@@ -212,13 +230,18 @@ class House(KeysInTurn):
     def keep(self, pane: SheetPane) -> None:
         """Keep what a sheet shows in the logbook."""
         if pane.answer is None or pane.refusal is not None:
-            word = pane.refusal.sentence() if pane.refusal else "There is no answer on this sheet yet."
+            word = refusal_words(pane.check, pane.refusal) or "There is no answer on this sheet yet."
             self.say(f"Not kept: {word}", CAUTION)
             return
+        if pane.kept_as is not None and not self.note:
+            self.say(f"Already kept as entry {pane.kept_as}; nothing has changed since.", stays=True)
+            return
         entry = entry_of(pane.check, pane.answer, pane.meant(), self.settings, self.dress, self.site, self.note)
-        self.book.do(lambda logbook: logbook.keep(entry), self._kept, self._not_kept)
+        self.book.do(lambda logbook: logbook.keep(entry), partial(self._kept, pane, pane.answer), self._not_kept)
 
-    def _kept(self, kept: Kept) -> None:
+    def _kept(self, pane: SheetPane, answer: Answer, kept: Kept) -> None:
+        if pane.answer is answer:
+            pane.kept_as = kept.entry.number
         at = kept.entry.kept_at.astimezone().strftime("%H:%M:%S")
         if not kept.already and self.note == kept.entry.note:
             self.note = ""
@@ -230,9 +253,17 @@ class House(KeysInTurn):
             return
         self.head()
         machine = f" for {kept.entry.tag}" if kept.entry.tag else ""
-        self.say(f"Kept at {at} as entry {kept.entry.number}{machine}. F6 shows the logbook.", stays=True)
-        for pane in self.base.query(LogbookPane):
-            pane.reload()
+        count = len([caution for caution in kept.entry.cautions if caution not in self.care()])
+        cautions = f", with {count} caution{'s' if count > 1 else ''}" if count else ""
+        self.say(f"Kept at {at} as entry {kept.entry.number}{machine}{cautions}. F6 shows the logbook.", stays=True)
+        for shown in self.base.query(LogbookPane):
+            shown.reload()
+
+    def forget_kept(self, number: int | None) -> None:
+        """An entry is deleted: the sheet that it was kept from may be kept again."""
+        for pane in self.base.query(SheetPane):
+            if pane.kept_as == number:
+                pane.kept_as = None
 
     def _not_kept(self, refusal: Refusal) -> None:
         self.trouble(f"NOT KEPT: {refusal.sentence()}", first=True)
@@ -248,22 +279,31 @@ class House(KeysInTurn):
             except Refusal as refusal:
                 self.say(refusal.sentence(), CAUTION)
                 return
+        machine = self.settings.tag
         self.apply(replace(self.settings, tag=entry.tag))
         await self.action_pane(entry.check)
-        self.base.query_one(f"#pane-{entry.check}", SheetPane).put(entry.readings)
+        pane = self.base.query_one(f"#pane-{entry.check}", SheetPane)
+        words = [f"Entry {entry.number} with its readings.", *self._otherwise_then(entry)]
+        style = CAUTION if len(words) > 1 else MUTED
+        if machine != entry.tag:
+            words.append(f"Machine now: {entry.tag or 'none'}.")
+        if pane.has_readings():
+            words.append("Ctrl+Z brings back what stood here.")
+        pane.put(entry.readings)
         self.head()
         self.form_changed()
-        self._say_opened(entry)
+        self.say(" ".join(words), style, stays=True)
 
-    def _say_opened(self, entry: Entry) -> None:
+    def _otherwise_then(self, entry: Entry) -> list[str]:
+        """Return what an entry rests on that is otherwise now."""
         then = entry.options.get("site", "")
         datum = entry.options.get("datum", self.settings.datum)
-        words = [f"Entry {entry.number} as it was typed."]
-        if then and then != self.site.source:
-            words.append(f"The site was then: {then}; now: {self.site.source}.")
-        if datum != self.settings.datum:
-            words.append(f"Enthalpy datum then {datum}, now {self.settings.datum}.")
-        self.say(" ".join(words), CAUTION if len(words) > 1 else MUTED, stays=True)
+        words = [f"The site was then: {then}; now: {self.site.source}."] if then and then != self.site.source else []
+        return (
+            [*words, f"Enthalpy datum then {datum}, now {self.settings.datum}."]
+            if (datum != self.settings.datum)
+            else words
+        )
 
     def use(self, found: Refrigerant) -> None:
         """Take this refrigerant for every sheet."""

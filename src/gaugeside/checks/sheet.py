@@ -144,7 +144,8 @@ class Outcome:
 class Check:
     """A check: name on the command line, label on the screen, its two dataclasses and its function.
 
-    needs_refrigerant: the function takes Conditions; else Surroundings.
+    needs_refrigerant: the function takes Conditions; else Surroundings. places: readings that are answered together,
+    each group without the others; none where all belong together.
     """
 
     name: str
@@ -154,6 +155,7 @@ class Check:
     findings: type[Any]
     run: Callable[[Any, Any], Outcome]
     needs_refrigerant: bool = True
+    places: tuple[tuple[str, ...], ...] = ()
 
     def reading_lines(self) -> tuple[ReadingLine, ...]:
         """Return the declared readings in their order."""

@@ -240,4 +240,9 @@ CHECK = Check(
     Readings,
     Findings,
     run,
+    places=(
+        ("suction_pressure", "suction_temperature", "suction_pressure_drop"),
+        ("liquid_pressure", "liquid_temperature", "liquid_pressure_drop"),
+        ("discharge_pressure", "discharge_temperature"),
+    ),
 )

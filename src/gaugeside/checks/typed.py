@@ -69,7 +69,8 @@ def takes(line: ReadingLine, units: FieldUnits, dress: Dress) -> str:
     if line.entry is Entry.QUANTITY:
         return default_unit(line.kind, units, dress).label
     if line.entry is Entry.EITHER:
-        return " or ".join(default_unit(kind, units, dress).label for kind in line.kinds)
+        kinds = _typed_last(line, units) or line.kinds
+        return " or ".join(default_unit(kind, units, dress).label for kind in kinds)
     if line.entry is Entry.STATE:
         return ", ".join(default_unit(kind, units, dress).label for kind in (Kind.PRESSURE, Kind.TEMPERATURE))
     return ""
@@ -102,6 +103,22 @@ def read_form(
     return typed
 
 
+def whole_texts(check: Check, texts: object, units: object, dress: Dress, site: Site) -> dict[str, str]:
+    """Return the texts of a form, of any hand, with its unit behind every number that had none."""
+    given = {str(name): str(text) for name, text in texts.items()} if isinstance(texts, Mapping) else {}
+    known = {
+        str(name): {str(kind): str(label) for kind, label in one.items()}
+        for name, one in (units.items() if isinstance(units, Mapping) else ())
+        if isinstance(one, Mapping)
+    }
+    whole = dict(given)
+    for line in check.reading_lines():
+        typed = read_line(line, given.get(line.name, ""), known.get(line.name, {}), dress, site)
+        if typed.value is not None and typed.complete:
+            whole[line.name] = typed.complete
+    return whole
+
+
 def first_choice(check: Check, typed: Mapping[str, TypedLine]) -> str | None:
     """Return what is chosen or named in the form's first line, None where it is neither or not understood."""
     first = check.reading_lines()[0]
@@ -118,7 +135,11 @@ def _quantity(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, sit
 def _from_reading(text: str, kind: Kind, units: FieldUnits, dress: Dress, site: Site, *, named: bool) -> TypedLine:
     reading = read(text, kind, default_unit(kind, units, dress), dress, site)
     value = {kind.value: reading.value} if named else reading.value
-    return TypedLine(text, value, understood(reading, dress, site), reading.complete(), _kept(units, reading))
+    first, second = understood(reading, dress, site)
+    if reading.bare_number and units.get(kind.value, "") not in ("", dress.default(kind).label):
+        # Not the unit that the reader would expect: the one typed here before.
+        first = f"{reading.complete()} = {first}"
+    return TypedLine(text, value, (first, second), reading.complete(), _kept(units, reading))
 
 
 def _kept(units: FieldUnits, reading: Reading) -> FieldUnits:
@@ -126,15 +147,19 @@ def _kept(units: FieldUnits, reading: Reading) -> FieldUnits:
 
 
 def _either(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site: Site) -> TypedLine:
-    """Read one of several kinds; a bare number is of the kind the field was last typed in, at first the first."""
+    """Read one of several kinds; a bare number is of the kind the field was last typed in, refused before."""
     _, unit_text = split_number(guard(text))
-    known = [kind for kind in line.kinds if kind.value in units]
-    kind = line.kinds[0]
+    known = _typed_last(line, units)
     if unit_text:
         kind = next((k for k in line.kinds if fold(unit_text) in spellings(k)), nearest_kind(unit_text, line.kinds))
     elif known:
-        order = list(units)
-        kind = max(known, key=lambda k: order.index(k.value))
+        kind = known[0]
+    else:
+        one = " ".join(text.split())
+        raise Refusal(
+            f"{quoted(text)} could be {' or '.join(f'a {k.value}' for k in line.kinds)}.",
+            f"Write {' or '.join(f'{one} {default_unit(k, units, dress).label}' for k in line.kinds)}.",
+        )
     others = {name: label for name, label in units.items() if name != kind.value}
     try:
         found = _from_reading(text, kind, units, dress, site, named=True)
@@ -146,6 +171,13 @@ def _either(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site:
     # The kind typed last stands last: it decides what a bare number is.
     kept = {**others, kind.value: found.units[kind.value]}
     return TypedLine(text, found.value, found.understood, found.complete, kept)
+
+
+def _typed_last(line: ReadingLine, units: FieldUnits) -> tuple[Kind, ...]:
+    """Return the kind that a field of several was last typed in, none where it is new."""
+    order = list(units)
+    known = [kind for kind in line.kinds if kind.value in units]
+    return (max(known, key=lambda kind: order.index(kind.value)),) if known else ()
 
 
 def _words(line: ReadingLine, text: str, units: FieldUnits, dress: Dress, site: Site) -> TypedLine:

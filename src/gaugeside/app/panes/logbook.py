@@ -151,7 +151,8 @@ class LogbookPane(VerticalScroll, can_focus=False):
             *self._wrapped(f"machine: {entry.tag}" if entry.tag else "", ""),
             *self._wrapped(readings, ""),
             *self._wrapped(f"note: {entry.note}" if entry.note else "", ""),
-            *(line for text in entry.cautions[:1] for line in self._wrapped(text, CAUTION)),
+            *self._wrapped(entry.headline, ""),
+            *(line for text in entry.cautions for line in self._wrapped(text, CAUTION)),
         ]
 
     def _wrapped(self, text: str, style: str) -> list[Styled]:
@@ -186,6 +187,7 @@ class LogbookPane(VerticalScroll, can_focus=False):
 
     def _is_deleted(self, entry: Entry) -> None:
         self._deleted.append(entry)
+        self.house.forget_kept(entry.number)
         self.reload()
         self.house.say(f"Entry {entry.number} is deleted; Ctrl+Z brings it back.")
 
@@ -217,9 +219,10 @@ class LogbookPane(VerticalScroll, can_focus=False):
 
         def write(typed: str, dialog: IntoFile) -> None:
             suffix = Path(typed).suffix.casefold()
+            instead = f"{typed.removesuffix(Path(typed).suffix)}.csv" if Path(typed).name else name
             if suffix not in (".csv", ".json"):
                 dialog.refuse(
-                    Refusal("The name must end in .csv or .json, which says what is written.", f"Type {name}.")
+                    Refusal("The name must end in .csv or .json, which says what is written.", f"Type {instead}.")
                 )
                 return
 

@@ -1,206 +1,63 @@
-"""A check's pane: its form as declared, its findings as they come back. It computes nothing."""
+"""A check's pane: its form, and its findings as they come back. It computes nothing."""
 
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from typing import TYPE_CHECKING, Any, cast
+from typing import Any
 
 from textual import events, on
-from textual.app import ComposeResult
-from textual.containers import VerticalScroll
 from textual.timer import Timer
-from textual.widget import Widget
 from textual.widgets import Input
 
 from gaugeside.app.panes.answer_lines import answer_lines, answer_of, picture_lines, refusal_words
-from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
-from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, RULE, Line, Lines, Styled
+from gaugeside.app.panes.form import FormPane
+from gaugeside.app.widgets.field import ChoiceField
+from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, RULE, Styled
 from gaugeside.checks.perform import request
 from gaugeside.checks.picture import DRAWN
-from gaugeside.checks.sheet import Answer, Check, Entry, ReadingLine
-from gaugeside.checks.typed import TypedLine, first_choice, read_line, takes
-from gaugeside.checks.view import wrapped
+from gaugeside.checks.sheet import Answer, Check, Entry
+from gaugeside.checks.view import sentence, wrapped
 from gaugeside.engine import Reply
 from gaugeside.errors import Refusal
 from gaugeside.keeping import headline, with_linked_entries
 
-if TYPE_CHECKING:
-    from gaugeside.app.house import House
-
 _PICK = "Press F8 and type part of the refrigerant's name."
-# Seconds after which a unit that was typed becomes the field's own although the field is not left.
-_SETTLE = 0.7
-# Seconds after which findings of older readings are taken off the screen while an answer is awaited or a unit is
-# half typed; at once would paint the sheet twice for every unit.
+_NO_PICTURE = "There is nothing to draw yet; Ctrl+G brings the form back."
+# Seconds after which findings of older readings are taken off the screen while an answer is awaited, and in which
+# a unit may be half typed before a word is said of it.
 _PATIENCE = 0.3
 # Seconds after that in which a unit may still be half typed.
 _HALF_TYPED = 1.7
 # In the rule over the findings while a reading is half typed: to take them away and paint them again at the end of
 # every unit would cost a slow line more than all else.
 _BEFORE = f"-- STILL OF THE READINGS BEFORE {RULE}"
+# In the same place when what is told rests on a part of the form.
+_WITHOUT = f"-- WITHOUT WHAT IS NOT UNDERSTOOD {RULE}"
 
 
-class SheetPane(VerticalScroll, can_focus=False):
-    """The pane of one check."""
+class SheetPane(FormPane):
+    """The pane of one check.
+
+    kept_as: number of the entry that holds what the sheet shows, None where there is none.
+    """
 
     def __init__(self, check: Check, saved: Mapping[str, Any]) -> None:
-        super().__init__(id=f"pane-{check.name}", classes="pane")
-        self.check = check
-        texts, units = saved.get("texts"), saved.get("units")
-        self._texts: dict[str, str] = {
-            line.name: str(texts.get(line.name, ""))[:200] if isinstance(texts, dict) else ""
-            for line in check.reading_lines()
-        }
-        self.units: dict[str, dict[str, str]] = {}
-        if isinstance(units, dict):
-            for name, known in units.items():
-                if isinstance(known, dict):
-                    self.units[str(name)] = {str(kind): str(label) for kind, label in known.items()}
-        self._lines: dict[str, FieldLine] = {}
-        self._rule = Line(RULE, MUTED, classes="rule")
-        self._findings = Lines(id="findings")
-        self._has_findings = False
-        self.typed: dict[str, TypedLine] = {}
+        super().__init__(check, saved)
         self.answer: Answer | None = None
         self.refusal: Refusal | None = None
-        self._left = ""
+        self.keeps_then = False
+        self.kept_as: int | None = None
+        self._has_findings = False
         self._without_answer = ("", "")
         self._asked = 0
         self._linking = 0
-        self.keeps_then = False
         self._picture: dict[str, Any] | None = None
         self._patience: Timer | None = None
-        self._settle: Timer | None = None
 
-    @property
-    def house(self) -> House:
-        """The app, by its own type."""
-        return cast("House", self.app)
-
-    def compose(self) -> ComposeResult:
-        """Column heads, the form, a rule, the findings."""
-        yield Line(f"{'reading':<20}{'as typed':<21}understood", MUTED)
-        for line in self.check.reading_lines():
-            text = self._texts[line.name]
-            field: TextField | ChoiceField
-            if line.entry is Entry.CHOICE:
-                field = ChoiceField(line.choices, text, id=line.name)
-            else:
-                field = TextField(text, id=line.name)
-            self._lines[line.name] = FieldLine(line.name, line.label, field)
-            yield self._lines[line.name]
-        yield self._rule
-        yield self._findings
-
-    def on_mount(self) -> None:
-        """Read what was saved; a number not before the first frame, which would wait for the unit library."""
-        if self.house.is_painted or not any(isinstance(f, TextField) and f.value for f in self._fields()):
-            self.read_all()
-            return
-        for line in self.check.reading_lines():
-            if not self._texts[line.name] or line.entry is Entry.CHOICE:
-                self._read(line)
-        self._show_meant()
-
-    def _fields(self) -> list[TextField | ChoiceField]:
-        return [line.field for line in self._lines.values()]
-
-    def meant(self) -> dict[str, TypedLine]:
-        """Return the lines that are shown, as read."""
-        return {name: typed for name, typed in self.typed.items() if self._lines[name].display}
-
-    def texts(self) -> dict[str, str]:
-        """Return what is typed, by reading."""
-        return {name: line.field.value for name, line in self._lines.items()} if self._lines else self._texts
-
-    def put(self, texts: Mapping[str, str]) -> None:
-        """Replace what is typed."""
-        for name, line in self._lines.items():
-            text = texts.get(name, "")
-            if isinstance(line.field, ChoiceField):
-                if text in line.field.choices:
-                    line.field.value = text
-            else:
-                with self.prevent(Input.Changed):
-                    line.field.value = text
-                    line.field.cursor_position = len(text)
-            self.units.pop(name, None)
+    def put(self, texts: Mapping[str, str], units: Mapping[str, dict[str, str]] | None = None) -> None:
+        """Replace what is typed; what stood there can be brought back."""
         self._show([])
-        self.read_all()
-
-    def clear(self) -> None:
-        """Empty every field of the form."""
-        self.put({name: line.field.value for name, line in self._lines.items() if isinstance(line.field, ChoiceField)})
-
-    def first_field(self) -> Widget:
-        """The field the cursor was left in, or the first that is typed in."""
-        line = self._lines.get(self._left)
-        return self.top_field() if line is None else line.field
-
-    def top_field(self) -> Widget:
-        """The first field that is typed in."""
-        return next(field for field in self._fields() if isinstance(field, TextField))
-
-    # Reading
-
-    def read_all(self) -> None:
-        """Read every line again, as after a change of site, units or refrigerant."""
-        if not self._lines:
-            # Not composed yet: it reads itself when it is.
-            return
-        for line in self.check.reading_lines():
-            self._read(line)
-        self._show_meant()
-        self._ask()
-
-    def _show_meant(self) -> None:
-        """Show only the lines that have a meaning under what the form's first line chooses."""
-        chosen = first_choice(self.check, self.typed)
-        for line in self.check.reading_lines():
-            self._lines[line.name].display = line.meant(chosen)
-
-    def _read(self, line: ReadingLine) -> None:
-        house = self.house
-        shown_line = self._lines[line.name]
-        units = self.units.get(line.name, {})
-        typed = read_line(line, shown_line.field.value, units, house.dress, house.site)
-        self.typed[line.name] = typed
-        if isinstance(shown_line.field, TextField):
-            placeholder = takes(line, units, house.dress)
-            if shown_line.field.placeholder != placeholder:
-                shown_line.field.placeholder = placeholder
-        first, second = typed.understood
-        if typed.refusal is not None:
-            shown_line.understood.say("? not understood, see below", CAUTION)
-        else:
-            shown_line.understood.say(f"{first:<18} {second}".rstrip() if second else first)
-
-    @on(Input.Changed)
-    def _typed_in(self, event: Input.Changed) -> None:
-        event.stop()
-        self._changed(str(event.input.id))
-
-    @on(ChoiceField.Changed)
-    def _chosen(self, event: ChoiceField.Changed) -> None:
-        event.stop()
-        self._changed(str(event.field.id))
-
-    def _changed(self, name: str) -> None:
-        line = self.check.reading_line(name)
-        self._read(line)
-        if line == self.check.reading_lines()[0]:
-            self._show_meant()
-        self._ask()
-        self.house.form_changed()
-        if self._settle is not None:
-            self._settle.stop()
-        self._settle = self.set_timer(_SETTLE, self.settle_units)
-
-    def settle_units(self) -> None:
-        """Make the units that were typed the fields' own."""
-        for name, typed in self.typed.items():
-            if typed.value is not None and typed.units and dict(typed.units) != self.units.get(name):
-                self.units[name] = dict(typed.units)
+        super().put(texts, units)
 
     def on_descendant_blur(self, event: events.DescendantBlur) -> None:
         """A field is left: its unit is settled, what was said has been read."""
@@ -211,17 +68,20 @@ class SheetPane(VerticalScroll, can_focus=False):
 
     def on_descendant_focus(self, event: events.DescendantFocus) -> None:
         """A field is entered: say what belongs in it."""
-        self._left = str(event.widget.id)
+        super().on_descendant_focus(event)
         if not self.house.word_stays:
             self.say_word()
 
     # Asking and showing
 
-    def _ask(self) -> None:
+    def ask(self) -> None:
+        """Ask what the readings tell; a key that comes meanwhile asks anew."""
         meant = self.meant()
         refused = [typed.refusal for typed in meant.values() if typed.refusal is not None]
+        # What is being typed is what the person looks at.
+        refused.sort(key=lambda refusal: not self._is_being_typed(refusal.field))
         self.answer, self.refusal = None, refused[0] if refused else None
-        self.keeps_then = False
+        self.keeps_then, self.kept_as = False, None
         self._linking += 1
         house = self.house
         values = {name: typed.value for name, typed in meant.items() if typed.value is not None}
@@ -238,8 +98,7 @@ class SheetPane(VerticalScroll, can_focus=False):
             else:
                 if self._has_findings and not self.has_class("-picture"):
                     self._rule.say(_BEFORE, MUTED)
-                if self._patience is None:
-                    self._patience = self.set_timer(_PATIENCE, self._out_of_patience)
+                self._be_patient(anew=True)
             return
         if any(isinstance(value, Mapping) and "entry" in value for value in values.values()):
             self._link(values)
@@ -276,8 +135,14 @@ class SheetPane(VerticalScroll, can_focus=False):
             drawn=self.has_class("-picture"),
         )
         self._asked = house.engine.ask(self.check.name, asked)
-        if self._patience is None:
-            self._patience = self.set_timer(_PATIENCE, self._out_of_patience)
+        self._be_patient(anew=False)
+
+    def _be_patient(self, *, anew: bool) -> None:
+        if self._patience is not None:
+            if not anew:
+                return
+            self._patience.stop()
+        self._patience = self.set_timer(_PATIENCE, self._out_of_patience)
 
     @property
     def _has_refrigerant(self) -> bool:
@@ -288,8 +153,21 @@ class SheetPane(VerticalScroll, can_focus=False):
         return focused is not None and focused.id == name
 
     def _show_without_answer(self) -> None:
-        self._show_nothing(*self._without_answer)
+        rest = self._apart_from_refused()
+        if rest:
+            self._put_question(rest)
+        else:
+            self._show_nothing(*self._without_answer)
         self.say_word()
+
+    def _apart_from_refused(self) -> dict[str, Any]:
+        """Return the values of the places whose readings are all understood, where one place stands without another."""
+        meant = self.meant()
+        refused = {name for name, typed in meant.items() if typed.refusal is not None}
+        places = [place for place in self.check.places if refused.isdisjoint(place)]
+        if not refused or not self._has_refrigerant:
+            return {}
+        return {name: meant[name].value for place in places for name in place if meant[name].value is not None}
 
     def _out_of_patience(self) -> None:
         self._patience = None
@@ -307,6 +185,8 @@ class SheetPane(VerticalScroll, can_focus=False):
             self._show_without_answer()
 
     def _show_nothing(self, *words: str) -> None:
+        if self.has_class("-picture"):
+            words = (_NO_PICTURE, *words[1:])
         width = self._width
         lines = [(text, MUTED) for word in words for text in wrapped(word, width)]
         self._show([*self._long_refusal(), *lines])
@@ -333,7 +213,9 @@ class SheetPane(VerticalScroll, can_focus=False):
         if self._patience is not None:
             self._patience.stop()
             self._patience = None
+        not_read = self.refusal
         self.answer, self.refusal = answer_of(reply)
+        self.refusal = not_read or self.refusal
         self._picture = reply.picture
         self._show_answer()
         if not self.house.word_stays:
@@ -354,6 +236,8 @@ class SheetPane(VerticalScroll, can_focus=False):
                     self.check, self.answer, house.dress, house.site, self._width, house.stands_already()
                 )
         self._show([*self._long_refusal(), *lines], has_findings=self.answer is not None)
+        if self.answer is not None and self._apart_from_refused():
+            self._rule.say(_WITHOUT, MUTED)
 
     def lay_out(self) -> None:
         """Show the answer anew, as after a change of the window's size."""
@@ -367,7 +251,7 @@ class SheetPane(VerticalScroll, can_focus=False):
             return
         self.toggle_class("-picture")
         self.scroll_home(animate=False)
-        self._ask()
+        self.ask()
 
     def say_word(self) -> None:
         """Show under the sheet what stands in the way, or what belongs in the field."""
@@ -382,9 +266,16 @@ class SheetPane(VerticalScroll, can_focus=False):
         )
         filled = line is None or bool(self._lines[line.name].field.value.strip())
         if filled and self.answer is not None and self._findings_out_of_sight():
-            self.house.say(headline(self.check, self.answer, self.house.dress, self.house.site), MAIN)
+            self.house.say(*self._what_is_told(self.answer))
         else:
             self.house.say(f"{line.label}: {line.help}" if line is not None else "", MUTED)
+
+    def _what_is_told(self, answer: Answer) -> Styled:
+        """Return in one line what stands below the window: what is wrong before what was asked for."""
+        house = self.house
+        cautions = [sentence(remark, house.dress, house.site) for remark in answer.cautions]
+        urgent = [caution for caution in cautions if caution not in house.care()]
+        return (urgent[0], CAUTION) if urgent else (headline(self.check, answer, house.dress, house.site), MAIN)
 
     def _findings_out_of_sight(self) -> bool:
         """Whether the form is so long that what it tells stands below the window."""

@@ -49,9 +49,9 @@ class SitePane(VerticalScroll, can_focus=False):
             "site_pressure", "altitude/barometer", TextField(settings.site_pressure_text, id="site_pressure")
         )
         self._choice("dress", "units", ("si", "ip"), settings.dress)
-        plain = Dress(settings.dress)
+        dress = dress_of(settings)
         for kind in CHOOSABLE:
-            chosen = settings.units.get(kind.value) or plain.unit(kind).label
+            chosen = dress.unit(kind).label
             self._choice(f"unit-{kind.name}", f" {_SHORT.get(kind, kind.value)}", bare_labels(kind), chosen)
         self._choice("bare_pressure", "bare pressure is", ("gauge", "absolute"), settings.bare_pressure)
         self._choice("datum", "enthalpy datum", tuple(Datum), settings.datum)
