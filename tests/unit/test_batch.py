@@ -611,3 +611,9 @@ def test_a_stage_below_may_be_named_in_a_row(run: Run, isolated: Path) -> None:
         "stage below: There is no entry 2 in the logbook. The list shows the numbers there are."
     )
     assert Logbook(isolated / "logbook.sqlite3").count() == 1, "a batch keeps nothing"
+
+
+@pytest.mark.parametrize("text", ["1e-400 bar abs", "0.1e-330 bar g", "-1e-999 kPa"])
+def test_a_number_too_small_to_hold_is_no_zero(text: str, run: Run) -> None:
+    (row,) = run("superheat R-134a", f"suction pressure\n{text}\n").rows
+    assert "is too small a number. Check the digits." in row["refused"]

@@ -123,6 +123,8 @@ def split_number(text: str) -> tuple[float, str]:
     value = float(mantissa + (found["exponent"] or ""))
     if not math.isfinite(value):
         raise Refusal(f"{quoted(text)} is too large a number.", "Check the digits.")
+    if value == 0 and mantissa.strip("0."):
+        raise Refusal(f"{quoted(text)} is too small a number.", "Check the digits.")
     sign = -1.0 if (found["sign"] or "").startswith("-") else 1.0
     return sign * value, text[found.end() :].strip()
 
@@ -182,6 +184,8 @@ def read(text: str, kind: Kind, default: Unit, dress: Dress, site: Site) -> Read
             raise _up_or_down(f"{stripped} {unit.label}" if bare_number else stripped, unit)
         unit, bare_sense = with_sense(unit, sense), True
     si = _counted(value, unit, kind, site, stripped)
+    if si == 0 and value != 0 and kind is not Kind.TEMPERATURE:
+        raise Refusal(f"{quoted(stripped)} is too small a number.", "Check the digits.")
     return Reading(text, kind, _possible(si, kind, stripped, site), unit, bare_number, bare_sense)
 
 
