@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import csv
 import io
+import itertools
 import json
 import os
 import signal
@@ -111,7 +112,10 @@ def test_an_empty_logbook_goes_out_empty_and_nothing_is_made(isolated: Path, cap
     assert main(["logbook", "export"]) == 0
     assert json.loads(capfd.readouterr().out)["entries"] == []
     assert main(["logbook", "export", "--csv"]) == 0
-    assert capfd.readouterr().out == "number,kept_at,check,refrigerant,tag,note,headline,cautions\n"
+    assert (
+        capfd.readouterr().out
+        == "number,kept_at,check,refrigerant,tag,note,headline,site,site pressure [Pa],datum,cautions\n"
+    )
     assert not isolated.exists()
 
 
@@ -128,8 +132,8 @@ def test_csv_has_a_column_for_every_reading_and_finding(filled: Logbook, capfd: 
     assert main(["logbook", "export", "--csv"]) == 0
     rows = list(csv.DictReader(io.StringIO(capfd.readouterr().out)))
     assert list(rows[0]) == [
-        "number", "kept_at", "check", "refrigerant", "tag", "note", "headline", "suction pressure",
-        "suction temperature", "reading", "superheat [K]", "heat absorbed [W]", "heat rejected [W]", "glide [K]",
+        "number", "kept_at", "check", "refrigerant", "tag", "note", "headline", "site", "site pressure [Pa]", "datum",
+        "suction pressure", "suction temperature", "reading", "superheat [K]", "heat absorbed [W]", "heat rejected [W]", "glide [K]",
         "cautions",
     ]  # fmt: skip
     assert [row["note"] for row in rows] == ["oldest", "between", "newest", "more"]
@@ -502,3 +506,102 @@ def test_read_document_is_the_one_door() -> None:
     assert read_document(document(whole).encode()).entries == [whole]
     with pytest.raises(Refusal, match="no JSON document"):
         read_document(b"\x00")
+
+
+def test_numbers_of_the_csv_have_no_digits_that_no_reading_has(
+    book: Logbook, capfd: pytest.CaptureFixture[str]
+) -> None:
+    exact = {"superheat": 20 / 3, "heat absorbed": -12345678.9, "mass flow": 1 / 7e6, "share": 1, "region": "wet"}
+    book.keep(invented("a", findings={name: {"value": value, "unit": ""} for name, value in exact.items()}))
+    assert main(["logbook", "export", "--csv"]) == 0
+    (row,) = csv.DictReader(io.StringIO(capfd.readouterr().out))
+    # By hand, to seven digits.
+    assert row["superheat"] == "6.666667"
+    assert float(row["heat absorbed"]) == -12345680
+    assert row["mass flow"] == "1.428571e-07"
+    assert float(row["share"]) == 1
+    assert row["region"] == "wet"
+    assert main(["logbook", "export"]) == 0
+    (entry,) = json.loads(capfd.readouterr().out)["entries"]
+    assert {name: one["value"] for name, one in entry["findings"].items()} == exact
+
+
+@pytest.mark.skipif(not hasattr(time, "tzset"), reason="the zone of a process is set so on POSIX systems alone")
+def test_the_moment_of_the_csv_is_local_with_its_offset(
+    book: Logbook, capfd: pytest.CaptureFixture[str], monkeypatch: pytest.MonkeyPatch
+) -> None:
+    for month in (7, 12):
+        moment = datetime(2026, month, 1, 19, 4, 14, 987654, tzinfo=UTC)
+        book.keep(replace(invented(f"{month}"), kept_at=moment))
+    # Central European rules: an hour ahead, two from the last Sunday of March to that of October.
+    monkeypatch.setenv("TZ", "CET-1CEST,M3.5.0,M10.5.0/3")
+    time.tzset()
+    try:
+        assert main(["logbook", "export", "--csv"]) == 0
+        rows = list(csv.DictReader(io.StringIO(capfd.readouterr().out)))
+        assert [row["kept_at"] for row in rows] == ["2026-07-01 21:04:14+02:00", "2026-12-01 20:04:14+01:00"]
+    finally:
+        monkeypatch.undo()
+        time.tzset()
+
+
+def test_gauge_readings_of_the_csv_can_be_worked_again(isolated: Path, capfd: pytest.CaptureFixture[str]) -> None:
+    asked = ["superheat", "R-134a", "--suction-pressure", "2 bar g", "--suction-temperature", "5 C", "--keep"]
+    assert main([*asked, "--altitude", "1600 m", "--datum", "ashrae"]) == 0
+    capfd.readouterr()
+    assert main(["logbook", "export", "--csv"]) == 0
+    (row,) = csv.DictReader(io.StringIO(capfd.readouterr().out))
+    # ISO 2533: 101325 Pa (1 - 2.25577e-5 * 1600)^5.25588.
+    atmosphere = 101325 * (1 - 2.25577e-5 * 1600) ** 5.25588
+    assert float(row["site pressure [Pa]"]) == pytest.approx(atmosphere, rel=1e-5)
+    assert "1600" in row["site"]
+    assert row["datum"] == "ashrae"
+    again = [*asked[:-1], "--barometer", f"{row['site pressure [Pa]']} Pa", "--json"]
+    assert main(again) == 0
+    found = json.loads(capfd.readouterr().out)["findings"]["superheat"]["value"]
+    assert float(row["superheat [K]"]) == pytest.approx(found, abs=1e-3)
+
+
+def test_an_entry_that_says_no_site_has_blank_cells_for_it(book: Logbook, capfd: pytest.CaptureFixture[str]) -> None:
+    book.keep(invented("a", options={}))
+    book.keep(invented("b", hours=1, options={"site pressure": "=1+1", "datum": "iir"}))
+    assert main(["logbook", "export", "--csv"]) == 0
+    first, second = csv.DictReader(io.StringIO(capfd.readouterr().out))
+    assert (first["site"], first["site pressure [Pa]"], first["datum"]) == ("", "", "")
+    assert (second["site pressure [Pa]"], second["datum"]) == ("'=1+1", "iir")
+
+
+def test_the_columns_of_a_list_stand_where_they_are_whatever_an_entry_lacks(
+    book: Logbook, capfd: pytest.CaptureFixture[str]
+) -> None:
+    book.keep(invented("", hours=1, tag="", headline="superheat 5.0 K"))
+    book.keep(invented("door open", hours=2, tag="rack 2", headline="superheat 12.0 K"))
+    book.keep(invented("by night", hours=3, check="stream", refrigerant="", tag="", headline="heat absorbed 3.1 kW"))
+    book.keep(invented("long", hours=4, tag="t" * 60, headline="h" * 300))
+    assert main(["logbook", "list"]) == 0
+    long, stream, rack, bare = capfd.readouterr().out.splitlines()
+    tag, headline, note = rack.index("rack 2"), rack.index("superheat 12"), rack.index("door open")
+    assert bare[tag:].split() == ["-", "superheat", "5.0", "K", "-"]
+    assert (bare[headline:note].strip(), bare[note:]) == ("superheat 5.0 K", "-")
+    assert stream[:tag].split()[-2:] == ["stream", "-"]
+    assert (stream[tag:headline].strip(), stream[headline:note].strip()) == ("-", "heat absorbed 3.1 kW")
+    assert stream[note:] == "by night"
+    # One long text is written out and moves no other line.
+    assert "t" * 60 in long
+    assert long.endswith(f"{'h' * 300}  long")
+    assert max(map(len, (stream, rack, bare))) < 140
+
+
+@pytest.mark.parametrize("order", list(itertools.permutations("abc")))
+def test_an_entry_with_two_links_waits_for_both(
+    order: tuple[str, ...], book: Logbook, tmp_path: Path, capfd: pytest.CaptureFixture[str]
+) -> None:
+    book.keep(machine("in the way", 0))
+    both = machine(
+        "c", 3, number=3, readings={"one": "1", "other": "2"}, values={"one.entry": 1.0, "other.entry": 2.0}
+    )
+    found = {"a": machine("a", 1, number=1), "b": machine("b", 2, number=2), "c": both}
+    assert took(tmp_path, document(*(found[note] for note in order)), capfd)[0] == 0
+    here = {entry.note: entry for entry in book.entries()}
+    assert here["c"].readings == {"one": str(here["a"].number), "other": str(here["b"].number)}
+    assert here["c"].cautions == []

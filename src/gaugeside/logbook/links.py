@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections import Counter
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import replace
 
 from gaugeside.logbook.entry import Entry
@@ -12,24 +12,25 @@ from gaugeside.logbook.entry import Entry
 def linked_first(entries: Sequence[Entry]) -> list[Entry]:
     """Return the entries in their order, but those that others name before these; a number that comes twice is none."""
     counts = Counter(entry.number for entry in entries)
-    waiting: dict[int | None, list[Entry]] = {number: [] for number in counts}
+    # Each with those of its targets that were not looked at yet.
+    waiting: dict[int | None, list[tuple[Entry, Iterator[int]]]] = {number: [] for number in counts}
     placed: list[Entry] = []
     done: set[int | None] = set()
     for own in entries:
         entry = own if counts[own.number] == 1 else replace(own, number=None)
-        target = next((n for _, n in links(entry) if counts[n] == 1 and n not in done), None)
-        if target is not None:
-            waiting[target].append(entry)
-            continue
-        ready = [entry]
+        ready = [(entry, iter([number for _, number in links(entry) if counts[number] == 1]))]
         while ready:
-            one = ready.pop()
+            one, targets = ready.pop()
+            missing = next((number for number in targets if number not in done), None)
+            if missing is not None:
+                waiting[missing].append((one, targets))
+                continue
             placed.append(one)
             done.add(one.number)
             if one.number is not None:
                 ready += reversed(waiting.pop(one.number, []))
     # What is left names each other in a ring.
-    return placed + [entry for ring in waiting.values() for entry in ring]
+    return placed + [entry for ring in waiting.values() for entry, _ in ring]
 
 
 def links(entry: Entry) -> list[tuple[str, int]]:
