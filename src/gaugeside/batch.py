@@ -6,6 +6,7 @@ import csv
 import io
 import json
 import os
+import re
 from argparse import Namespace
 from collections.abc import Callable, Iterable, Iterator, Sequence
 from contextlib import nullcontext
@@ -28,6 +29,7 @@ from gaugeside.text import plain_text
 Printer = Callable[[str], None]
 LONGEST_LINE = 60_000  # [bytes]
 MOST_NAMED = 10  # columns, notes
+_DECIMAL_COMMA = re.compile(r"\d,\d")
 _LAST = ("cautions", "notes", "refused")
 
 
@@ -202,11 +204,19 @@ class _Batch:
         headings = [*self._header.names, *(heading for _, _, heading in columns), *_LAST]
         yield self._csv_line([cell(name) for name in headings])
         for row in self._rows(numbered):
+            self._say_the_point(row)
             cells = [self._carried(row, place) for place in range(len(self._header.names))]
             cells += [self._found(row.answer, line, to) for line, to, _ in columns]
             cautions, notes = ((), ()) if row.answer is None else (row.answer.cautions, row.answer.notes)
             cells += [self._remarks(cautions), self._remarks([note for note in notes if note != self._model])]
             yield self._csv_line([*cells, cell(_told(row.refusal))])
+
+    def _say_the_point(self, row: _Row) -> None:
+        """Say once that numbers are written with a point where the readings have commas."""
+        understood = (line.text for line in row.typed.values() if line.value is not None)
+        # Where a comma parts the cells, another one in them would part them again.
+        if self._point == "." and self._header.delimiter != "," and any(map(_DECIMAL_COMMA.search, understood)):
+            self._tell_once("point", "Numbers are written with a point; --decimal-comma writes commas.")
 
     def _remarks(self, remarks: Iterable[Remark]) -> str:
         return cell(" ".join(sentence(remark, self._under.dress, self._under.site) for remark in remarks))

@@ -17,6 +17,7 @@ from gaugeside.text import plain_text
 MOST_COLUMNS = 1000
 DELIMITERS = {",": "comma", ";": "semicolon", "\t": "tab"}
 _NEAR = 0.75  # of difflib's measure, 1 for the same
+_MOST_NAMED = 10  # cells without a column
 _LONGEST_NAME = 80  # [characters], of a column that can be a reading
 _UNIT = re.compile(r"(?P<name>[^\[(]*)[\[(](?P<unit>.*)[\])]\s*\Z", re.DOTALL)
 _STATE_KINDS = (Kind.PRESSURE, Kind.TEMPERATURE, Kind.SPECIFIC_ENTHALPY, Kind.FRACTION)
@@ -151,8 +152,16 @@ def fitted(header: Header, cells: Sequence[str]) -> list[str]:
     if any(cell.strip() for cell in cells[wanted:]) or (len(cells) < wanted and header.delimiter == ","):
         # With too few cells, too, a decimal comma may have made two of one.
         hint = f" {_SPLIT_READING}" if header.delimiter == "," else ""
-        raise Refusal(f"This row has {len(cells)} cells, the header {wanted}.", f"Give every column its cell.{hint}")
+        message = f"This row has {len(cells)} cells, the header {wanted}{_surplus(cells[wanted:])}."
+        raise Refusal(message, f"Give every column its cell.{hint}")
     return [*cells[:wanted], *[""] * (wanted - len(cells))]
+
+
+def _surplus(cells: Sequence[str]) -> str:
+    """Return the cells that have no column as the end of a sentence, empty without any."""
+    named = [quoted(cell.strip()) for cell in cells[:_MOST_NAMED]]
+    more = f" and {len(cells) - _MOST_NAMED} more" if len(cells) > _MOST_NAMED else ""
+    return f"; without a column: {', '.join(named)}{more}" if named else ""
 
 
 def _split(check: Check, line: str) -> tuple[str, list[str]]:

@@ -617,3 +617,60 @@ def test_a_stage_below_may_be_named_in_a_row(run: Run, isolated: Path) -> None:
 def test_a_number_too_small_to_hold_is_no_zero(text: str, run: Run) -> None:
     (row,) = run("superheat R-134a", f"suction pressure\n{text}\n").rows
     assert "is too small a number. Check the digits." in row["refused"]
+
+
+def test_the_cells_of_a_row_without_a_column_are_named(run: Run) -> None:
+    header = "suction pressure;suction temperature\n"
+    (row,) = run("superheat R-134a", f"{header}2 bar;5 C;cold room; door open;{'x' * 90}\n").rows
+    assert "This row has 5 cells, the header 2; without a column: 'cold room', 'door open', 'xxx" in row["refused"]
+    assert "x" * 33 not in row["refused"]
+    (row,) = run("superheat R-134a", f"{header}2 bar;5 C{';y' * 500}\n").rows
+    assert row["refused"].count("'y'") == 10
+    assert "and 490 more" in row["refused"]
+    assert "refused" not in run("superheat R-134a", f"{header}2 bar;5 C;;\n").rows[0]["refused"]
+
+
+def test_a_decimal_comma_that_is_read_is_told_of_once(run: Run) -> None:
+    told = "Numbers are written with a point; --decimal-comma writes commas."
+    header = "suction pressure;suction temperature\n"
+    for delimiter in (";", "\t"):
+        table = f"{header}2,6;5,5\n2,7 bar g;5\n".replace(";", delimiter)
+        found = run("superheat R-134a", table)
+        assert found.err.count(told) == 1
+        assert "," not in found.rows[0]["superheat [K]"]
+        assert told not in run("superheat R-134a", table, "--decimal-comma").err
+        # JSON has points alone, and no choice.
+        assert told not in run("superheat R-134a", table, "--json").err
+    assert told not in run("superheat R-134a", f"{header}2.6;5.5\n").err
+    assert told not in run("superheat R-134a", 'suction pressure,suction temperature\n"2,6","5,5"\n').err
+    # No decimal comma, but the comma between the parts of a state.
+    table = "component;inlet;outlet\ncondenser;9.1 bar g, 68 C;SC 4 K\n"
+    assert told not in run("component R-134a", table).err
+
+
+def test_the_name_of_a_file_may_begin_like_a_number(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capfd: pytest.CaptureFixture[str]
+) -> None:
+    monkeypatch.chdir(tmp_path)
+    (tmp_path / "-7.csv").write_text("reading\n0 °C\n", encoding="utf-8")
+    (tmp_path / " -7.csv").write_text("not this one")
+    assert main(["batch", "saturation", "R-134a", "-7.csv", "--to", "-8.csv"]) == 0
+    assert main(["logbook", "export", "--to", "-9.json", "--logbook", "-5.sqlite3"]) == 0
+    assert main(["logbook", "import", "-9.json"]) == 0
+    assert capfd.readouterr().out.startswith("0 entries taken")
+    assert {path.name for path in tmp_path.iterdir()} >= {"-7.csv", "-8.csv", "-9.json"}
+    assert not list(tmp_path.glob(" -[89]*"))
+
+
+def test_nothing_is_done_where_the_answer_has_nowhere_to_go(tmp_path: Path) -> None:
+    (tmp_path / "t.csv").write_text("reading\n0 C\n")
+    closed = ["sh", "-c", 'exec "$0" -m gaugeside "$@" >&-', sys.executable]
+    keep = ["superheat", "R-134a", "--suction-pressure", "2 bar g", "--keep"]
+    for words in (["batch", "saturation", "R-134a", str(tmp_path / "t.csv")], keep):
+        done = subprocess.run([*closed, *words], env=clean_environ(tmp_path), stderr=subprocess.PIPE, check=False)
+        assert done.returncode == 1
+        assert done.stderr.startswith(b"Standard output is closed, so nothing was done.")
+    assert [path.name for path in tmp_path.iterdir()] == ["t.csv"]
+    into = ["batch", "saturation", "R-134a", str(tmp_path / "t.csv"), "--to", str(tmp_path / "new.csv")]
+    assert subprocess.run([*closed, *into], env=clean_environ(tmp_path), check=False).returncode == 0
+    assert (tmp_path / "new.csv").read_text().count("\n") == 2
