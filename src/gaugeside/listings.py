@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import json
 from argparse import Namespace
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from typing import Any
 
 from gaugeside.files import OR_REPLACE, STANDARD, content
@@ -17,6 +17,8 @@ from gaugeside.refrigerants import find, load_own, search
 from gaugeside.settings import places
 
 Printer = Callable[[str], None]
+# Columns of a list of entries [characters]; the note stands last and has no end.
+_MOST = (9, 16, 10, 12, 16, 60, 0)
 
 
 def list_refrigerants(arguments: Namespace, say: Printer) -> int:
@@ -65,8 +67,8 @@ def list_logbook(arguments: Namespace, say: Printer) -> int:
     if arguments.json:
         say(json.dumps({"entries": [entry_json(entry) for entry in found]}))
         return 0
-    for entry in found:
-        say(entry_line(entry))
+    for line in entry_lines(found):
+        say(line)
     if not found:
         say("No entry." if arguments.words else "The logbook is empty.")
     return 0
@@ -78,7 +80,7 @@ def show_entry(arguments: Namespace, say: Printer) -> int:
     if arguments.json:
         say(json.dumps(entry_json(entry)))
         return 0
-    say(entry_line(entry))
+    say(*entry_lines([entry]))
     for name, text in entry.readings.items():
         say(f"  {name.replace('_', ' '):<24}{text}")
     if entry.options.get("site"):
@@ -89,11 +91,20 @@ def show_entry(arguments: Namespace, say: Printer) -> int:
     return 0
 
 
-def entry_line(entry: LogbookEntry) -> str:
-    """Return one entry as one line."""
-    when = entry.kept_at.astimezone().strftime("%Y-%m-%d %H:%M")
-    parts = (f"{entry.number:>4}", when, entry.check, entry.refrigerant, entry.tag, entry.headline, entry.note)
-    return "  ".join(part for part in parts if part)
+def entry_lines(entries: Sequence[LogbookEntry]) -> list[str]:
+    """Return each entry as one line, in columns; what an entry lacks is a dash."""
+    rows = [
+        [
+            f"{entry.number:>4}",
+            entry.kept_at.astimezone().strftime("%Y-%m-%d %H:%M"),
+            *(text or "-" for text in (entry.check, entry.refrigerant, entry.tag, entry.headline, entry.note)),
+        ]
+        for entry in entries
+    ]
+    # One long text pushes on what stands behind it in its own line, not in all others.
+    columns = zip(*rows, strict=True)
+    widths = [min(max(map(len, column)), most) for column, most in zip(columns, _MOST, strict=False)]
+    return ["  ".join(map(str.ljust, row, widths)).rstrip() for row in rows]
 
 
 def export_logbook(arguments: Namespace, put: Printer) -> int:

@@ -133,8 +133,8 @@ def test_csv_has_a_column_for_every_reading_and_finding(filled: Logbook, capfd: 
     rows = list(csv.DictReader(io.StringIO(capfd.readouterr().out)))
     assert list(rows[0]) == [
         "number", "kept_at", "check", "refrigerant", "tag", "note", "headline", "site", "site pressure [Pa]", "datum",
-        "suction pressure", "suction temperature", "reading", "superheat [K]", "heat absorbed [W]", "heat rejected [W]", "glide [K]",
-        "cautions",
+        "suction pressure", "suction temperature", "reading", "superheat [K]", "heat absorbed [W]",
+        "heat rejected [W]", "glide [K]", "cautions",
     ]  # fmt: skip
     assert [row["note"] for row in rows] == ["oldest", "between", "newest", "more"]
     assert rows[0]["suction pressure"] == "38 psig"

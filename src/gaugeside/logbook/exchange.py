@@ -36,6 +36,9 @@ TOLD = 5  # refused entries that are told one by one
 _WINDOW, _LARGEST_WINDOW = 16_384, 16_384 * 4**4  # [characters]
 _BLANK = re.compile(r"[ \t\r\n]*")
 _HEAD = ("number", "kept_at", "check", "refrigerant", "tag", "note", "headline")
+# What gauge readings were worked with, by the name of the option.
+_RESTS_ON = {"site": "site", "site pressure": "site pressure [Pa]", "datum": "datum"}
+_DIGITS = 7  # of a number in the CSV
 _NAMES = ("check", "refrigerant", "tag", "program_version", "library_version")
 _ONLY_JSON = "Take in what gaugeside logbook export wrote without --csv."
 
@@ -94,18 +97,25 @@ def csv_lines(entries: Callable[[], Iterable[Entry]]) -> Iterator[str]:
                 "Add words that choose fewer entries, or write them as JSON.",
             )
     headings = [f"{name.replace('_', ' ')}{f' [{unit}]' if unit else ''}" for name, unit in findings]
-    yield _csv_line([*_HEAD, *(name.replace("_", " ") for name in readings), *headings, "cautions"])
+    typed = [name.replace("_", " ") for name in readings]
+    yield _csv_line([*_HEAD, *_RESTS_ON.values(), *typed, *headings, "cautions"])
     for entry in entries():
-        plain = entry_json(entry)
-        found = {(name, _unit(one)): one.get("value", "") for name, one in entry.findings.items()}
+        plain = entry_json(entry) | {"kept_at": entry.kept_at.astimezone().isoformat(" ", "seconds")}
+        found = {(name, _unit(one)): _rounded(one.get("value", "")) for name, one in entry.findings.items()}
         yield _csv_line(
             [
                 *(plain[name] for name in _HEAD),
+                *(entry.options.get(name, "").removesuffix(" Pa") for name in _RESTS_ON),
                 *(entry.readings.get(name, "") for name in readings),
                 *(found.get(column, "") for column in findings),
                 " ".join(entry.cautions),
             ]
         )
+
+
+def _rounded(value: object) -> object:
+    """Return a number without the digits that no reading has."""
+    return float(f"{value:.{_DIGITS}g}") if isinstance(value, int | float) else value
 
 
 def _unit(finding: Mapping[str, Any]) -> str:
