@@ -597,9 +597,7 @@ def test_an_entry_with_two_links_waits_for_both(
     order: tuple[str, ...], book: Logbook, tmp_path: Path, capfd: pytest.CaptureFixture[str]
 ) -> None:
     book.keep(machine("in the way", 0))
-    both = machine(
-        "c", 3, number=3, readings={"one": "1", "other": "2"}, values={"one.entry": 1.0, "other.entry": 2.0}
-    )
+    both = machine("c", 3, number=3, readings={"one": "1", "other": "2"}, values={"one.entry": 1.0, "other.entry": 2.0})
     found = {"a": machine("a", 1, number=1), "b": machine("b", 2, number=2), "c": both}
     assert took(tmp_path, document(*(found[note] for note in order)), capfd)[0] == 0
     here = {entry.note: entry for entry in book.entries()}
