@@ -5,18 +5,16 @@ from __future__ import annotations
 import argparse
 import json
 import os
-import re
 import shutil
 import sys
 from collections.abc import Callable, Sequence
-from pathlib import Path
 from typing import Any, NoReturn
 
 from gaugeside import __version__
 from gaugeside.errors import Refusal
+from gaugeside.options import add_batch, add_common, add_logbook, as_typed, plain, shielded, typed_path, with_example
 
 _LONGEST_MESSAGE = 500  # [characters]: a refused word may be of any length
-_MINUS_READING = re.compile(r"[-−]\s*[.,]?[0-9]")
 
 
 class _Parser(argparse.ArgumentParser):
@@ -37,7 +35,7 @@ class _Parser(argparse.ArgumentParser):
 
 def main(argv: Sequence[str] | None = None) -> int:
     """Run the command line; return 0 for an answer, 2 for refused input, 1 for trouble of our own."""
-    words = [_shielded(word) for word in (sys.argv[1:] if argv is None else argv)]
+    words = [shielded(word) for word in (sys.argv[1:] if argv is None else argv)]
     try:
         try:
             code = _run(words)
@@ -79,12 +77,14 @@ def _run(words: Sequence[str]) -> int:
     except SystemExit as leave:
         # After --help and --version.
         return int(leave.code or 0)
-    return _open_app(arguments) if arguments.run is None else int(arguments.run(arguments))
-
-
-def _shielded(word: str) -> str:
-    """Return a reading that starts with a minus sign so that it is not taken for an option."""
-    return f" {word}" if _MINUS_READING.match(word) else word
+    for name, value in vars(arguments).items():
+        setattr(arguments, name, as_typed(value) if isinstance(value, str) else value)
+    if arguments.run is None:
+        return _open_app(arguments)
+    if sys.stdout is None and getattr(arguments, "to", None) in (None, "-"):
+        _print("Standard output is closed, so nothing was done. Open it, or send it to a file.", sys.stderr)
+        return 1
+    return int(arguments.run(arguments))
 
 
 def _refuse(refusal: Refusal, as_json: bool) -> int:
@@ -149,7 +149,7 @@ def _app_parser(description: str | None) -> _Parser:
     parser = _Parser(prog="gaugeside", description=description, add_help=description is not None)
     if description is not None:
         parser.add_argument("--version", action="version", version=f"gaugeside {__version__}")
-    parser.add_argument("--logbook", type=Path, metavar="PATH", help="use this logbook file")
+    parser.add_argument("--logbook", type=typed_path, metavar="PATH", help="use this logbook file")
     parser.add_argument("--ascii", action="store_true", help="write ASCII characters alone, on the screen too")
     parser.add_argument(
         "--demo", action="store_true", help="open the app on an invented cold store, in a throw-away folder"
@@ -168,60 +168,38 @@ def _parser() -> argparse.ArgumentParser:
     commands = parser.add_subparsers(title="commands", metavar="COMMAND")
     for check in CHECKS.values():
         _add_check(commands, check)
-    convert = commands.add_parser("convert", help="one reading in every unit of its kind", **_with_example("convert"))
+    convert = commands.add_parser("convert", help="one reading in every unit of its kind", **with_example("convert"))
     convert.add_argument("reading", help="a number and its unit, in quotes: '12.4 bar g', '23 inHg vac', '45 C'")
-    _add_common(convert)
+    add_common(convert)
     convert.set_defaults(run=_convert)
     refrigerants = commands.add_parser("refrigerants", help="the catalogue, or the part of it that matches")
     refrigerants.add_argument("part", nargs="?", default="", help="part of a designation, name or component")
     refrigerants.add_argument("--json", action="store_true", help="the same as JSON")
     refrigerants.set_defaults(run=_refrigerants)
     _add_table(commands)
-    _add_batch(commands)
-    _add_logbook(commands)
+    add_batch(commands, _batch)
+    add_logbook(commands, _logbook_list, _logbook_show, _logbook_export, _logbook_import)
     return parser
-
-
-# Commands that may be typed as they stand.
-EXAMPLES = {
-    "saturation": ("saturation R-448A '12.4 bar g'",),
-    "superheat": ("superheat R-134a --suction-pressure '29 psig'", "--suction-temperature '41 F'"),
-    "component": (
-        "component condenser R-134a --inlet '9.1 bar g, 68 C'",
-        "--outlet '9 bar g, SC 4 K' --mass-flow '0.14 kg/s'",
-    ),
-    "stream": ("stream water --inlet '12 C' --outlet '7 C' --flow '3.2 L/s'",),
-    "machine": (
-        "machine R-134a",
-        "--suction-pressure '1 bar g' --suction-temperature '8 C'",
-        "--discharge-pressure '9.1 bar g' --discharge-temperature '68 C'",
-        "--liquid-temperature '32 C' --electrical-power '6.2 kW' --drive hermetic",
-    ),
-    "convert": ("convert '12.4 bar g'",),
-    "batch": ("batch superheat R-134a readings.csv --to superheats.csv",),
-    "logbook export": ("logbook export --to logbook.json",),
-    "logbook import": ("logbook import logbook.json",),
-}
 
 
 def _add_check(commands: Any, check: Any) -> None:
     from gaugeside.checks.picture import DRAWN
 
-    command = commands.add_parser(check.name, help=_plain(check.summary), **_with_example(check.name))
+    command = commands.add_parser(check.name, help=plain(check.summary), **with_example(check.name))
     before = [line for line in check.reading_lines() if line.positional and line.choices]
     after = [line for line in check.reading_lines() if line.positional and not line.choices]
     for line in before:
-        command.add_argument(line.name, help=_plain(line.help))
+        command.add_argument(line.name, help=plain(line.help))
     if check.needs_refrigerant:
         command.add_argument("refrigerant", help="designation or common name: R-134a, 134a, CO2")
     for line in after:
-        command.add_argument(line.name, help=_plain(line.help))
+        command.add_argument(line.name, help=plain(line.help))
     for line in check.reading_lines():
         if not line.positional:
             said = f"{', '.join(line.choices)}. {line.help}" if line.choices else line.help
             metavar = "WORD" if line.choices else "READING"
-            command.add_argument(f"--{line.name.replace('_', '-')}", metavar=metavar, help=_plain(said))
-    _add_common(command)
+            command.add_argument(f"--{line.name.replace('_', '-')}", metavar=metavar, help=plain(said))
+    add_common(command)
     if check.name in DRAWN:
         command.add_argument("--picture", action="store_true", help="draw the readings among the refrigerant's curves")
     command.add_argument("--ascii", action="store_true", default=argparse.SUPPRESS, help=argparse.SUPPRESS)
@@ -230,26 +208,6 @@ def _add_check(commands: Any, check: Any) -> None:
     command.add_argument("--tag", default=None, help="which machine, for the logbook")
     command.add_argument("--note", default="", help="a note for the logbook")
     command.set_defaults(run=_run_check, check=check)
-
-
-def _with_example(name: str) -> dict[str, Any]:
-    """Return what a parser takes to end its help with a command that may be copied, its lines left as they are."""
-    example = " \\\n      ".join(EXAMPLES[name])
-    return {"epilog": f"example:\n  gaugeside {example}", "formatter_class": argparse.RawDescriptionHelpFormatter}
-
-
-def _plain(help_text: str) -> str:
-    """Return a text in which the option parser sees no format."""
-    return help_text.replace("%", "%%")
-
-
-def _add_common(command: argparse.ArgumentParser) -> None:
-    where = command.add_mutually_exclusive_group()
-    where.add_argument("--altitude", metavar="READING", help="of the site, for example '1600 m'")
-    where.add_argument("--barometer", metavar="READING", help="at the site, for example '83 kPa'")
-    command.add_argument("--units", choices=("si", "ip"), help="units of the answer")
-    command.add_argument("--json", action="store_true", help="SI values as JSON")
-    command.add_argument("--logbook", type=Path, metavar="PATH", default=argparse.SUPPRESS, help=argparse.SUPPRESS)
 
 
 def _add_table(commands: Any) -> None:
@@ -261,71 +219,8 @@ def _add_table(commands: Any) -> None:
     command.add_argument("--pressure-unit", metavar="UNIT", help="bar, psi, kPa ..., with g or abs where wanted")
     command.add_argument("--sense", choices=("gauge", "absolute"), help="how pressures are written")
     command.add_argument("--csv", action="store_true", help="comma-separated values")
-    _add_common(command)
+    add_common(command)
     command.set_defaults(run=_table)
-
-
-def _add_batch(commands: Any) -> None:
-    from gaugeside.checks import CHECKS
-
-    command = commands.add_parser("batch", help="one check on every row of a table", **_with_example("batch"))
-    checks = command.add_subparsers(title="checks", metavar="CHECK", required=True)
-    for check in CHECKS.values():
-        rows = checks.add_parser(check.name, help=_plain(check.summary), description=_BATCH)
-        words = [line for line in check.reading_lines() if line.positional and not line.kinds]
-        for line in (line for line in words if line.choices):
-            rows.add_argument(line.name, nargs="?", help=_plain(f"{line.help} Unless a column says it."))
-        if check.needs_refrigerant:
-            rows.add_argument("refrigerant", help="designation or common name: R-134a, 134a, CO2")
-        for line in (line for line in words if not line.choices):
-            rows.add_argument(line.name, nargs="?", help=_plain(f"{line.help} Unless a column says it."))
-        rows.add_argument("file", metavar="FILE", help="a table with a header, as CSV; - for standard input")
-        rows.add_argument("--decimal-comma", action="store_true", help="write findings with a decimal comma")
-        _add_target(rows)
-        _add_common(rows)
-        rows.add_argument("--datum", choices=("iir", "ashrae", "nbp"), help="zero of the enthalpies")
-        rows.add_argument("--tag", default=None, help="which machine, for its compressor's polynomials")
-        rows.set_defaults(run=_batch, check=check)
-
-
-_BATCH = (
-    "The first line names the columns after the readings, with the unit of their bare numbers in brackets: "
-    "suction pressure [psig]. The answer has the same columns, then one for each finding, then cautions and refused. "
-    "A text that a spreadsheet would run as a formula gets an apostrophe before it."
-)
-_EXPORT = (
-    "Oldest first, as JSON, which import takes in again, or as CSV for a spreadsheet.\n"
-    "In the CSV a text that would run as a formula gets an apostrophe before it."
-)
-
-
-def _add_target(command: argparse.ArgumentParser) -> None:
-    command.add_argument("--to", metavar="FILE", help="write into this file, whole or not at all, for you alone")
-    command.add_argument("--replace", action="store_true", help="replace the file when it is there already")
-
-
-def _add_logbook(commands: Any) -> None:
-    command = commands.add_parser("logbook", help="what was kept, out and in")
-    actions = command.add_subparsers(title="actions", metavar="ACTION", required=True)
-    listing = actions.add_parser("list", help="entries, newest first")
-    listing.add_argument("words", nargs="*", help="only entries that hold all these words")
-    listing.add_argument("--most", type=int, default=200, help="how many at the most (200)")
-    showing = actions.add_parser("show", help="one entry whole")
-    showing.add_argument("number", type=int, help="of the entry, as the list shows it")
-    export = actions.add_parser(
-        "export", help="entries into a file or a pipe", description=_EXPORT, **_with_example("logbook export")
-    )
-    export.add_argument("words", nargs="*", help="only entries that hold all these words")
-    export.add_argument("--csv", action="store_true", help="comma-separated values, which cannot be taken in again")
-    _add_target(export)
-    taking = actions.add_parser("import", help="entries that export wrote", **_with_example("logbook import"))
-    taking.add_argument("file", metavar="FILE", help="JSON that export wrote; - for standard input")
-    for action in (listing, showing, taking):
-        action.add_argument("--json", action="store_true", help="the same as JSON")
-    runs = (listing, _logbook_list), (showing, _logbook_show), (export, _logbook_export), (taking, _logbook_import)
-    for action, run in runs:
-        action.add_argument("--logbook", type=Path, metavar="PATH", default=argparse.SUPPRESS, help=argparse.SUPPRESS)
-        action.set_defaults(run=run)
 
 
 def _open_app(arguments: argparse.Namespace) -> int:

@@ -10,6 +10,7 @@ from typing import Any
 import pytest
 
 from gaugeside import __version__, cli
+from gaugeside.options import EXAMPLES
 from gaugeside.quantities import Kind, standard_atmosphere
 
 SUPERHEAT = [
@@ -399,7 +400,7 @@ def test_without_a_terminal_the_app_says_what_else_there_is(run: Any) -> None:
     assert "one-shot commands" in found.err
 
 
-@pytest.mark.parametrize("name", cli.EXAMPLES)
+@pytest.mark.parametrize("name", EXAMPLES)
 def test_the_example_under_each_help_can_be_copied_and_answers(
     run: Any, name: str, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
 ) -> None:
