@@ -19,7 +19,8 @@ DELIMITERS = {",": "comma", ";": "semicolon", "\t": "tab"}
 _NEAR = 0.75  # of difflib's measure, 1 for the same
 _MOST_NAMED = 10  # cells without a column
 _LONGEST_NAME = 80  # [characters], of a column that can be a reading
-_UNIT = re.compile(r"(?P<name>[^\[(]*)[\[(](?P<unit>.*)[\])]\s*\Z", re.DOTALL)
+_BRACKETS = {")": "(", "]": "["}
+_GROUP = re.compile(r"(?P<before>[^()\[\]]*)[(\[][^()\[\]]*[)\]]\Z")
 _STATE_KINDS = (Kind.PRESSURE, Kind.TEMPERATURE, Kind.SPECIFIC_ENTHALPY, Kind.FRACTION)
 _SPLIT_READING = "A reading with a comma in it needs double quotes around it."
 _SPLIT_HEADING = "Write the unit in brackets behind the name; double quotes hold a heading with a comma together."
@@ -192,9 +193,20 @@ def _split(check: Check, line: str) -> tuple[str, list[str]]:
 
 
 def _parted(heading: str) -> tuple[str, str]:
-    """Return the name of a column and the unit in brackets behind it."""
-    found = _UNIT.match(heading) if len(heading) <= 2 * _LONGEST_NAME else None
-    return (found["name"], found["unit"].strip()) if found is not None else (heading, "")
+    """Return the name of a column and the unit in the brackets that end it; all is name where they do not pair."""
+    text = heading.strip()
+    if len(heading) > 2 * _LONGEST_NAME or text[-1:] not in _BRACKETS:
+        return heading, ""
+    wanted: list[str] = []
+    for place in range(len(text) - 1, -1, -1):
+        if text[place] in _BRACKETS:
+            wanted.append(_BRACKETS[text[place]])
+        elif text[place] in _BRACKETS.values():
+            if text[place] != wanted.pop():
+                break
+            if not wanted:
+                return text[:place], text[place + 1 : -1].strip()
+    return heading, ""
 
 
 def _heard(name: str) -> str:
@@ -224,6 +236,12 @@ def _refuse_near(check: Check, heading: str, name: str) -> None:
         return
     if any(heading.count(opening) != heading.count(closing) for opening, closing in ("[]", "()")):
         raise Refusal(f"A bracket stands alone in the column {quoted(heading.strip())}.", _SPLIT_HEADING)
+    before = re.split(r"[()\[\]]", name, maxsplit=1)[0]
+    if before != name and _matched(check, before) is not None:
+        raise Refusal(
+            f"The column {quoted(heading.strip())} has more than one pair of brackets.",
+            "Write one behind the name, with the unit alone in it.",
+        )
     heard, lines = _heard(name), check.reading_lines()
     known = {_heard(text): line.name for line in lines for text in (line.name, line.label)}
     known |= {kind.value: kind.value for line in lines if line.entry is Entry.EITHER for kind in line.kinds}
@@ -265,7 +283,7 @@ def _units(reading: ReadingLine, kind: Kind | None, text: str, dress: Dress, sit
     if not text:
         return {} if kind is None else {kind.value: dress.default(kind).label}
     if reading.entry is Entry.STATE:
-        return dict(_unit_of(part, _STATE_KINDS, reading, dress, site, said) for part in re.split("[,;]", text))
+        return _state_units(text, reading, dress, site, said)
     if reading.entry is Entry.EITHER:
         kinds: Iterable[Kind] = reading.kinds if kind is None else (kind,)
     elif reading.entry is Entry.QUANTITY:
@@ -275,11 +293,31 @@ def _units(reading: ReadingLine, kind: Kind | None, text: str, dress: Dress, sit
     return dict([_unit_of(text, tuple(kinds), reading, dress, site, said)])
 
 
+def _state_units(text: str, reading: ReadingLine, dress: Dress, site: Site, said: list[str]) -> dict[str, str]:
+    """Return what the numbers of a state take under a heading with a unit for one or more of its kinds."""
+    units: dict[str, str] = {}
+    for part in re.split("[,;]", text):
+        kind, label = _unit_of(part, _STATE_KINDS, reading, dress, site, said)
+        if kind in units:
+            raise Refusal(f"{quoted(text)} gives two units of {kind}.", "Write one unit of each kind.", reading.name)
+        units[kind] = label
+    if Kind.TEMPERATURE.value in units:
+        is_fahrenheit = units[Kind.TEMPERATURE.value] in ("°F", "degR")
+        units[Kind.TEMPERATURE_DIFFERENCE.value] = "°F" if is_fahrenheit else "K"
+    return units
+
+
 def _unit_of(
     text: str, kinds: tuple[Kind, ...], reading: ReadingLine, dress: Dress, site: Site, said: list[str]
 ) -> tuple[str, str]:
     """Return the kind and the label of a unit in a heading; Refusal where it names no single unit."""
     kind = next((kind for kind in kinds if fold(text) in spellings(kind)), kinds[0])
+    group = _GROUP.match(text.strip())
+    # The texts of units are looked up without their brackets, so what stands before a pair is to be a unit of itself.
+    if any(sign in text for sign in "()[]") and (
+        group is None or not (group["before"].strip().endswith("/") or fold(group["before"]) in spellings(kind))
+    ):
+        raise Refusal(f"The brackets in {quoted(text)} belong to no unit.", "Write a unit alone.", reading.name)
     if text.strip()[:1].isdigit():
         raise Refusal(f"{quoted(text)} is no unit.", "Write a unit alone into the brackets.", reading.name)
     try:

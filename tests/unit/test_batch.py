@@ -171,7 +171,8 @@ def test_the_sheet_says_the_units_of_its_findings(run: Run) -> None:
     ("heading", "text", "pascal"),
     [
         ("suction pressure [psig]", "38", 101325 + 38 * 6894.757), ("suction pressure (psig)", "38", 101325 + 262000.8),
-        ("Suction_Pressure[bar(a)]", "3", 3e5), ("SUCTION PRESSURE [inHg vac]", "10", 101325 - 33863.89),
+        ("Suction_Pressure[bar(a)]", "3", 3e5), ("suction pressure (bar (a)) ", "3", 3e5),
+        ("SUCTION PRESSURE [inHg vac]", "10", 101325 - 33863.89),
         ("suction pressure [bar vac]", "0.3", 71325), ("suction pressure [inHg g]", "10", 101325 + 33863.89),
         ("suction pressure [psig]", "2 bar abs", 2e5), ("--suction-pressure [kPa]", "100", 201325),
         ("suction pressure", "2", 301325), ("suction pressure []", "2", 301325),
@@ -208,6 +209,13 @@ def test_a_state_takes_both_units_of_its_heading(run: Run) -> None:
     assert found["component"]["value"] == "condenser"
 
 
+@pytest.mark.parametrize(("unit", "kelvin"), [("°F", 5), ("degR", 5), ("°C", 9), ("K", 9)])
+def test_the_unit_of_a_temperature_is_that_of_its_differences_too(unit: str, kelvin: float, run: Run) -> None:
+    table = f'inlet [psi g; {unit}],outlet,heat\n"130, SH 9","9 bar g, SC 4 K",20 kW\n'
+    (found,) = run("component condenser R-134a", table, "--json").objects
+    assert found["readings"]["inlet"]["values"]["superheat"]["value"] == pytest.approx(kelvin)
+
+
 @pytest.mark.parametrize(
     ("words", "header", "told"),
     [
@@ -218,6 +226,15 @@ def test_a_state_takes_both_units_of_its_heading(run: Run) -> None:
         ("superheat R-134a", "suction pipe,suction temperature", "are both the suction pipe"),
         ("superheat R-134a", "time,note", "names no reading of superheat"), ("superheat R-134a", "2;5", "no reading"),
         ("superheat R-134a", "suction pressure [brg]", "not a unit of pressure"),
+        ("superheat R-134a", "suction pressure (m) [bar]", "more than one pair of brackets"),
+        ("superheat R-134a", "suction pressure (k)[Pa]", "more than one pair of brackets"),
+        ("superheat R-134a", "suction pressure (h [Pa])", "brackets in 'h [Pa]' belong to no unit"),
+        ("superheat R-134a", "suction pressure [(m) bar]", "belong to no unit"),
+        ("superheat R-134a", "suction pressure [m)(bar]", "brackets"),
+        ("machine R-134a", "electrical power (M) [W]", "more than one pair of brackets"),
+        ("component condenser R-134a", "heat (h) [W]", "more than one pair of brackets"),
+        ("component condenser R-134a", "inlet [bar g; psi g],outlet", "gives two units of pressure"),
+        ("component condenser R-134a", "inlet [°C; K],outlet", "gives two units of temperature"),
         ("superheat R-134a", "suction pressure [°C]", "takes a pressure"),
         ("superheat R-134a", "suction pressure [mPa]", "mPa"),
         ("superheat R-134a", "suction pressure [2 bar]", "is no unit"),
