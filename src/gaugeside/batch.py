@@ -131,7 +131,7 @@ class _Batch:
         self._logbook = logbook
         self._tell = tell
         self._point = point
-        self._told: set[str] = set()
+        self._told: set[object] = set()
         # The same in every row, so it is told once.
         self._model = model_remark(find(under.refrigerant)) if under.refrigerant else None
         self._say_the_beginning()
@@ -188,13 +188,14 @@ class _Batch:
             # The rows behind it are not to go down with one on which the program fails.
             words = f"The program met a fault on these readings ({type(fault).__name__})."
             raise Refusal(words, "The other rows are answered all the same.") from fault
-        for name, words in self._header.assumed(row.typed, dress).items():
-            self._tell_once(name, words)
+        for what, words in self._header.assumed(row.typed, dress).items():
+            self._tell_once(what, words)
         if self._model in row.answer.notes and self._model is not None:
             self._tell_once(self._model.text, f"Note: {sentence(self._model, dress, site)}")
 
-    def _tell_once(self, what: str, words: str) -> None:
-        if what not in self._told and len(self._told) < MOST_NAMED + len(self._header.columns):
+    def _tell_once(self, what: object, words: str) -> None:
+        # A column may be understood in as many ways as there are units.
+        if what not in self._told and len(self._told) < MOST_NAMED * (1 + len(self._header.columns)):
             self._told.add(what)
             self._tell(words)
 

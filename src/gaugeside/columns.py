@@ -9,9 +9,21 @@ from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 
 from gaugeside.checks.sheet import Check, Entry, ReadingLine
-from gaugeside.checks.typed import FieldUnits, TypedLine, read_form, takes
+from gaugeside.checks.typed import FieldUnits, TypedLine, default_unit, read_form, takes
 from gaugeside.errors import Refusal
-from gaugeside.quantities import Dress, Kind, Sense, Site, fold, quoted, read, spellings, split_number
+from gaugeside.quantities import (
+    PROPERTIES,
+    Dress,
+    Kind,
+    Reading,
+    Sense,
+    Site,
+    fold,
+    quoted,
+    read,
+    read_state,
+    spellings,
+)
 from gaugeside.text import plain_text
 
 MOST_COLUMNS = 1000
@@ -21,6 +33,7 @@ _MOST_NAMED = 10  # cells without a column
 _LONGEST_NAME = 80  # [characters], of a column that can be a reading
 _BRACKETS = {")": "(", "]": "["}
 _GROUP = re.compile(r"(?P<before>[^()\[\]]*)[(\[][^()\[\]]*[)\]]\Z")
+_MEASURED = (Entry.QUANTITY, Entry.EITHER, Entry.STATE)
 _STATE_KINDS = (Kind.PRESSURE, Kind.TEMPERATURE, Kind.SPECIFIC_ENTHALPY, Kind.FRACTION)
 _SPLIT_READING = "A reading with a comma in it needs double quotes around it."
 _SPLIT_HEADING = "Write the unit in brackets behind the name; double quotes hold a heading with a comma together."
@@ -30,15 +43,23 @@ _SPLIT_HEADING = "Write the unit in brackets behind the name; double quotes hold
 class Column:
     """One column that is a reading.
 
-    units: what a number alone in it takes. told: the heading says that unit. kind: what it must be, where the name
-    says more than the reading's.
+    units: what a number alone in it takes. told: the kinds whose unit the heading says. kind: what it must be, where
+    the name says more than the reading's.
     """
 
     place: int
     line: ReadingLine
     units: FieldUnits
-    told: bool
+    told: frozenset[str]
     kind: Kind | None
+
+    def readings(self, typed: TypedLine, dress: Dress, site: Site) -> list[Reading]:
+        """Return what was read in a cell of it that was understood."""
+        if self.line.entry is Entry.STATE:
+            defaults = {name: default_unit(kind, self.units, dress) for name, kind in PROPERTIES.items()}
+            return [one for _, one in read_state(typed.text, defaults, dress, site).parts if one is not None]
+        kind = Kind(next(iter(typed.value))) if self.line.entry is Entry.EITHER else self.line.kind
+        return [read(typed.text, kind, default_unit(kind, self.units, dress), dress, site)]
 
 
 @dataclass
@@ -56,6 +77,7 @@ class Header:
     carried: list[str]
     words: Mapping[str, str]
     said: list[str]
+    site: Site
 
     def texts(self, cells: Sequence[str]) -> dict[str, str]:
         """Return what is typed for every reading in a row."""
@@ -78,21 +100,29 @@ class Header:
                 typed[column.line.name] = TypedLine(line.text, refusal=refusal)
         return typed
 
-    def assumed(self, typed: Mapping[str, TypedLine], dress: Dress) -> dict[str, str]:
-        """Return, by reading, how the reading of a row was understood where neither it nor its column says so."""
+    def assumed(self, typed: Mapping[str, TypedLine], dress: Dress) -> dict[tuple[str, str], str]:
+        """Return how the readings of a row were understood where neither they nor their columns say so.
+
+        By the reading and the unit that was assumed, so that each is told once.
+        """
         found = {}
         for column in self.columns:
-            line, text = typed[column.line.name], typed[column.line.name].text.strip()
-            is_measured = column.line.entry in (Entry.QUANTITY, Entry.EITHER, Entry.STATE)
-            if column.told or not is_measured or line.value is None or line.complete == text:
+            line = typed[column.line.name]
+            if column.line.entry not in _MEASURED or line.value is None or line.complete == line.text.strip():
                 continue
-            if column.line.entry is not Entry.STATE and split_number(text)[1]:
-                words = f"{_on_a_line(text)} is read as {_on_a_line(line.complete)}"
-            elif column.kind is not None:
-                words = f"a number alone is read as {dress.default(column.kind).label}"
-            else:
-                words = f"a number alone is read as {takes(column.line, {}, dress)}"
-            found[column.line.name] = f"{_on_a_line(self.names[column.place])}: {words}."
+            for reading in column.readings(line, dress, self.site):
+                unit = reading.unit.label
+                if not reading.bare_number and reading.bare_sense:
+                    words = f"{_on_a_line(reading.typed)} is read as {_on_a_line(reading.complete())}"
+                elif not reading.bare_number or reading.kind.value in column.told:
+                    continue
+                elif column.line.entry is Entry.STATE:
+                    words = f"a {reading.kind.value} without a unit is read as {unit}"
+                elif reading.kind is Kind.FRACTION:
+                    words = f"a number alone is read as {takes(column.line, {}, dress)}"
+                else:
+                    words = f"a number alone is read as {unit}"
+                found[column.line.name, unit] = f"{_on_a_line(self.names[column.place])}: {words}."
         return found
 
 
@@ -120,7 +150,7 @@ def read_header(check: Check, line: str, words: Mapping[str, str], dress: Dress,
     delimiter, names = _split(check, line)
     if len(names) > MOST_COLUMNS:
         raise Refusal(f"The header has more than {MOST_COLUMNS} columns.", "Leave out those that are no readings.")
-    header = Header(check, delimiter, names, [], [], words, [])
+    header = Header(check, delimiter, names, [], [], words, [], site)
     for place, heading in enumerate(names):
         name, unit_text = _parted(heading)
         found = _matched(check, name)
@@ -131,7 +161,7 @@ def read_header(check: Check, line: str, words: Mapping[str, str], dress: Dress,
         reading, kind = found
         _refuse_twice(header, reading, heading)
         units = _units(reading, kind, unit_text, dress, site, header.said)
-        header.columns.append(Column(place, reading, units, bool(unit_text), kind))
+        header.columns.append(Column(place, reading, units, frozenset(units if unit_text else ()), kind))
     if not header.columns:
         raise Refusal(
             f"The first line names no reading of {check.name}.",

@@ -200,6 +200,29 @@ def test_what_a_number_alone_is_taken_for_is_said_once(run: Run, isolated: Path)
     assert "suction pressure: a number alone is read as psi abs." in told
 
 
+def test_each_way_a_column_was_understood_is_told(run: Run) -> None:
+    table = "suction pressure;liquid pressure [inHg vac]\n38 psi;10\n2 bar;5\n3 psi;2.6 bar\n3 bar g;3 bar\n2;\n"
+    told = run("superheat R-134a", table).err.splitlines()
+    assert [line for line in told if "pressure" in line.partition(":")[0]] == [
+        "suction pressure: 38 psi is read as 38 psi g.",
+        "suction pressure: 2 bar is read as 2 bar g.",
+        "liquid pressure [inHg vac]: 2.6 bar is read as 2.6 bar g.",
+        "suction pressure: a number alone is read as bar g.",
+    ]
+
+
+def test_the_part_of_a_state_whose_unit_the_heading_leaves_out_is_told(run: Run) -> None:
+    words, outlet = "component condenser R-134a", '"9 bar g, SC 4"'
+    table = f'inlet [psi g],outlet,heat\n"130, 65",{outlet},20 kW\n'
+    told = run(words, table).err.splitlines()
+    assert "inlet [psi g]: a temperature without a unit is read as °C." in told
+    assert "outlet: a temperature difference without a unit is read as K." in told
+    assert not [line for line in told if line.startswith("inlet") and "a pressure" in line]
+    told = run(words, table.replace("[psi g]", "[°C]")).err.splitlines()
+    assert "inlet [°C]: a pressure without a unit is read as bar g." in told
+    assert not [line for line in told if line.startswith("inlet") and "a temperature" in line]
+
+
 def test_a_state_takes_both_units_of_its_heading(run: Run) -> None:
     table = 'inlet [psig; °F],outlet,mass flow [lb/h]\n"130, 150","9 bar g, SC 4 K",1000\n'
     found = run("component condenser R-134a", table, "--json").objects[0]["readings"]
