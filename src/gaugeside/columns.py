@@ -100,10 +100,10 @@ class Header:
                 typed[column.line.name] = TypedLine(line.text, refusal=refusal)
         return typed
 
-    def assumed(self, typed: Mapping[str, TypedLine], dress: Dress) -> dict[tuple[str, str], str]:
+    def assumed(self, typed: Mapping[str, TypedLine], dress: Dress) -> dict[tuple[str, str, bool], str]:
         """Return how the readings of a row were understood where neither they nor their columns say so.
 
-        By the reading and the unit that was assumed, so that each is told once.
+        By the reading, the unit that was assumed and whether a number stood alone, so that each is told once.
         """
         found = {}
         for column in self.columns:
@@ -122,7 +122,7 @@ class Header:
                     words = f"a number alone is read as {takes(column.line, {}, dress)}"
                 else:
                     words = f"a number alone is read as {unit}"
-                found[column.line.name, unit] = f"{_on_a_line(self.names[column.place])}: {words}."
+                found[column.line.name, unit, reading.bare_number] = f"{_on_a_line(self.names[column.place])}: {words}."
         return found
 
 
