@@ -24,7 +24,7 @@ def test_tables_that_do_not_fit_beside_each_other_stand_below_each_other() -> No
 
 def test_help_names_every_pane_and_gives_no_unit_for_words() -> None:
     for name, check in CHECKS.items():
-        text = "\n".join(line for line, _ in help_lines(check, {}, Dress(), [], ["R-454C: its harm"], 80))
+        text = "\n".join(line for line, _ in help_lines(name, check, {}, Dress(), [], ["R-454C: its harm"], 80))
         assert all(key in text for key in (*PANES.values(), "Ctrl+G")), name
         assert not [line for line in text.splitlines() if line.endswith("alone:")], name
 
@@ -106,6 +106,13 @@ def test_states_and_numbers_stand_under_the_names_of_their_columns(kind: str, te
 
 def test_the_help_of_a_stream_names_every_medium() -> None:
     for width in (80, 50):
-        text = " ".join(line.strip() for line, _ in help_lines(CHECKS["stream"], {}, Dress(), [], [], width))
+        text = " ".join(line.strip() for line, _ in help_lines("stream", CHECKS["stream"], {}, Dress(), [], [], width))
         for name in ("water", "air", *SOLUTIONS):
             assert name in text
+
+
+def test_logbook_and_site_have_a_help_of_their_own() -> None:
+    for pane, word in (("logbook", "show entries with"), ("site", "altitude/barometer")):
+        text = [line for line, _ in help_lines(pane, None, {}, Dress(), [], [], 80)]
+        assert any(line.strip().startswith(word) for line in text), pane
+        assert max(map(len, text)) <= 80

@@ -152,10 +152,12 @@ class GaugesideApp(House):
             "#standing": self.standing(),
             "#keys": (keys_line(self.now, width, height), CAUTION if small else MUTED),
         }  # fmt: skip
+        # While the app ends its lines go one by one, and what was kept meanwhile still comes to be shown.
         for name, (text, style) in lines.items():
-            self.base.query_one(name, Line).say(text, style)
-        standing = self.base.query_one("#standing", Line)
-        standing.display = bool(standing.text)
+            for line in self.base.query(name).results(Line):
+                line.say(text, style)
+                if name == "#standing":
+                    line.display = bool(text)
 
     def _follow_scrolling(self, pane: Pane) -> None:
         for attribute in ("virtual_size", "scroll_y", "size"):
@@ -277,7 +279,9 @@ class GaugesideApp(House):
         """Show help for the pane."""
         pane = self._pane()
         check, units = (pane.check, pane.units) if isinstance(pane, SheetPane) else (None, {})
-        await self._open(Help(help_lines(check, units, self.dress, self.told, self.care(), self.size.width)), None)
+        await self._open(
+            Help(help_lines(self.now, check, units, self.dress, self.told, self.care(), self.size.width)), None
+        )
 
     def action_help_quit(self) -> None:
         """Ctrl+C, where it copies nothing."""

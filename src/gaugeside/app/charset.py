@@ -28,6 +28,11 @@ def is_ascii() -> bool:
     return _ascii
 
 
+def has_braille() -> bool:
+    """Whether the terminal's font can be trusted to have braille, which pictures are drawn in: a console's has none."""
+    return not _ascii and os.environ.get("TERM", "") not in ("linux", "vt100", "vt102", "vt220")
+
+
 def shown_text(text: str) -> str:
     """Return `text` as this terminal can show it, without anything it would obey."""
     plain = plain_text(text)

@@ -23,7 +23,7 @@ _KINDS = (
 )
 CAUTIONS = (
     "Refrigerant circuits are under pressure; escaping liquid freezes skin and eyes.",
-    "Refrigerants displace air in closed rooms; some burn, some are poisonous: see the class beside the name.",
+    "Some refrigerants burn, some are poisonous: see the class beside the name. All displace air in closed rooms.",
     "Results are estimates from the readings typed. They replace neither the maker's data, nor local codes, "
     "nor a licensed person's judgement.",
 )
@@ -43,6 +43,29 @@ KEYS = (
     ("Ctrl+L", "paint the screen again;  Ctrl+U clear the field"),
     ("End", "write on behind what stands in a field; typing at once replaces it"),
 )
+# What belongs into each setting, under its label.
+SITE = {
+    "site_pressure": (
+        "altitude/barometer",
+        "640 m, 2100 ft, or a barometer reading such as 94.1 kPa, absolute and not reduced to sea level; "
+        "empty: sea level.",
+    ),
+    "dress": ("units", "SI or inch-pound; single units below may differ. What was typed keeps its unit."),
+    "bare_pressure": ("bare pressure is", "What a pressure typed without g or abs is taken for."),
+    "datum": ("enthalpy datum", "Where enthalpies count from; only differences mean anything."),
+    "theme": ("theme", "Colours; files in the themes folder of the settings add to the list."),
+}
+# What there is to do on the panes that are no sheet.
+OTHER_PANES = {
+    "logbook": (
+        ("show entries with", "Words that all occur: refrigerant, machine, note, a reading, a day: 2026-12-01."),
+        ("Up, Down, Enter", "Another entry; its readings back onto their sheet."),
+        ("F9", "Machine and note of the entry with the mark."),
+        ("Delete, Ctrl+Z", "Out of the logbook, and back, until the program ends."),
+        ("Ctrl+O W", "The entries shown into a file: .csv for a spreadsheet, .json for another logbook."),
+    ),
+    "site": tuple(SITE.values()),
+}
 WRITING = (
     "A number, then its unit: 185 psig, 12,4 bar g, -5 °C, 23 inHg vac, 0.14 kg/s, 6 TR. Point or comma for "
     "decimals; 1,234 is refused, as it can be read two ways. A number alone takes the unit the field shows; a "
@@ -54,6 +77,7 @@ WRITING = (
 
 
 def help_lines(
+    pane: str,
     check: Check | None,
     units: dict[str, dict[str, str]],
     dress: Dress,
@@ -61,7 +85,7 @@ def help_lines(
     care: Sequence[str],
     width: int,
 ) -> list[Styled]:
-    """Return the help for a pane; `check` is None for the logbook and the site.
+    """Return the help for a pane; `check` is None for the logbook and the site, which are no sheets.
 
     messages: what the program had to tell since its start. care: what there is to know of the refrigerant picked.
     width: of the window [characters].
@@ -73,6 +97,10 @@ def help_lines(
         lines += _wrapped("", f"! {message}", 2, width, CAUTION)
     if check is not None:
         lines += _fields(check, units, dress, width)
+    for label, what in OTHER_PANES.get(pane, ()):
+        lines += _wrapped(label, what, 25, width)
+    if pane in OTHER_PANES:
+        lines.append(("", ""))
     lines.append(("Keys", MAIN))
     for keys, what in KEYS:
         lines += _wrapped(keys, what, 21, width)

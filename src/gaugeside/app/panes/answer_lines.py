@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping, Sequence
 from typing import Any
 
-from gaugeside.app.charset import is_ascii
+from gaugeside.app.charset import has_braille
 from gaugeside.app.widgets.lines import CAUTION, MAIN, MUTED, Styled
 from gaugeside.checks.picture import Picture
 from gaugeside.checks.sheet import Answer, Check, Remark
@@ -59,7 +59,7 @@ def picture_lines(plain: Mapping[str, Any] | None, dress: Dress, site: Site, wid
     """Return the picture that came with an answer as lines; a sentence where there is none."""
     if plain is None:
         return [("There is nothing to draw for these readings. Ctrl+G shows the numbers.", MUTED)]
-    drawing = draw(Picture.from_plain(plain), width, height, dress, site, ascii_alone=is_ascii())
+    drawing = draw(Picture.from_plain(plain), width, height, dress, site, ascii_alone=not has_braille())
     return [(line, "") for line in drawing.lines()]
 
 

@@ -11,6 +11,7 @@ from textual.containers import VerticalScroll
 from textual.widget import Widget
 from textual.widgets import Input
 
+from gaugeside.app.help_text import SITE
 from gaugeside.app.widgets.field import ChoiceField, FieldLine, TextField
 from gaugeside.app.widgets.lines import CAUTION, MUTED, RULE, Line
 from gaugeside.errors import Refusal
@@ -29,14 +30,6 @@ _ZERO = {
     Datum.ASHRAE: "0 kJ/kg, liquid at -40 °C",
     Datum.NBP: "0 kJ/kg, liquid at 101.325 kPa",
 }
-_HELP = {
-    "site_pressure": "640 m, 2100 ft, or a barometer reading such as 94.1 kPa, absolute and not reduced to sea level; "
-    "empty: sea level.",
-    "dress": "SI or inch-pound; single units below may differ.",
-    "bare_pressure": "What a pressure typed without g or abs is taken for.",
-    "datum": "Where enthalpies count from; only differences mean anything.",
-    "theme": "Colours; files in the themes folder of the settings add to the list.",
-}
 
 
 class SitePane(VerticalScroll, can_focus=False):
@@ -46,16 +39,16 @@ class SitePane(VerticalScroll, can_focus=False):
         super().__init__(id="pane-site", classes="pane")
         self._lines: dict[str, FieldLine] = {}
         self._site = FieldLine(
-            "site_pressure", "altitude/barometer", TextField(settings.site_pressure_text, id="site_pressure")
+            "site_pressure", SITE["site_pressure"][0], TextField(settings.site_pressure_text, id="site_pressure")
         )
-        self._choice("dress", "units", ("si", "ip"), settings.dress)
+        self._choice("dress", SITE["dress"][0], ("si", "ip"), settings.dress)
         dress = dress_of(settings)
         for kind in CHOOSABLE:
             chosen = dress.unit(kind).label
             self._choice(f"unit-{kind.name}", f" {_SHORT.get(kind, kind.value)}", bare_labels(kind), chosen)
-        self._choice("bare_pressure", "bare pressure is", ("gauge", "absolute"), settings.bare_pressure)
-        self._choice("datum", "enthalpy datum", tuple(Datum), settings.datum)
-        self._choice("theme", "theme", themes, settings.theme)
+        self._choice("bare_pressure", SITE["bare_pressure"][0], ("gauge", "absolute"), settings.bare_pressure)
+        self._choice("datum", SITE["datum"][0], tuple(Datum), settings.datum)
+        self._choice("theme", SITE["theme"][0], themes, settings.theme)
 
     def _choice(self, name: str, label: str, choices: tuple[str, ...], value: str) -> None:
         self._lines[name] = FieldLine(name, label, ChoiceField([str(c) for c in choices], value, id=name))
@@ -154,7 +147,7 @@ class SitePane(VerticalScroll, can_focus=False):
     def on_descendant_focus(self, event: events.DescendantFocus) -> None:
         """Say what the setting means."""
         name = str(event.widget.id)
-        words = _HELP.get(name, "Which unit readings of this kind are shown in.")
+        words = SITE[name][1] if name in SITE else "Which unit readings of this kind are shown in."
         settings = self.house.settings
         if name == "datum":
             words = f"{Datum(settings.datum).description}. {words}"
