@@ -451,7 +451,7 @@ async def test_the_logbook_goes_into_a_file_and_a_file_that_is_there_stays(
         await shown.see("must end in .csv or .json")
         await shown.press("backspace", "backspace", "backspace")
         await shown.type("csv\n")
-        await shown.see("Written: ")
+        await shown.see("Written:")
         rows = list(csv.DictReader(table.read_text().splitlines()))
         assert [(row["suction pressure"], row["suction temperature"]) for row in rows] == [("2 bar g", "5 C")]
         assert stat.S_IMODE(table.stat().st_mode) == 0o600
@@ -464,7 +464,7 @@ async def test_the_logbook_goes_into_a_file_and_a_file_that_is_there_stays(
         assert table.read_text() == "another's"
         await shown.press("ctrl+u")
         await shown.type("mine.json\n")
-        await shown.see("Written: ")
+        await shown.see("Written:")
         assert [entry["readings"] for entry in json.loads((tmp_path / "mine.json").read_text())["entries"]] == [
             {"suction_pressure": "2 bar g", "suction_temperature": "5 C"}
         ]
