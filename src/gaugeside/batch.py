@@ -18,12 +18,13 @@ from gaugeside.checks.caution import model_remark
 from gaugeside.checks.sheet import Answer, Check, Entry, FindingLine, Remark
 from gaugeside.checks.typed import TypedLine, read_line
 from gaugeside.checks.view import FOOTNOTE, sentence, site_line
-from gaugeside.columns import Header, fitted, parsed, read_header
+from gaugeside.columns import Header, fitted, read_header
 from gaugeside.errors import Refusal
 from gaugeside.files import STANDARD, Lines, cell, opened, written_whole
 from gaugeside.logbook import Logbook
 from gaugeside.quantities import Kind, Sense, Unit, with_sense, write
 from gaugeside.refrigerants import find
+from gaugeside.rows import DecimalCommas, records
 from gaugeside.text import plain_text
 
 Printer = Callable[[str], None]
@@ -131,6 +132,7 @@ class _Batch:
         self._logbook = logbook
         self._tell = tell
         self._point = point
+        self._commas = DecimalCommas(said=point == ",")
         self._told: set[object] = set()
         # The same in every row, so it is told once.
         self._model = model_remark(find(under.refrigerant)) if under.refrigerant else None
@@ -159,15 +161,13 @@ class _Batch:
         self._tell(f"{rows} {'row' if rows == 1 else 'rows'}: {self._answered} answered, {self.refused} refused.")
 
     def _rows(self, numbered: Iterator[tuple[int, str | Refusal]]) -> Iterator[_Row]:
-        for number, line in numbered:
+        for number, cells in records(numbered, self._header.delimiter, LONGEST_LINE):
             row = _Row(number)
             try:
-                if isinstance(line, Refusal):
-                    raise line
-                if not line.strip():
-                    continue
-                row.cells = parsed(line, self._header.delimiter)
-                if not any(text.strip() for text in row.cells):
+                if isinstance(cells, Refusal):
+                    raise cells
+                row.cells = cells
+                if not any(text.strip() for text in cells):
                     continue
                 row.cells = fitted(self._header, row.cells)
                 self._answer(row)
@@ -180,6 +180,7 @@ class _Batch:
     def _answer(self, row: _Row) -> None:
         dress, site = self._under.dress, self._under.site
         row.typed = self._header.read(self._header.texts(row.cells), dress, site)
+        self._commas.look(self._header.measured(row.typed))
         try:
             row.answer, _ = answered(self._header.check, row.typed, self._under, self._logbook)
         except Refusal:
@@ -190,6 +191,8 @@ class _Batch:
             raise Refusal(words, "The other rows are answered all the same.") from fault
         for what, words in self._header.assumed(row.typed, dress).items():
             self._tell_once(what, words)
+        if self._header.could_be_split(row.cells):
+            self._tell_once("split", "In a comma table 2,6 is two cells; double quotes hold a decimal comma together.")
         if self._model in row.answer.notes and self._model is not None:
             self._tell_once(self._model.text, f"Note: {sentence(self._model, dress, site)}")
 

@@ -7,6 +7,7 @@ import difflib
 import re
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 
 from gaugeside.checks.sheet import Check, Entry, ReadingLine
 from gaugeside.checks.typed import FieldUnits, TypedLine, default_unit, read_form, takes
@@ -24,6 +25,7 @@ from gaugeside.quantities import (
     read_state,
     spellings,
 )
+from gaugeside.rows import misquoted
 from gaugeside.text import plain_text
 
 MOST_COLUMNS = 1000
@@ -34,6 +36,8 @@ _LONGEST_NAME = 80  # [characters], of a column that can be a reading
 _BRACKETS = {")": "(", "]": "["}
 _GROUP = re.compile(r"(?P<before>[^()\[\]]*)[(\[][^()\[\]]*[)\]]\Z")
 _MEASURED = (Entry.QUANTITY, Entry.EITHER, Entry.STATE)
+_WHOLE = re.compile(r"[-+−]?[0-9]+")
+_DIGITS = re.compile(r"[0-9]+(?![0-9.,])")
 _STATE_KINDS = (Kind.PRESSURE, Kind.TEMPERATURE, Kind.SPECIFIC_ENTHALPY, Kind.FRACTION)
 _SPLIT_READING = "A reading with a comma in it needs double quotes around it."
 _SPLIT_HEADING = "Write the unit in brackets behind the name; double quotes hold a heading with a comma together."
@@ -100,6 +104,20 @@ class Header:
                 typed[column.line.name] = TypedLine(line.text, refusal=refusal)
         return typed
 
+    def measured(self, typed: Mapping[str, TypedLine]) -> dict[str, str]:
+        """Return the texts of the readings of a row that are numbers and were understood."""
+        lines = {column.line.name: typed[column.line.name] for column in self.columns if column.line.entry in _MEASURED}
+        return {name: line.text for name, line in lines.items() if line.value is not None}
+
+    def could_be_split(self, cells: Sequence[str]) -> bool:
+        """Whether two whole numbers stand side by side, a reading among them, where one decimal comma could have."""
+        read = {column.place for column in self.columns if column.line.entry in _MEASURED}
+        pairs = enumerate(pairwise(cells)) if self.delimiter == "," else ()
+        return any(
+            {place, place + 1} & read and _WHOLE.fullmatch(cell.strip()) and _DIGITS.match(after.strip())
+            for place, (cell, after) in pairs
+        )
+
     def assumed(self, typed: Mapping[str, TypedLine], dress: Dress) -> dict[tuple[str, str, bool], str]:
         """Return how the readings of a row were understood where neither they nor their columns say so.
 
@@ -136,10 +154,7 @@ def parsed(line: str, delimiter: str) -> list[str]:
     try:
         return next(csv.reader([line], delimiter=delimiter, strict=True), [])
     except csv.Error as fault:
-        raise Refusal(
-            f"The quotes in this line do not fit ({plain_text(str(fault), 80)}).",
-            "Put a cell with a quote in it into quotes, and write the quote twice; a cell ends on its line.",
-        ) from fault
+        raise misquoted(fault) from fault
 
 
 def read_header(check: Check, line: str, words: Mapping[str, str], dress: Dress, site: Site) -> Header:
@@ -180,16 +195,23 @@ def read_header(check: Check, line: str, words: Mapping[str, str], dress: Dress,
 def fitted(header: Header, cells: Sequence[str]) -> list[str]:
     """Return the cells of a row with blank ones for those that are missing; Refusal when that is not clear."""
     wanted = len(header.names)
-    if any(cell.strip() for cell in cells[wanted:]) or (len(cells) < wanted and header.delimiter == ","):
-        # With too few cells, too, a decimal comma may have made two of one.
-        hint = f" {_SPLIT_READING}" if header.delimiter == "," else ""
+    is_comma = header.delimiter == ","
+    hint = f" {_SPLIT_READING}" if is_comma else ""
+    # A decimal comma may have made two cells of one, even where their number is right by blank ones.
+    if any(cell.strip() for cell in cells[wanted:]) or (len(cells) != wanted and is_comma):
         message = f"This row has {len(cells)} cells, the header {wanted}{_surplus(cells[wanted:])}."
         raise Refusal(message, f"Give every column its cell.{hint}")
+    for name, cell in zip(reversed(header.names), reversed(cells[:wanted] if is_comma else ()), strict=False):
+        if name.strip():
+            break
+        if cell.strip().isdecimal():
+            raise Refusal(f"The number {quoted(cell.strip())} stands in a column without a name.", f"Name it.{hint}")
     return [*cells[:wanted], *[""] * (wanted - len(cells))]
 
 
 def _surplus(cells: Sequence[str]) -> str:
     """Return the cells that have no column as the end of a sentence, empty without any."""
+    cells = [cell for cell in cells if cell.strip()]
     named = [quoted(cell.strip()) for cell in cells[:_MOST_NAMED]]
     more = f" and {len(cells) - _MOST_NAMED} more" if len(cells) > _MOST_NAMED else ""
     return f"; without a column: {', '.join(named)}{more}" if named else ""

@@ -714,3 +714,56 @@ def test_nothing_is_done_where_the_answer_has_nowhere_to_go(tmp_path: Path) -> N
     into = ["batch", "saturation", "R-134a", str(tmp_path / "t.csv"), "--to", str(tmp_path / "new.csv")]
     assert subprocess.run([*closed, *into], env=clean_environ(tmp_path), check=False).returncode == 0
     assert (tmp_path / "new.csv").read_text().count("\n") == 2
+
+
+def test_a_cell_in_quotes_goes_on_over_the_ends_of_lines(run: Run) -> None:
+    table = 'note,suction pressure,suction temperature\n"first\n7,2,9\nlast ""x""",2.6,5\nb,2.6,5\n"c\n",x,5\n,3,5\n'
+    for end in ("\n", "\r\n", "\r"):
+        found = run("superheat R-134a", table.replace("\n", end), "--json").objects
+        assert [row["row"] for row in found] == [2, 5, 6, 8]
+        assert ["error" in row for row in found] == [False, False, True, False]
+        assert found[0]["carried"] == {"note": 'first 7,2,9 last "x"'}
+        assert found[0]["readings"] == found[1]["readings"]
+    assert [row["note"] for row in run("superheat R-134a", table).rows] == ['first 7,2,9 last "x"', "b", "c ", ""]
+    refused = run("superheat R-134a", 'note,suction pressure\na,"2\n bar"\n').rows[0]["refused"]
+    assert "control character (U+000A)" in refused
+
+
+@pytest.mark.parametrize(
+    "behind", ["", "b,3\n" * 3, "b,3\n" * 200, 'b,3\nc,"3"\n', "b,3\n" + "x" * 70_000 + "\n", "b,3\n\x00\n"]
+)
+def test_a_quote_that_is_not_closed_refuses_its_line_alone(behind: str, run: Run) -> None:
+    whole, odd = run("superheat R-134a", f"note,suction pressure\n{behind}", "--json").objects, '"a,2\n'
+    first, *found = run("superheat R-134a", f"note,suction pressure\n{odd}{behind}", "--json").objects
+    assert "quotes in this line do not fit" in first["error"]["message"]
+    assert [{**row, "row": row["row"] - 1} for row in found] == whole
+
+
+def test_decimal_commas_that_fit_by_chance_are_refused_or_told(run: Run) -> None:
+    head, told = "suction pressure,suction temperature", "In a comma table 2,6 is two cells;"
+    for header, row in [
+        (f"{head},note,tag", "2,6,8,0,,"), (f"{head},note,tag", "2,6,8,0,"), (head, "2.6,5,"), (f"{head},,", "2,6,8,0"),
+    ]:  # fmt: skip
+        (found,) = run("superheat R-134a", f"{header}\n{row}\n").rows
+        assert "double quotes" in found["refused"]
+        assert found["superheat [K]"] == ""
+    for header, row in [(f"{head},,", "2.6,5,,"), (f"{head},", "2.6,5,said beside"), (head, '"2,6","5,0"')]:
+        found = run("superheat R-134a", f"{header}\n{row}\n")
+        assert (found.status, told in found.err) == (0, False)
+    for delimiter in ",;":
+        found = run("superheat R-134a", f"{head},note,tag\n2,6,8,0\n3,7,8,0\n".replace(",", delimiter))
+        assert (found.status, found.err.count(told)) == (0, delimiter == ",")
+
+
+@pytest.mark.parametrize("text", ["2.600", "12.345 bar g", "2.600 bar"])
+def test_a_point_among_decimal_commas_is_refused(text: str, run: Run) -> None:
+    table = f"suction pressure;suction temperature\n{text};5.5\n3;5,5\n{text};5.5\n2.6;5\n"
+    rows = run("superheat R-134a", table).rows
+    assert [bool(row["refused"]) for row in rows] == [False, False, True, False]
+    assert rows[2]["refused"].startswith("suction pressure: In a table with decimal commas")
+    assert [bool(row["refused"]) for row in run("superheat R-134a", table, "--decimal-comma").rows] == [
+        True, False, True, False,
+    ]  # fmt: skip
+    # A comma that groups thousands is none; three digits behind a nought are no thousand.
+    table = 'suction pressure [Pa];note\n"1,234,567.5";\n300.125;\n"1.234.567,5";x\n0.125 bar;\n300.125;\n'
+    assert [bool(row["refused"]) for row in run("superheat R-134a", table).rows] == [False, False, False, False, True]
