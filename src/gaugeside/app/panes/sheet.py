@@ -265,21 +265,19 @@ class SheetPane(FormPane):
             (line for line in self.check.reading_lines() if focused is not None and line.name == focused.id), None
         )
         filled = line is None or bool(self._lines[line.name].field.value.strip())
-        if filled and self.answer is not None and self._findings_out_of_sight():
-            self.house.say(*self._what_is_told(self.answer))
-        else:
-            self.house.say(f"{line.label}: {line.help}" if line is not None else "", MUTED)
+        below = self._what_stands_below(self.answer) if filled and self.answer is not None else None
+        self.house.say(*(below or (f"{line.label}: {line.help}" if line is not None else "", MUTED)))
 
-    def _what_is_told(self, answer: Answer) -> Styled:
-        """Return in one line what stands below the window: what is wrong before what was asked for."""
-        house = self.house
+    def _what_stands_below(self, answer: Answer) -> Styled | None:
+        """Return in one line what does not fit into the window: what is wrong, else what was asked for."""
+        house, end = self.house, self.scroll_y + self.size.height
         cautions = [sentence(remark, house.dress, house.site) for remark in answer.cautions]
         urgent = [caution for caution in cautions if caution not in house.care()]
-        return (urgent[0], CAUTION) if urgent else (headline(self.check, answer, house.dress, house.site), MAIN)
-
-    def _findings_out_of_sight(self) -> bool:
-        """Whether the form is so long that what it tells stands below the window."""
-        return self._findings.virtual_region.y >= self.scroll_y + self.size.height > 0
+        if urgent and self._findings.virtual_region.bottom > end > 0:
+            return urgent[0], CAUTION
+        if self._findings.virtual_region.y >= end > 0:
+            return headline(self.check, answer, house.dress, house.site), MAIN
+        return None
 
     # Keeping
 
