@@ -11,6 +11,7 @@ from argparse import Namespace
 from collections.abc import Callable, Iterable, Iterator, Sequence
 from contextlib import nullcontext
 from dataclasses import dataclass, field
+from pathlib import Path
 from typing import Any, BinaryIO
 
 from gaugeside.answering import Terms, answer_json, answered, terms
@@ -19,8 +20,9 @@ from gaugeside.checks.sheet import Answer, Check, Entry, FindingLine, Remark
 from gaugeside.checks.typed import TypedLine, read_line
 from gaugeside.checks.view import FOOTNOTE, sentence, site_line
 from gaugeside.columns import Header, fitted, read_header
+from gaugeside.disk import whole_path
 from gaugeside.errors import Refusal
-from gaugeside.files import STANDARD, Lines, cell, opened, written_whole
+from gaugeside.files import STANDARD, Lines, cell, opened, refuse_own, written_whole
 from gaugeside.logbook import Logbook
 from gaugeside.quantities import Kind, Sense, Unit, with_sense, write
 from gaugeside.refrigerants import find
@@ -43,14 +45,16 @@ def run_batch(arguments: Namespace, put: Printer, tell: Printer) -> int:
     under = terms(check, arguments)
     _open_refrigerant(check, under)
     words = _words(check, arguments, under)
-    target = None if arguments.to in (None, STANDARD) else arguments.to
+    target = None if arguments.to in (None, STANDARD) else whole_path(arguments.to)
+    if target is not None:
+        refuse_own(target, under.home.logbook_file)
     with opened(arguments.file) as file:
         _refuse_same(file, target)
         lines = Lines(file, arguments.file, LONGEST_LINE)
         numbered = enumerate(lines, 1)
         header = read_header(check, _first(numbered), words, under.dress, under.site)
         batch = _Batch(header, under, Logbook(under.home.logbook_file), tell, "," if arguments.decimal_comma else ".")
-        with nullcontext() if target is None else written_whole(target, arguments.replace) as out:
+        with nullcontext() if target is None else written_whole(str(target), arguments.replace) as out:
             if out is not None:
                 put = _into(out, lines.marked and not arguments.json)
             for line in batch.json_lines(numbered) if arguments.json else batch.csv_lines(numbered):
@@ -84,7 +88,7 @@ def _words(check: Check, arguments: Namespace, under: Terms) -> dict[str, str]:
     return found
 
 
-def _refuse_same(file: BinaryIO, target: str | None) -> None:
+def _refuse_same(file: BinaryIO, target: Path | None) -> None:
     try:
         same = target is not None and os.path.samestat(os.fstat(file.fileno()), os.stat(target))
     except (OSError, ValueError):
@@ -213,7 +217,7 @@ class _Batch:
             cells += [self._found(row.answer, line, to) for line, to, _ in columns]
             cautions, notes = ((), ()) if row.answer is None else (row.answer.cautions, row.answer.notes)
             cells += [self._remarks(cautions), self._remarks([note for note in notes if note != self._model])]
-            yield self._csv_line([*cells, cell(_told(row.refusal))])
+            yield self._csv_line([*cells, cell(_told(row))])
 
     def _say_the_point(self, row: _Row) -> None:
         """Say once that numbers are written with a point where the readings have commas."""
@@ -273,6 +277,8 @@ class _Batch:
     def json_lines(self, numbered: Iterator[tuple[int, str | Refusal]]) -> Iterator[str]:
         """Yield one JSON object a row."""
         read = {column.place for column in self._header.columns}
+        places = [place for place in range(len(self._header.names)) if place not in read]
+        names = list(zip(places, _told_apart(self._header.names[place] for place in places), strict=True))
         for row in self._rows(numbered):
             found: dict[str, Any] = {"row": row.number}
             if row.answer is not None:
@@ -280,15 +286,26 @@ class _Batch:
             elif row.refusal is not None:
                 refusal = row.refusal
                 found["error"] = {"field": refusal.field, "message": refusal.message, "hint": refusal.hint}
-            carried = {
-                plain_text(name.strip()): plain_text(text)
-                for place, (name, text) in enumerate(zip(self._header.names, row.cells, strict=False))
-                if place not in read
-            }
+            carried = {name: plain_text(row.cells[place]) for place, name in names if place < len(row.cells)}
             yield json.dumps(found | ({"carried": carried} if carried else {}))
 
 
-def _told(refusal: Refusal | None) -> str:
-    if refusal is None:
+def _told_apart(headings: Iterable[str]) -> list[str]:
+    """Return headings as names, a number behind those that were there before."""
+    names: dict[str, None] = {}
+    for heading in headings:
+        name = plain = plain_text(heading.strip())
+        number = 1
+        while name in names:
+            number += 1
+            name = f"{plain} ({number})"
+        names[name] = None
+    return list(names)
+
+
+def _told(row: _Row) -> str:
+    """Return why a row has no answer; where none of its cells could be read, also which row it is."""
+    if row.refusal is None:
         return ""
-    return f"{refusal.field.replace('_', ' ')}: {refusal.sentence()}" if refusal.field else refusal.sentence()
+    where = row.refusal.field.replace("_", " ") if row.refusal.field else "" if row.cells else f"row {row.number}"
+    return f"{where}: {row.refusal.sentence()}" if where else row.refusal.sentence()

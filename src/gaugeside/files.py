@@ -15,10 +15,11 @@ from contextlib import contextmanager, suppress
 from pathlib import Path
 from typing import BinaryIO
 
-from gaugeside.disk import reason, sync_folder
+from gaugeside.disk import reason, sync_folder, whole_path
 from gaugeside.errors import Refusal
 from gaugeside.quantities import SEA_LEVEL, Dress, Kind, fold, guard, read_state, spellings, split_number
 from gaugeside.quantities.state_text import PROPERTIES
+from gaugeside.settings import places
 from gaugeside.text import plain_text
 
 OR_REPLACE = "Name another file, or add --replace."
@@ -43,6 +44,7 @@ def opened(name: str) -> Iterator[BinaryIO]:
             raise Refusal("Standard input is closed.", "Name a file, or pipe one in.")
         yield sys.stdin.buffer
         return
+    name = str(whole_path(name))
     try:
         # Looked at first, because the opening alone of a device may do something.
         is_file = stat.S_ISREG(os.stat(name).st_mode)
@@ -82,6 +84,25 @@ def content(name: str, largest: int) -> bytes:
             if len(found) > largest:
                 raise Refusal(f"{_told(name)} is larger than {largest // 1_000_000} MB.", "Part it first.")
     return bytes(found)
+
+
+def refuse_own(path: Path, logbook: Path) -> None:
+    """Raise Refusal when `path` is a file that the program keeps for itself, this `logbook` among them."""
+    home = places()
+    own = {home.settings_file: "the program's settings", home.draft_file: "where the program keeps what is typed"}
+    for book in (home.logbook_file, logbook):
+        own |= {book.with_name(f"{book.name}{end}"): "a part of the logbook" for end in ("-journal", "-wal", "-shm")}
+        own[book] = "the logbook itself"
+    for one, what in own.items():
+        if _is_same(path, one):
+            raise Refusal(f"That file is {what}.", "Name another file.")
+
+
+def _is_same(one: Path, other: Path) -> bool:
+    with suppress(OSError, ValueError):
+        # One that is not there yet has a place all the same.
+        return os.path.realpath(one) == os.path.realpath(other) or os.path.samefile(one, other)
+    return False
 
 
 @contextmanager

@@ -767,3 +767,60 @@ def test_a_point_among_decimal_commas_is_refused(text: str, run: Run) -> None:
     # A comma that groups thousands is none; three digits behind a nought are no thousand.
     table = 'suction pressure [Pa];note\n"1,234,567.5";\n300.125;\n"1.234.567,5";x\n0.125 bar;\n300.125;\n'
     assert [bool(row["refused"]) for row in run("superheat R-134a", table).rows] == [False, False, False, False, True]
+
+
+OWN = ["logbook.sqlite3", "logbook.sqlite3-journal", "settings.json", "draft.json", "other.sqlite3",
+       "other.sqlite3-journal", "in/../logbook.sqlite3"]  # fmt: skip
+
+
+@pytest.mark.parametrize("name", OWN)
+@pytest.mark.parametrize("words", [["batch", "saturation", "R-134a", "FILE"], ["logbook", "export", "--csv"]])
+def test_no_file_of_the_program_is_replaced(
+    words: list[str], name: str, isolated: Path, tmp_path: Path, capfd: pytest.CaptureFixture[str]
+) -> None:
+    (tmp_path / "t.csv").write_text("reading\n0 C\n")
+    (isolated / "in").mkdir(parents=True)
+    for one in ("logbook.sqlite3", "other.sqlite3"):
+        assert main(["superheat", "R-134a", "--suction-pressure", "2", "--keep", "--logbook", str(isolated / one)]) == 0
+    for one in ("settings.json", "draft.json"):
+        (isolated / one).write_text("{}")
+    before = {path.name: path.read_bytes() for path in isolated.iterdir() if path.is_file()}
+    words = [str(tmp_path / "t.csv") if word == "FILE" else word for word in words]
+    capfd.readouterr()
+    for more in ([], ["--replace"]):
+        logbook = ["--logbook", str(isolated / "other.sqlite3")]
+        assert main([*words, "--to", str(isolated / name), *logbook, *more]) == 2
+        out, err = capfd.readouterr()
+        assert (out, err.splitlines()[-1][:13]) == ("", "That file is ")
+    assert {path.name: path.read_bytes() for path in isolated.iterdir() if path.is_file()} == before
+
+
+def test_the_home_folder_may_be_a_tilde(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capfd: pytest.CaptureFixture[str]
+) -> None:
+    monkeypatch.setenv("HOME", str(tmp_path))
+    (tmp_path / "t.csv").write_text("reading\n0 C\n")
+    assert main(["batch", "saturation", "R-134a", "~/t.csv", "--to", "~/new.csv"]) == 0
+    assert main(["logbook", "export", "--to", "~/log.json"]) == 0
+    assert main(["logbook", "import", "~/log.json"]) == 0
+    assert (tmp_path / "new.csv").exists()
+    assert main(["batch", "saturation", "R-134a", "~/t.csv", "--to", "~/t.csv", "--replace"]) == 2
+    assert "would replace the readings it comes from" in capfd.readouterr().err
+
+
+def test_columns_of_one_name_are_told_apart(run: Run) -> None:
+    (found,) = run("saturation R-134a", "note,reading,note,,note (2),note,\na,0 C,b,c,d,e,f\n", "--json").objects
+    assert found["carried"] == {
+        "note": "a",
+        "note (2)": "b",
+        "": "c",
+        "note (2) (2)": "d",
+        "note (3)": "e",
+        " (2)": "f",
+    }
+
+
+def test_a_row_that_could_not_be_read_says_which_it_is(run: Run) -> None:
+    table = "reading;note\n0 C;a\n" + "x" * 70_000 + '\n1 C;\x00\n\n1 C;"b\nbad;c\n'
+    rows = run("saturation R-134a", table).rows
+    assert [row["refused"].partition(":")[0] for row in rows] == ["", "row 3", "row 4", "row 6", "reading"]

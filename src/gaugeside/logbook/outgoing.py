@@ -2,13 +2,11 @@
 
 from __future__ import annotations
 
-import os
 from collections.abc import Iterator
 from pathlib import Path
 
 from gaugeside.disk import whole_path
-from gaugeside.errors import Refusal
-from gaugeside.files import written_whole
+from gaugeside.files import refuse_own, written_whole
 from gaugeside.logbook.exchange import csv_lines, json_lines
 from gaugeside.logbook.store import Logbook
 
@@ -24,19 +22,11 @@ def write_file(logbook: Logbook, words: str, name: str, *, as_csv: bool, replace
 
     hint: what to do where a file is there already.
 
-    Raises Refusal when the file cannot be written, is there already and may not be replaced, or is the logbook.
+    Raises Refusal when the file cannot be written, is there and may not be replaced, or is one of the program's own.
     """
     path = whole_path(name)
-    if _is_same(path, logbook.path):
-        raise Refusal("That file is the logbook itself.", "Name another file.")
+    refuse_own(path, logbook.path)
     with written_whole(str(path), replace, hint) as file:
         for line in lines_of(logbook, words, as_csv):
             file.write(f"{line}\n".encode())
     return path
-
-
-def _is_same(one: Path, other: Path) -> bool:
-    try:
-        return os.path.samefile(one, other)
-    except (OSError, ValueError):
-        return False
