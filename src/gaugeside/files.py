@@ -12,13 +12,14 @@ import sys
 import threading
 from collections.abc import Iterator
 from contextlib import contextmanager, suppress
+from functools import cache
 from pathlib import Path
 from typing import BinaryIO
 
 from gaugeside.disk import reason, sync_folder, whole_path
 from gaugeside.errors import Refusal
-from gaugeside.quantities import SEA_LEVEL, Dress, Kind, fold, guard, read_state, spellings, split_number
-from gaugeside.quantities.state_text import PROPERTIES
+from gaugeside.quantities import Kind, fold, guard, spellings, split_number
+from gaugeside.quantities.state_text import LONGEST_STATE, split_state
 from gaugeside.settings import places
 from gaugeside.text import plain_text
 
@@ -30,7 +31,14 @@ _LINE_END = re.compile(rb"\r\n|\n|\r")
 # The last four are the wide forms, which some spreadsheets take for the narrow ones.
 _FORMULA = frozenset("=+-@＝＋－＠")
 _NEVER_IN_A_READING = frozenset("*^_=[]{}|!&<>:@#$\\")
-_STATE_UNITS = {name: Dress().default(kind) for name, kind in PROPERTIES.items()}
+_INNER_FORMULA = re.compile(rf'(?P<before>[,;|][\s"]*)(?P<text>[{re.escape("".join(_FORMULA))}][^,;|]*)')
+_LETTERS = re.compile(r"([a-z]+)\s*")
+_STATE_WORDS = frozenset(
+    ("superheated", "superheat", "sh", "subcooled", "subcooling", "subcool", "sc", "vapour", "vapor", "vap", "fraction",
+     "quality", "x", "enthalpy", "h", "pressure", "p", "temperature", "temp", "t", "of", "sat", "saturated", "liquid",
+     "liq", "gas", "dew", "bubble", "point")
+)  # fmt: skip
+_MOST_WORDS = 4  # behind a number
 
 
 @contextmanager
@@ -267,22 +275,47 @@ class Lines:
 def cell(text: str) -> str:
     """Return a text as a cell that no spreadsheet runs as a formula and no terminal obeys.
 
-    What begins like a formula gets an apostrophe before it, unless it is a number, a reading or a state: those are
-    made of digits and of units of a closed list.
+    What begins like a formula, or would where the text is parted by another delimiter, gets an apostrophe before it,
+    unless it is a number, a reading or a state: those are made of digits and of units and words of closed lists.
     """
     text = plain_text(text)
-    return f"'{text}" if text.lstrip()[:1] in _FORMULA and not _is_reading(text) else text
+    if text.lstrip()[:1] in _FORMULA:
+        text = text if _is_reading(text) else f"'{text}"
+    if _INNER_FORMULA.search(text) is None or _is_reading(text):
+        return text
+    return _INNER_FORMULA.sub(_disarmed, text)
+
+
+def _disarmed(found: re.Match[str]) -> str:
+    return found[0] if _is_reading(found["text"]) else f"{found['before']}'{found['text']}"
 
 
 def _is_reading(text: str) -> bool:
-    if not _NEVER_IN_A_READING.isdisjoint(text):
+    if len(text) > LONGEST_STATE or not _NEVER_IN_A_READING.isdisjoint(text):
         return False
-    with suppress(Refusal):
-        unit = split_number(guard(text))[1]
-        kinds = (kind for kind in Kind if kind not in (Kind.WORDS, Kind.RATIO))
-        if not unit or any(fold(unit) in spellings(kind) for kind in kinds):
-            return True
-    with suppress(Refusal):
-        read_state(text, _STATE_UNITS, Dress(), SEA_LEVEL)
+    parts = split_state(text)
+    return len(parts) <= 2 and all(map(_is_number_with_unit, parts))
+
+
+def _is_number_with_unit(part: str) -> bool:
+    """Whether a part of a state is a number with a unit or without, words for states around it or alone."""
+    rest = part.casefold().strip()
+    while (word := _LETTERS.match(rest)) is not None and word[1] in _STATE_WORDS:
+        rest = rest[word.end() :]
+    if not rest:
         return True
+    for _ in range(_MOST_WORDS):
+        with suppress(Refusal):
+            unit = split_number(guard(rest))[1]
+            if not unit or fold(unit) in _units():
+                return True
+        rest, _, last = rest.rpartition(" ")
+        if last not in _STATE_WORDS:
+            return False
+        rest = rest.rstrip()
     return False
+
+
+@cache
+def _units() -> frozenset[str]:
+    return frozenset(spelling for kind in Kind if kind not in (Kind.WORDS, Kind.RATIO) for spelling in spellings(kind))

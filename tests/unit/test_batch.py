@@ -824,3 +824,20 @@ def test_a_row_that_could_not_be_read_says_which_it_is(run: Run) -> None:
     table = "reading;note\n0 C;a\n" + "x" * 70_000 + '\n1 C;\x00\n\n1 C;"b\nbad;c\n'
     rows = run("saturation R-134a", table).rows
     assert [row["refused"].partition(":")[0] for row in rows] == ["", "row 3", "row 4", "row 6", "reading"]
+
+
+@pytest.mark.parametrize(
+    ("text", "written"),
+    [
+        ("x;=1+1", "x;'=1+1"), ("x, =1+1", "x, '=1+1"), ('x;"=1+1', "x;\"'=1+1"), ("x|@x", "x|'@x"),
+        ("x;-2+3+cmd|' /C calc'!A0", "x;'-2+3+cmd|' /C calc'!A0"), ("a;+A1;＝1,-A1", "a;'+A1;'＝1,'-A1"),
+        ("x;'=1", "x;'=1"), ("warm; -5 °C, +3 K", "warm; -5 °C, +3 K"), ("a-b; c=d", "a-b; c=d"),
+        ("-10 C, sat vapour", "-10 C, sat vapour"), ("-0.3 bar g, SC 4 K", "-0.3 bar g, SC 4 K"),
+        ("-5 C, x0.3", "-5 C, x0.3"), ("-5 K superheat", "-5 K superheat"), ("-5 C, A1", "'-5 C, A1"),
+        ("-x", "'-x"), ("-5, -A1", "'-5, '-A1"),
+    ],
+)  # fmt: skip
+def test_no_part_of_a_cell_becomes_a_formula_under_another_delimiter(text: str, written: str, run: Run) -> None:
+    quoted = '"' + text.replace('"', '""') + '"'
+    (row,) = run("saturation R-134a", f"reading,note\n0 C,{quoted}\n").rows
+    assert row["note"] == written
