@@ -84,7 +84,7 @@ def test_function_keys_in_each_encoding(tmp_path: Path, encoding: str) -> None:
         shown.send(keys[9])
         shown.wait_for("F7 SITE")
         shown.send(keys[1])
-        shown.wait_for("How a reading is written")
+        shown.wait_for("Enter or Space goes back")
         shown.send(keys[1])
         shown.wait_for("F7 SITE")
         shown.send(keys[10])
