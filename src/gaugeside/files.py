@@ -83,14 +83,17 @@ def chunks(file: BinaryIO, name: str) -> Iterator[bytes]:
         yield chunk
 
 
-def content(name: str, largest: int) -> bytes:
-    """Return all that a file, or standard input for "-", holds; Refusal when that is more than `largest` [bytes]."""
+def content(name: str, largest: int, hint: str = "") -> bytes:
+    """Return all that a file, or standard input for "-", holds; Refusal when that is more than `largest` [bytes].
+
+    hint: what to do with a larger one.
+    """
     found = bytearray()
     with opened(name) as file:
         for chunk in chunks(file, name):
             found += chunk
             if len(found) > largest:
-                raise Refusal(f"{_told(name)} is larger than {largest // 1_000_000} MB.", "Part it first.")
+                raise Refusal(f"{_told(name)} is larger than {largest // 1_000_000} MB.", hint)
     return bytes(found)
 
 

@@ -10,7 +10,7 @@ from typing import Any
 from gaugeside.files import OR_REPLACE, STANDARD, content
 from gaugeside.logbook import Entry as LogbookEntry
 from gaugeside.logbook import Logbook
-from gaugeside.logbook.exchange import LARGEST, entry_json, read_document
+from gaugeside.logbook.exchange import FEWER, LARGEST, entry_json, read_document
 from gaugeside.logbook.links import linked_first, relinked
 from gaugeside.logbook.outgoing import lines_of, write_file
 from gaugeside.refrigerants import find, load_own, search
@@ -123,7 +123,7 @@ def import_logbook(arguments: Namespace, say: Printer, tell: Printer) -> int:
 
     say: takes the answer. tell: takes the reasons of those refused.
     """
-    document = read_document(content(arguments.file, LARGEST))
+    document = read_document(content(arguments.file, LARGEST, FEWER))
     logbook = Logbook(places(logbook=arguments.logbook).logbook_file)
     taken = logbook.take(linked_first(document.entries), relinked) if document.entries else 0
     already = len(document.entries) - taken

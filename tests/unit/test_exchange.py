@@ -277,7 +277,9 @@ def test_other_json_may_say_it_in_another_order(
         (document(invented()).replace('"note": ', '"note" '), "damaged (not readable as JSON) at line 2"),
         ('{"entries": ' + "[" * 100_000, "nested too deeply"), ('{"a": ' * 50_000, "nested too deeply"),
         ('{"entries": [' + "9" * 10_000, "damaged"), ('{"entries": ["' + "x" * 6_000_000 + '"]}', "more than an entry"),
-        ('{"entries": [' + "1," * 100_001 + "1]}", "more than 100000 entries"), (b"\xff\xfa{", "not UTF-8"),
+        ('{"entries": [' + "1," * 100_001 + "1]}", "more than 100000 entries"),
+        ("{" + '"":0,' * 21 + '"a": 1}', "more than 20 members"),
+        (b"\xff\xfa{", "not UTF-8"),
     ],
 )  # fmt: skip
 def test_what_is_no_exported_logbook_is_refused_whole(
@@ -297,7 +299,9 @@ WRONG = {
                                               {str(n): "" for n in range(201)}],
     "options": ["", {"a": None}], "values": [{"a": float("nan")}, {"a": 10**400}, {"a": float("inf")}, {"a": True},
                                              {"a": "5"}, 5],
-    "findings": [{"a": 5}, {"a": {}}, {"a": {"value": float("-inf")}}, {"a": {"value": 1, "unit": []}}, []],
+    "findings": [{"a": {"value": 1, "unit": "K", "more": 1}},
+                 {f"{n}": {"value": '"' * 500, "unit": '"' * 500, "uncertainty": '"' * 500} for n in range(200)},
+                 {"a": 5}, {"a": {}}, {"a": {"value": float("-inf")}}, {"a": {"value": 1, "unit": []}}, []],
     "notes": ["n", [5], ["x" * 501], [""] * 201], "cautions": [{}, [None]], "program_version": [1],
 }  # fmt: skip
 
@@ -379,7 +383,7 @@ def test_no_file_takes_all_memory(tmp_path: Path) -> None:
         assert is_sentence(done.stderr.decode().strip())
     with open("/dev/zero", "rb") as endless:
         done = limited(tmp_path, Path("-"), limit, stdin=endless)
-    assert b"larger than 50 MB" in done.stderr
+    assert b"larger than 50 MB. Export fewer entries at a time: " in done.stderr
 
 
 # All or none

@@ -23,7 +23,9 @@ from gaugeside.logbook.entry import (
     MOST_ITEMS,
     Entry,
     cleaned,
+    to_row,
 )
+from gaugeside.logbook.schema import LONGEST_COLUMN
 from gaugeside.text import plain_text
 
 FORMAT = "gaugeside logbook"
@@ -31,9 +33,12 @@ VERSION = 1
 LARGEST = 50_000_000  # [bytes] of a file that is taken in
 MOST_ENTRIES = 100_000
 MOST_COLUMNS = 2_000
+FEWER = "Export fewer entries at a time: gaugeside logbook export WORDS takes those that hold all the words."
 TOLD = 5  # refused entries that are told one by one
 # An entry is read out of a window that grows until it holds it, so that no value of a file's size is ever built.
-_WINDOW, _LARGEST_WINDOW = 16_384, 16_384 * 4**4  # [characters]
+_WINDOW, _LARGEST_WINDOW = 1024, 1024 * 4**6  # [characters]
+_MOST_MEMBERS = 20  # of the document, beside which an export writes three
+_PARTS = frozenset(("value", "unit", "uncertainty"))  # of a finding
 _BLANK = re.compile(r"[ \t\r\n]*")
 _HEAD = ("number", "kept_at", "check", "refrigerant", "tag", "note", "headline")
 # What gauge readings were worked with, by the name of the option.
@@ -149,8 +154,10 @@ def read_document(content: bytes) -> Document:
         what = "the CSV of a logbook, which leaves much of each entry out" if is_csv else "no JSON document"
         raise Refusal(f"The file is {what}.", _ONLY_JSON)
     document, head = Document(), {}
-    for name, value in _members(text, document):
+    for count, (name, value) in enumerate(_members(text, document), 1):
         head[name] = value
+        if count > _MOST_MEMBERS:
+            raise Refusal(f"The file is JSON with more than {_MOST_MEMBERS} members, so no logbook.", _ONLY_JSON)
     if head.get("format") != FORMAT:
         raise Refusal("The file is JSON, but no exported logbook: it does not name that format.", _ONLY_JSON)
     version = head.get("version")
@@ -206,8 +213,7 @@ def _entries(text: str, place: int, document: Document) -> int:
         found, place = _value(text, place)
         count = len(document.entries) + document.refused + 1
         if count > MOST_ENTRIES:
-            words = "Export it in parts, by words that choose fewer entries."
-            raise Refusal(f"The file holds more than {MOST_ENTRIES} entries.", words)
+            raise Refusal(f"The file holds more than {MOST_ENTRIES} entries.", FEWER)
         try:
             document.entries.append(entry_from(found))
         except ValueError as fault:
@@ -286,7 +292,7 @@ def entry_from(found: object) -> Entry:
     texts = {name: _text(found[name], name, LONGEST_NAME) for name in _NAMES}
     if not texts["check"].strip():
         raise ValueError("it names no check")
-    return cleaned(
+    entry = cleaned(
         Entry(
             number=number if isinstance(number, int) and not isinstance(number, bool) else None,
             kept_at=_moment(found["kept_at"]),
@@ -301,6 +307,9 @@ def entry_from(found: object) -> Entry:
             **texts,
         )
     )
+    if any(isinstance(column, str) and len(column) > LONGEST_COLUMN for column in to_row(entry)):
+        raise ValueError("it is larger than a logbook can hold")
+    return entry
 
 
 def _moment(value: object) -> datetime:
@@ -355,6 +364,8 @@ def _finding(value: object) -> dict[str, Any]:
     parts = dict(_items(value, "findings"))
     if "value" not in parts:
         raise ValueError("findings hold one without a value")
+    if not parts.keys() <= _PARTS:
+        raise ValueError("findings hold one with parts that are none of a finding")
     return {
         name: plain_text(_text(part, "findings", LONGEST_LINE)) if isinstance(part, str) else _number(part, "findings")
         for name, part in parts.items()
