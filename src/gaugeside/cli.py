@@ -280,7 +280,7 @@ def _logbook_show(arguments: argparse.Namespace) -> int:
 def _logbook_export(arguments: argparse.Namespace) -> int:
     from gaugeside.listings import export_logbook
 
-    return export_logbook(arguments, _row_printer(arguments))
+    return export_logbook(arguments, _row_printer(arguments), _tell)
 
 
 def _logbook_import(arguments: argparse.Namespace) -> int:

@@ -19,6 +19,7 @@ from gaugeside.settings import places
 Printer = Callable[[str], None]
 # Columns of a list of entries [characters]; the note stands last and has no end.
 _MOST = (9, 16, 10, 12, 16, 60, 0)
+_MOST_NAMED = 10  # entries in one sentence
 
 
 def list_refrigerants(arguments: Namespace, say: Printer) -> int:
@@ -107,14 +108,23 @@ def entry_lines(entries: Sequence[LogbookEntry]) -> list[str]:
     return ["  ".join(map(str.ljust, row, widths)).rstrip() for row in rows]
 
 
-def export_logbook(arguments: Namespace, put: Printer) -> int:
-    """Put the logbook's entries, oldest first, out as JSON or CSV: to `put` line by line, or into a file."""
+def export_logbook(arguments: Namespace, put: Printer, tell: Printer) -> int:
+    """Put the logbook's entries, oldest first, out as JSON or CSV: to `put` line by line, or into a file.
+
+    tell: takes a sentence where a part of some could not be read back.
+    """
     logbook, words = Logbook(places(logbook=arguments.logbook).logbook_file), " ".join(arguments.words)
+    unread: set[int | None] = set()
     if arguments.to not in (None, STANDARD):
-        write_file(logbook, words, arguments.to, as_csv=arguments.csv, replace=arguments.replace, hint=OR_REPLACE)
-        return 0
-    for line in lines_of(logbook, words, arguments.csv):
-        put(line)
+        how = {"as_csv": arguments.csv, "replace": arguments.replace}
+        write_file(logbook, words, arguments.to, **how, hint=OR_REPLACE, unread=unread)
+    else:
+        for line in lines_of(logbook, words, arguments.csv, unread):
+            put(line)
+    if unread:
+        which = ", ".join(map(str, sorted(unread, key=lambda number: number or 0)[:_MOST_NAMED]))
+        more = f" and {len(unread) - _MOST_NAMED} more" if len(unread) > _MOST_NAMED else ""
+        tell(f"Of {'entry' if len(unread) == 1 else 'entries'} {which}{more} a part could not be read and is left out.")
     return 0
 
 

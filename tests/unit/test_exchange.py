@@ -607,3 +607,15 @@ def test_an_entry_with_two_links_waits_for_both(
     here = {entry.note: entry for entry in book.entries()}
     assert here["c"].readings == {"one": str(here["a"].number), "other": str(here["b"].number)}
     assert here["c"].cautions == []
+
+
+@pytest.mark.parametrize("option", [[], ["--csv"], ["--to", "out"]])
+def test_a_part_that_could_not_be_read_is_told_where_it_is_missing(
+    option: list[str], filled: Logbook, tmp_path: Path, monkeypatch: pytest.MonkeyPatch,
+    capfd: pytest.CaptureFixture[str],
+) -> None:  # fmt: skip
+    monkeypatch.chdir(tmp_path)
+    with closing(sqlite3.connect(filled.path)) as connection, connection:
+        connection.execute("UPDATE entries SET findings = '{' WHERE number IN (1, 3)")
+    assert main(["logbook", "export", *option]) == 0
+    assert capfd.readouterr().err == "Of entries 1, 3 a part could not be read and is left out.\n"
