@@ -195,7 +195,7 @@ class _Batch:
             raise Refusal(words, "The other rows are answered all the same.") from fault
         for what, words in self._header.assumed(row.typed, dress).items():
             self._tell_once(what, words)
-        if self._header.could_be_split(row.cells):
+        if "split" not in self._told and self._header.could_be_split(row.cells):
             self._tell_once("split", "In a comma table 2,6 is two cells; double quotes hold a decimal comma together.")
         if self._model in row.answer.notes and self._model is not None:
             self._tell_once(self._model.text, f"Note: {sentence(self._model, dress, site)}")

@@ -14,6 +14,7 @@ import sys
 import time
 from collections.abc import Callable
 from pathlib import Path
+from types import SimpleNamespace
 from typing import Any
 
 import pytest
@@ -841,3 +842,17 @@ def test_no_part_of_a_cell_becomes_a_formula_under_another_delimiter(text: str, 
     quoted = '"' + text.replace('"', '""') + '"'
     (row,) = run("saturation R-134a", f"reading,note\n0 C,{quoted}\n").rows
     assert row["note"] == written
+
+
+@pytest.mark.parametrize("text", ["-1 x " * 30, "- 1 a" * 30, "-5 " + "barr " * 30])
+def test_no_cell_that_is_only_carried_along_is_searched_for_a_meaning(
+    text: str, run: Run, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    def search(*words: object, **more: object) -> list[str]:
+        raise AssertionError("a search through all units for every cell of a wide table takes seconds a row")
+
+    table = f"note,reading [°C]\n{text},0\n"
+    assert run("saturation R-134a", table).status == 0
+    monkeypatch.setattr("gaugeside.quantities.reading.difflib", SimpleNamespace(get_close_matches=search))
+    (row,) = run("saturation R-134a", table).rows
+    assert row["note"] == f"'{text}"
