@@ -11,6 +11,7 @@ import stat
 import sys
 import threading
 from contextlib import closing
+from dataclasses import replace
 from pathlib import Path
 
 import pytest
@@ -18,6 +19,7 @@ from textual.widgets import Input
 
 from app.sheets import CANNED, Sheet, sheet
 from gaugeside.app.frame import HIGH, MENU, PANES, WIDE, head_line, keys_line, rule_line, tabs_line, word_lines
+from gaugeside.checks.sheet import Remark
 from gaugeside.checks.view import FOOTNOTE
 from gaugeside.logbook import Logbook
 from gaugeside.quantities.site import SEA_LEVEL
@@ -545,3 +547,17 @@ async def test_a_picture_of_nothing_says_so() -> None:
     async with sheet() as shown:
         await shown.press("ctrl+g")
         await shown.see("There is nothing to draw yet; Ctrl+G brings the form back.")
+
+
+async def test_a_caution_below_the_window_is_said_when_typing_rests() -> None:
+    async with sheet() as shown:
+        await shown.press("f5")
+        await shown.type("1 bar")
+        pane = shown.pane("machine")
+        await shown.wait(lambda: pane.answer is not None)
+        assert pane.answer is not None
+        pane.answer = replace(pane.answer, cautions=(Remark("The readings do not agree."),))
+        pane.say_word(settled=False)
+        assert not shown.word.startswith("The readings do not agree.")
+        pane.settle()
+        assert shown.word.startswith("The readings do not agree.")

@@ -86,15 +86,15 @@ def test_pressure_of_the_place_counts() -> None:
     [
         (
             {"suction_pressure": "2 bar g", "suction_temperature": "-5 C"},
-            "superheat", ["BELOW the dew point", "Superheat below zero cannot be for settled vapour", "two-phase"],
+            "superheat", ["BELOW the dew point", "Superheat < 0 cannot be", "two-phase"],
         ),
         (
             {"liquid_pressure": "8 bar g", "liquid_temperature": "45 C"},
-            "subcooling", ["ABOVE the bubble point", "Subcooling below zero cannot be for settled liquid", "a sensor"],
+            "subcooling", ["ABOVE the bubble point", "Subcooling < 0 cannot be", "sensor"],
         ),
         (
             {"discharge_pressure": "8 bar g", "discharge_temperature": "20 C"},
-            "discharge_superheat", ["BELOW the dew point", "Discharge superheat below zero", "gauge/absolute"],
+            "discharge_superheat", ["BELOW the dew point", "Discharge superheat < 0 cannot be", "gauge/abs"],
         ),
     ],
 )  # fmt: skip

@@ -100,7 +100,7 @@ def _suction(conditions: Conditions, readings: Readings, outcome: Outcome) -> No
         outcome.remark("superheat", "above the dew point {dew}", dew=(dew.temperature, Kind.TEMPERATURE))
         if found.superheat < 0:
             outcome.remark("superheat", "BELOW the dew point {dew}", dew=(dew.temperature, Kind.TEMPERATURE))
-            _impossible(outcome, "Superheat below zero", "vapour")
+            _impossible(outcome, "Superheat")
         uncertain_difference(conditions, outcome, "superheat", found.superheat)
 
 
@@ -121,7 +121,7 @@ def _liquid(conditions: Conditions, readings: Readings, outcome: Outcome) -> Non
             outcome.remark(
                 "subcooling", "ABOVE the bubble point {bubble}", bubble=(bubble.temperature, Kind.TEMPERATURE)
             )
-            _impossible(outcome, "Subcooling below zero", "liquid")
+            _impossible(outcome, "Subcooling")
         uncertain_difference(conditions, outcome, "subcooling", found.subcooling)
 
 
@@ -140,7 +140,7 @@ def _discharge(conditions: Conditions, readings: Readings, outcome: Outcome) -> 
         outcome.remark("discharge_superheat", "above the dew point {dew}", dew=(dew.temperature, Kind.TEMPERATURE))
         if found.discharge_superheat < 0:
             outcome.remark("discharge_superheat", "BELOW the dew point {dew}", dew=(dew.temperature, Kind.TEMPERATURE))
-            _impossible(outcome, "Discharge superheat below zero", "vapour")
+            _impossible(outcome, "Discharge superheat")
 
 
 def _at_clamp(outcome: Outcome, readings: Readings, place: str, sign: int) -> float | None:
@@ -226,11 +226,8 @@ def _say_which(
     outcome.remark(name, f"{point}; mean with {other} {{mean}}", mean=(mean, Kind.TEMPERATURE))
 
 
-def _impossible(outcome: Outcome, what: str, phase: str) -> None:
-    outcome.caution(
-        f"{what} cannot be for settled {phase}: two-phase flow, a sensor that is off, a wrong refrigerant or a wrong "
-        "gauge/absolute reference."
-    )
+def _impossible(outcome: Outcome, what: str) -> None:
+    outcome.caution(f"{what} < 0 cannot be: two-phase, sensor off, wrong refrigerant, gauge/abs.")
 
 
 CHECK = Check(

@@ -193,7 +193,11 @@ class FormPane(VerticalScroll, can_focus=False):
         self.house.form_changed()
         if self._settle is not None:
             self._settle.stop()
-        self._settle = self.set_timer(_SETTLE, self.settle_units)
+        self._settle = self.set_timer(_SETTLE, self.settle)
+
+    def settle(self) -> None:
+        """Take what is typed as typed to its end."""
+        self.settle_units()
 
     def settle_units(self) -> None:
         """Make the units that were typed the fields' own."""

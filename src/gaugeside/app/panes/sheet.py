@@ -219,7 +219,7 @@ class SheetPane(FormPane):
         self._picture = reply.picture
         self._show_answer()
         if not self.house.word_stays:
-            self.say_word()
+            self.say_word(settled=False)
         if self.keeps_then:
             self.keeps_then = False
             self.house.keep(self)
@@ -253,8 +253,17 @@ class SheetPane(FormPane):
         self.scroll_home(animate=False)
         self.ask()
 
-    def say_word(self) -> None:
-        """Show under the sheet what stands in the way, or what belongs in the field."""
+    def settle(self) -> None:
+        """Take what is typed as typed to its end: its units, and what is wrong with it."""
+        super().settle()
+        if not self.house.word_stays and self.refusal is None:
+            self.say_word()
+
+    def say_word(self, *, settled: bool = True) -> None:
+        """Show under the sheet what stands in the way, or what belongs in the field.
+
+        settled: what is typed is not about to go on; half of a number would give cautions that flash by.
+        """
         if not self.display:
             return
         if self.refusal is not None:
@@ -265,17 +274,19 @@ class SheetPane(FormPane):
             (line for line in self.check.reading_lines() if focused is not None and line.name == focused.id), None
         )
         filled = line is None or bool(self._lines[line.name].field.value.strip())
-        below = self._what_stands_below(self.answer) if filled and self.answer is not None else None
+        below = self._what_stands_below(self.answer, settled) if filled and self.answer else None
         self.house.say(*(below or (f"{line.label}: {line.help}" if line is not None else "", MUTED)))
 
-    def _what_stands_below(self, answer: Answer) -> Styled | None:
+    def _what_stands_below(self, answer: Answer, settled: bool) -> Styled | None:
         """Return in one line what does not fit into the window: what is wrong, else what was asked for."""
         house, end = self.house, self.scroll_y + self.size.height
         cautions = [sentence(remark, house.dress, house.site) for remark in answer.cautions]
         urgent = [caution for caution in cautions if caution not in house.care()]
-        if urgent and self._findings.virtual_region.bottom > end > 0:
+        # Counted, because what has just been shown is laid out only later.
+        top = self._findings.virtual_region.y
+        if settled and urgent and top + len(self._findings.texts()) > end > 0:
             return urgent[0], CAUTION
-        if self._findings.virtual_region.y >= end > 0:
+        if top >= end > 0:
             return headline(self.check, answer, house.dress, house.site), MAIN
         return None
 
