@@ -12,7 +12,17 @@ from typing import Any, NoReturn
 
 from gaugeside import __version__
 from gaugeside.errors import Refusal
-from gaugeside.options import add_batch, add_common, add_logbook, as_typed, plain, shielded, typed_path, with_example
+from gaugeside.options import (
+    add_batch,
+    add_common,
+    add_logbook,
+    as_typed,
+    in_short,
+    plain,
+    shielded,
+    typed_path,
+    with_example,
+)
 
 _LONGEST_MESSAGE = 500  # [characters]: a refused word may be of any length
 
@@ -185,7 +195,9 @@ def _parser() -> argparse.ArgumentParser:
 def _add_check(commands: Any, check: Any) -> None:
     from gaugeside.checks.picture import DRAWN
 
-    command = commands.add_parser(check.name, help=plain(check.summary), **with_example(check.name))
+    command = commands.add_parser(
+        check.name, help=plain(in_short(check)), description=plain(check.summary), **with_example(check.name)
+    )
     before = [line for line in check.reading_lines() if line.positional and line.choices]
     after = [line for line in check.reading_lines() if line.positional and not line.choices]
     for line in before:

@@ -54,6 +54,11 @@ def with_example(name: str) -> dict[str, Any]:
     return {"epilog": f"example:\n  gaugeside {example}", "formatter_class": argparse.RawDescriptionHelpFormatter}
 
 
+def in_short(check: Any) -> str:
+    """Return what a check does without the list that may follow."""
+    return f"{check.summary.split(': ')[0].removesuffix('.')}."
+
+
 def plain(help_text: str) -> str:
     """Return a text in which the option parser sees no format."""
     return help_text.replace("%", "%%")
@@ -76,7 +81,7 @@ def add_batch(commands: Any, run: Run) -> None:
     command = commands.add_parser("batch", help="one check on every row of a table", **with_example("batch"))
     checks = command.add_subparsers(title="checks", metavar="CHECK", required=True)
     for check in CHECKS.values():
-        rows = checks.add_parser(check.name, help=plain(check.summary), description=_BATCH)
+        rows = checks.add_parser(check.name, help=plain(in_short(check)), description=_BATCH)
         words = [line for line in check.reading_lines() if line.positional and not line.kinds]
         for line in (line for line in words if line.choices):
             rows.add_argument(line.name, nargs="?", help=plain(f"{line.help} Unless a column says it."))
