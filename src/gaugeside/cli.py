@@ -194,9 +194,13 @@ def _parser() -> argparse.ArgumentParser:
 
 def _add_check(commands: Any, check: Any) -> None:
     from gaugeside.checks.picture import DRAWN
+    from gaugeside.checks.view import wrapped
 
     command = commands.add_parser(
-        check.name, help=plain(in_short(check)), description=plain(check.summary), **with_example(check.name)
+        check.name,
+        help=plain(in_short(check)),
+        description=plain("\n".join(wrapped(check.summary, 78))),
+        **with_example(check.name),
     )
     before = [line for line in check.reading_lines() if line.positional and line.choices]
     after = [line for line in check.reading_lines() if line.positional and not line.choices]
