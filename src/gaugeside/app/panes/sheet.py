@@ -135,7 +135,8 @@ class SheetPane(FormPane):
             drawn=self.has_class("-picture"),
         )
         self._asked = house.engine.ask(self.check.name, asked)
-        self._be_patient(anew=False)
+        # Of a half-typed reading nothing is left to wait for.
+        self._be_patient(anew=self._rule.text == _BEFORE)
 
     def _be_patient(self, *, anew: bool) -> None:
         if self._patience is not None:
@@ -185,7 +186,7 @@ class SheetPane(FormPane):
             self._show_without_answer()
 
     def _show_nothing(self, *words: str) -> None:
-        if self.has_class("-picture"):
+        if self.has_class("-picture") and not self._asked:
             words = (_NO_PICTURE, *words[1:])
         width = self._width
         lines = [(text, MUTED) for word in words for text in wrapped(word, width)]
