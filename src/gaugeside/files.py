@@ -5,7 +5,6 @@ from __future__ import annotations
 import codecs
 import os
 import re
-import secrets
 import signal
 import stat
 import sys
@@ -128,7 +127,7 @@ def written_whole(name: str, replace: bool, hint: str = OR_REPLACE) -> Iterator[
     path = Path(name)
     _refuse_what_is_there(path, replace, hint)
     # The name is known before the file is there, so that whatever ends the block from then on takes it along.
-    temporary = path.parent / f".gaugeside-{secrets.token_hex(8)}"
+    temporary = path.parent / f".gaugeside-{os.urandom(8).hex()}"
     flags = os.O_WRONLY | os.O_CREAT | os.O_EXCL | getattr(os, "O_BINARY", 0)
     with _ended_in_order():
         try:

@@ -21,7 +21,6 @@ from gaugeside.app.widgets.lines import CAUTION, MUTED, RULE, Line, Lines, Style
 from gaugeside.checks.view import wrapped
 from gaugeside.errors import Refusal
 from gaugeside.logbook import Entry
-from gaugeside.logbook.outgoing import write_file
 
 if TYPE_CHECKING:
     from gaugeside.app.house import House
@@ -213,6 +212,9 @@ class LogbookPane(VerticalScroll, can_focus=False):
 
     def into_file(self) -> tuple[str, str, Callable[[str, IntoFile], None]]:
         """Return what the dialog for a file needs: title, a name to start from, what writes."""
+        # Imported here: the first frame need not wait for what is seldom asked for.
+        from gaugeside.logbook.outgoing import write_file
+
         words = self.filter_text.strip()
         title = f"Write the entries with {words!r} into a file" if words else "Write the whole logbook into a file"
         name = f"~/gaugeside-{datetime.now():%Y-%m-%d}.csv"
