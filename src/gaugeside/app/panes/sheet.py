@@ -195,7 +195,7 @@ class SheetPane(FormPane):
     def _show(self, lines: Sequence[Styled], *, has_findings: bool = False) -> None:
         self._has_findings = has_findings
         self._rule.say(RULE, MUTED)
-        self._findings.show(lines)
+        self._findings.show(lines, trimmed=not has_findings)
 
     def _long_refusal(self) -> list[Styled]:
         """Return the refusal whole where the two lines under the sheet cannot hold it."""
@@ -257,6 +257,7 @@ class SheetPane(FormPane):
     def settle(self) -> None:
         """Take what is typed as typed to its end: its units, and what is wrong with it."""
         super().settle()
+        self._findings.trim()
         if not self.house.word_stays and self.refusal is None:
             self.say_word()
 

@@ -8,7 +8,9 @@ from dataclasses import dataclass
 from textual import events
 from textual.app import ComposeResult
 from textual.containers import Horizontal
+from textual.geometry import Size
 from textual.message import Message
+from textual.reactive import Reactive
 from textual.widget import Widget
 from textual.widgets import Input, Static
 
@@ -29,6 +31,8 @@ class TextField(Input):
     """The typed part of a line; its value is kept as typed."""
 
     BINDINGS = [("up,shift+tab", "move(-1)"), ("down,tab", "move(1)")]
+    # Follows every key; as the library declares it the whole screen is laid out anew each time.
+    virtual_size: Reactive[Size] = Reactive(Size(0, 0))
 
     @dataclass
     class NotTaken(Message):

@@ -7,6 +7,7 @@ from collections.abc import Sequence
 from textual.app import ComposeResult
 from textual.containers import Vertical
 from textual.content import Content
+from textual.geometry import Size
 from textual.reactive import Reactive
 from textual.screen import Screen
 from textual.widget import Widget
@@ -55,29 +56,44 @@ class Lines(Vertical):
     """Any number of lines; a line that did not change is not painted again."""
 
     DEFAULT_CSS = "Lines { height: auto; width: 1fr; }"
+    # Nothing scrolls in here: a line more or less needs one layout, not a second for this.
+    virtual_size: Reactive[Size] = Reactive(Size(0, 0))
 
     def __init__(self, *, id: str | None = None) -> None:
         super().__init__(id=id)
         self._lines: list[Line] = []
         self._composed = False
+        self._used = 0
 
     def compose(self) -> ComposeResult:
         """The lines that were asked for before there was a place for them."""
         self._composed = True
         yield from self._lines
 
-    def show(self, lines: Sequence[Styled]) -> None:
-        """Show these (text, style) lines."""
+    def show(self, lines: Sequence[Styled], *, trimmed: bool = True) -> None:
+        """Show these (text, style) lines.
+
+        trimmed: lines that are too many go away; else they stay as blanks until `trim`, which spares a new layout of
+        the screen where the next key may need them again.
+        """
         for line, (text, style) in zip(self._lines, lines, strict=False):
             line.say(text, style)
             line.display = True
         for line in self._lines[len(lines) :]:
-            line.display = False
+            line.say("")
+        self._used = len(lines)
+        if trimmed:
+            self.trim()
         fresh = [Line(text, style) for text, style in lines[len(self._lines) :]]
         self._lines += fresh
         if fresh and self._composed:
             self.mount(*fresh)
 
+    def trim(self) -> None:
+        """Take the blanks away that are left of earlier lines."""
+        for line in self._lines[self._used :]:
+            line.display = False
+
     def texts(self) -> list[str]:
         """Return the lines that are shown."""
-        return [line.text for line in self._lines if line.display]
+        return [line.text for line in self._lines[: self._used]]
