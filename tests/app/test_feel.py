@@ -12,6 +12,7 @@ import sys
 import threading
 from contextlib import closing
 from dataclasses import replace
+from datetime import timedelta
 from pathlib import Path
 
 import pytest
@@ -24,7 +25,7 @@ from gaugeside.checks.view import FOOTNOTE
 from gaugeside.logbook import Logbook
 from gaugeside.quantities.site import SEA_LEVEL
 from gaugeside.refrigerants import find
-from gaugeside.settings import places
+from gaugeside.settings import load_draft, places
 
 
 def entries() -> list[dict[str, str]]:
@@ -140,7 +141,7 @@ async def test_enter_twice_is_one_entry_and_says_so() -> None:
         await shown.type("38 psig\n")
         await shown.see("Kept at")
         await shown.press("enter")
-        await shown.see("Already kept as entry 1; nothing has changed since.")
+        await shown.see("Already kept at")
         assert len(entries()) == 1
         # The same readings typed again within ten minutes are the same entry, too.
         await shown.press("backspace")
@@ -479,6 +480,10 @@ async def test_what_is_typed_keeps_its_meaning_when_the_units_change() -> None:
         await shown.type("2.6\t5\t14,1 bar\tabc")
         await shown.press("f7", "down", "right")
         await shown.see("Readings that were typed keep the units they had.")
+        shown.app.saver.flush()
+        saved, _ = load_draft(places().draft_file)
+        assert saved["forms"]["superheat"]["texts"]["suction_pressure"] == "2.6 bar g"
+        assert saved["forms"]["machine"]["texts"]["electrical_power"] == "8 kW"
         await shown.press("f3")
         texts = shown.pane("superheat").texts()
         assert [texts[name] for name in ("suction_pressure", "suction_temperature", "liquid_temperature")] == [
@@ -524,6 +529,22 @@ async def test_what_was_cleared_or_replaced_comes_back() -> None:
         assert shown.pane("superheat").texts()["suction_temperature"] == ""
         await shown.press("ctrl+z")
         await shown.wait(lambda: shown.pane("superheat").texts() == before)
+
+
+async def test_a_note_makes_no_second_entry_of_the_next_enter_and_an_hour_later_there_is_one() -> None:
+    async with sheet() as shown:
+        await shown.press("f9")
+        await shown.type("rack 2\nclear\n")
+        await shown.type("2 bar g\n")
+        await shown.see("Kept at")
+        await shown.press("enter")
+        await shown.see("Already kept at")
+        assert len(entries()) == 1
+        pane = shown.pane("superheat")
+        assert pane.kept_as is not None
+        pane.kept_as = replace(pane.kept_as, kept_at=pane.kept_as.kept_at - timedelta(hours=1))
+        await shown.press("enter")
+        await kept(shown, 2)
 
 
 async def test_an_entry_that_is_deleted_may_be_kept_again() -> None:

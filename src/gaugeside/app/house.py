@@ -6,6 +6,7 @@ import asyncio
 from collections.abc import Mapping
 from contextlib import suppress
 from dataclasses import replace
+from datetime import UTC, datetime
 from functools import partial
 from typing import Any
 
@@ -34,7 +35,7 @@ from gaugeside.checks.view import footnote, sentence
 from gaugeside.engine import Engine, Reply
 from gaugeside.errors import Refusal
 from gaugeside.keeping import entry_of
-from gaugeside.logbook import Entry, Kept, Logbook
+from gaugeside.logbook import SAME_WITHIN, Entry, Kept, Logbook
 from gaugeside.preferences import dress_of, site_of
 from gaugeside.quantities.site import SEA_LEVEL
 from gaugeside.refrigerants import Refrigerant, find
@@ -111,13 +112,13 @@ class House(KeysInTurn):
         )
         if redressed:
             self._write_units()
+            # Before the settings: a bare number may never stand on the disk beside units it was not typed in.
+            self.saver.draft(self.draft())
         if settings.theme != self.settings.theme:
             self.theme = pick_theme(settings.theme, self.environ, self.themes)
         self._take_settings(settings)
         self.saver.settings(settings)
         for pane in self.base.query(SheetPane):
-            if redressed:
-                pane.units.clear()
             pane.read_all()
         self.head()
 
@@ -233,23 +234,24 @@ class House(KeysInTurn):
             word = refusal_words(pane.check, pane.refusal) or "There is no answer on this sheet yet."
             self.say(f"Not kept: {word}", CAUTION)
             return
-        if pane.kept_as is not None and not self.note:
-            self.say(f"Already kept as entry {pane.kept_as}; nothing has changed since.", stays=True)
+        earlier = pane.kept_as
+        # With a note it is another entry; without, the note of the first must not make two of one reading.
+        if earlier is not None and not self.note and datetime.now(UTC) - earlier.kept_at <= SAME_WITHIN:
+            self._say_already(earlier)
             return
         entry = entry_of(pane.check, pane.answer, pane.meant(), self.settings, self.dress, self.site, self.note)
         self.book.do(lambda logbook: logbook.keep(entry), partial(self._kept, pane, pane.answer), self._not_kept)
 
     def _kept(self, pane: SheetPane, answer: Answer, kept: Kept) -> None:
         if pane.answer is answer:
-            pane.kept_as = kept.entry.number
+            pane.kept_as = kept.entry
         at = kept.entry.kept_at.astimezone().strftime("%H:%M:%S")
         if not kept.already and self.note == kept.entry.note:
             self.note = ""
         # First: an earlier word, such as that it was not kept, must not cover this one.
         self.form_changed()
         if kept.already:
-            words = f"Already kept at {at} as entry {kept.entry.number}: the same within ten minutes is one entry."
-            self.say(words, stays=True)
+            self._say_already(kept.entry)
             return
         self.head()
         machine = f" for {kept.entry.tag}" if kept.entry.tag else ""
@@ -259,10 +261,14 @@ class House(KeysInTurn):
         for shown in self.base.query(LogbookPane):
             shown.reload()
 
+    def _say_already(self, entry: Entry) -> None:
+        at = entry.kept_at.astimezone().strftime("%H:%M:%S")
+        self.say(f"Already kept at {at} as entry {entry.number}: the same within ten minutes is one entry.", stays=True)
+
     def forget_kept(self, number: int | None) -> None:
         """An entry is deleted: the sheet that it was kept from may be kept again."""
         for pane in self.base.query(SheetPane):
-            if pane.kept_as == number:
+            if pane.kept_as is not None and pane.kept_as.number == number:
                 pane.kept_as = None
 
     def _not_kept(self, refusal: Refusal) -> None:

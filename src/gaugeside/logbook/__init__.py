@@ -1,7 +1,7 @@
 """What was calculated, kept on disk."""
 
 from gaugeside.logbook.entry import Entry
-from gaugeside.logbook.store import Kept, Logbook
+from gaugeside.logbook.store import SAME_WITHIN, Kept, Logbook
 from gaugeside.logbook.trouble import LogbookTrouble, NoSuchEntry
 
-__all__ = ["Entry", "Kept", "Logbook", "LogbookTrouble", "NoSuchEntry"]
+__all__ = ["SAME_WITHIN", "Entry", "Kept", "Logbook", "LogbookTrouble", "NoSuchEntry"]

@@ -126,6 +126,7 @@ class FormPane(VerticalScroll, can_focus=False):
         """Write its unit behind every number that has none, as before the units of the house change."""
         whole = {name: typed.complete for name, typed in self.typed.items() if typed.value is not None}
         self._write({**self.texts(), **{name: text for name, text in whole.items() if text}})
+        self.units = {}
 
     def first_field(self) -> Widget:
         """The field the cursor was left in, or the first that is typed in."""
@@ -149,8 +150,7 @@ class FormPane(VerticalScroll, can_focus=False):
         self.ask()
 
     def ask(self) -> None:
-        """Ask what the readings tell."""
-        raise NotImplementedError
+        """Ask what the readings tell; the sheet itself knows how."""
 
     def _show_meant(self) -> None:
         """Show only the lines that have a meaning under what the form's first line chooses."""

@@ -20,6 +20,7 @@ from gaugeside.checks.view import sentence, wrapped
 from gaugeside.engine import Reply
 from gaugeside.errors import Refusal
 from gaugeside.keeping import headline, with_linked_entries
+from gaugeside.logbook import Entry as LogbookEntry
 
 _PICK = "Press F8 and type part of the refrigerant's name."
 _NO_PICTURE = "There is nothing to draw yet; Ctrl+G brings the form back."
@@ -38,7 +39,7 @@ _WITHOUT = f"-- WITHOUT WHAT IS NOT UNDERSTOOD {RULE}"
 class SheetPane(FormPane):
     """The pane of one check.
 
-    kept_as: number of the entry that holds what the sheet shows, None where there is none.
+    kept_as: the entry that holds what the sheet shows, None where there is none.
     """
 
     def __init__(self, check: Check, saved: Mapping[str, Any]) -> None:
@@ -46,7 +47,7 @@ class SheetPane(FormPane):
         self.answer: Answer | None = None
         self.refusal: Refusal | None = None
         self.keeps_then = False
-        self.kept_as: int | None = None
+        self.kept_as: LogbookEntry | None = None
         self._has_findings = False
         self._without_answer = ("", "")
         self._asked = 0
